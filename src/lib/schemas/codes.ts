@@ -1,0 +1,142 @@
+import { z } from 'zod';
+
+/**
+ * Every code that leaves the core, in one place: errors, warnings, findings and reasons are closed unions, so that
+ * screens, programs and tests can rely on them. Add a code here first; never reuse one for another meaning.
+ */
+
+/** Why a file is refused. */
+export const errorCodeSchema = z.enum([
+	'empty_file',
+	'header_only',
+	'not_text',
+	'binary_file',
+	'compressed_file',
+	'archive_file',
+	'not_csv',
+	'no_header',
+	'unclosed_quote',
+	'missing_time',
+	'missing_motion',
+	'unreadable_time',
+	'unreadable_position',
+	'time_not_increasing',
+	'too_few_samples',
+	'too_many_columns',
+	'too_large',
+	'no_lap',
+	'no_such_lap',
+	'no_such_run',
+	'reference_mismatch',
+	'bad_arguments',
+	'file_not_found',
+	'internal'
+]);
+export type ErrorCode = z.infer<typeof errorCodeSchema>;
+
+/** What was understood with a reservation. */
+export const warningCodeSchema = z.enum([
+	'line_chosen',
+	'no_complete_lap',
+	'no_clean_lap',
+	'more_runs',
+	'brake_scale_assumed',
+	'brake_offset_removed',
+	'brake_switch_only',
+	'brake_from_deceleration',
+	'throttle_inverted',
+	'throttle_scaled',
+	'speed_unit_assumed',
+	'unit_assumed',
+	'speed_scale_differs',
+	'speed_from_wheel',
+	'speed_from_distance',
+	'speed_from_positions',
+	'speed_negative',
+	'frozen_channel',
+	'duplicate_column',
+	'duplicate_rows',
+	'overlap_removed',
+	'time_restarts',
+	'time_rebuilt',
+	'time_jitter',
+	'gap',
+	'short_row',
+	'long_row',
+	'bad_cell',
+	'footer_ignored',
+	'quote_repaired',
+	'encoding_assumed',
+	'null_bytes_removed',
+	'positions_missing',
+	'position_jump',
+	'lap_column_unused',
+	'lap_time_from_samples',
+	'speed_only',
+	'direction_reversed',
+	'path_from_accelerations',
+	'metadata'
+]);
+export type WarningCode = z.infer<typeof warningCodeSchema>;
+
+/** Why a lap is not clean, or what marks it carries. */
+export const lapReasonSchema = z.enum([
+	'standing_start',
+	'pit_lane',
+	'stopped',
+	'neutralised',
+	'short',
+	'drop_out',
+	'off_path',
+	'slow',
+	'out_lap',
+	'in_lap',
+	'partial',
+	'time_coarse'
+]);
+export type LapReason = z.infer<typeof lapReasonSchema>;
+
+/** Why a metric is null or carries a reservation. */
+export const metricReasonSchema = z.enum([
+	'no_channel',
+	'brake_switch',
+	'no_brake_here',
+	'no_lift_here',
+	'flat',
+	'never_full',
+	'not_released',
+	'gap',
+	'not_reached',
+	'linked',
+	'not_turning',
+	'brake_scale_assumed',
+	'from_deceleration',
+	'too_coarse'
+]);
+export type MetricReason = z.infer<typeof metricReasonSchema>;
+
+/** Measured causes. */
+export const findingCodeSchema = z.enum([
+	'brake_early',
+	'brake_late',
+	'peak_over',
+	'peak_under',
+	'rise_quick',
+	'second_dab',
+	'release_abrupt',
+	'release_long',
+	'hold_missing',
+	'min_speed_low',
+	'entry_fast',
+	'pick_up_late',
+	'second_lift',
+	'coasting',
+	'exit_speed_low',
+	'idle_gap',
+	'lock_up',
+	'line',
+	'grip_unused',
+	'car_or_wind',
+	'carried_in'
+]);
+export type FindingCode = z.infer<typeof findingCodeSchema>;
