@@ -66,7 +66,12 @@ export default defineConfig(({ mode }) =>
 									provider: playwright({
 										launchOptions: {
 											executablePath: process.env.KERBNOTE_CHROMIUM ?? '/usr/bin/chromium',
-											args: ['--no-sandbox', '--disable-background-networking', '--disable-component-update', '--disable-sync']
+											args: [
+												'--no-sandbox',
+												'--disable-background-networking',
+												'--disable-component-update',
+												'--disable-sync'
+											]
 										}
 									})
 								}
