@@ -117,6 +117,8 @@ export interface LapGrid {
 	lapNumber: number;
 	lengthM: number;
 	marginM: number;
+	/** line to line, exact: the time at s = lengthM, which is rarely a whole metre */
+	lapTimeS: number;
 	/** s from the lap's crossing of the line; negative in the margin before */
 	timeS: Float64Array;
 	speedKmh: Float64Array;
