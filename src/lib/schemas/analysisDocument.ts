@@ -157,6 +157,12 @@ export const findingSchema = z.object({
 	habit: z.boolean().nullable(),
 	/** laps that show it, of how many clean ones */
 	habitLaps: z.object({ shown: z.number().int(), of: z.number().int() }).nullable(),
+	/**
+	 * where the cost falls, by ledger row: the shares sum to costS, and a share in a later row is what is carried on.
+	 * `carried_in` of a corner repeats such shares, so that it is left out of sums (corner 0 is a cost of its own: it
+	 * comes from the lap before).
+	 */
+	shares: z.array(z.object({ corner: z.number().int(), costS: z.number() })),
 	evidence: z.array(evidenceSchema),
 	text: z.string()
 });
@@ -189,7 +195,7 @@ export const comparisonSchema = z.object({
 	referenceMetrics: z.array(metricsSchema),
 	ledger: z.array(ledgerRowSchema),
 	findings: z.array(findingSchema),
-	/** per corner, what no finding explains */
+	/** per ledger row, what no finding explains: the row's total is the sum of the shares in it plus this */
 	unexplained: z.array(z.object({ corner: z.number().int(), costS: z.number() }))
 });
 export type Comparison = z.infer<typeof comparisonSchema>;
