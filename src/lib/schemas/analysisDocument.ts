@@ -113,6 +113,9 @@ export const metricsSchema = z.object({
 	minKmh: nullable,
 	minSpeedM: nullable,
 	liftM: nullable,
+	/** lifted corner: the smallest throttle opening, and where */
+	smallestOpeningPct: nullable,
+	smallestOpeningM: nullable,
 	pickUpM: nullable,
 	fullThrottleM: nullable,
 	secondLiftS: nullable,

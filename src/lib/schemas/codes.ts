@@ -108,6 +108,8 @@ export const metricReasonSchema = z.enum([
 	'gap',
 	'not_reached',
 	'linked',
+	'not_linked',
+	'partly_lifted',
 	'not_turning',
 	'brake_scale_assumed',
 	'from_deceleration',
