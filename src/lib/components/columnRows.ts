@@ -1,0 +1,76 @@
+import { capitalise } from '../format/count.ts';
+import { formatNumber } from '../format/number.ts';
+import { MINUS, NO_BREAK_SPACE } from '../format/signs.ts';
+import type { SourceColumn } from '../schemas/analysisDocument.ts';
+import { channelSchema, type Channel } from '../schemas/channels.ts';
+import { CHANNEL_ORDER, CHANNEL_TEXT } from '../texts/channels.ts';
+
+export interface ColumnRow {
+	/** what the product needs it for */
+	need: string;
+	/** header in the file; null where the file has no such column */
+	header: string | null;
+	/** as in the file */
+	unit: string;
+	samples: string[];
+	range: string;
+	/** said only where the recognition is not plain */
+	doubt: string | null;
+	/** what is used where there is no column */
+	instead: string | null;
+}
+
+/** From here on a recognition is a guess worth looking at; below the second, one that must be looked at. */
+const SURE = 0.8;
+const FAIRLY_SURE = 0.5;
+
+function doubtOf(confidence: number) {
+	if (confidence >= SURE) return null;
+	return confidence >= FAIRLY_SURE ? 'fairly sure' : 'a guess, please check';
+}
+
+function rangeOf({ min, max }: SourceColumn) {
+	if (min === null || max === null) return '';
+	const decimals =
+		Math.max(Math.abs(min), Math.abs(max)) >= 100 ? 0 : Math.max(Math.abs(min), Math.abs(max)) >= 10 ? 1 : 2;
+	return `${formatNumber(min, { decimals })} to${NO_BREAK_SPACE}${formatNumber(max, { decimals })}`;
+}
+
+/**
+ * The rows of "what was understood": recognised columns in the order in which a person looks for them, then what the file has
+ * no column for.
+ */
+export function columnRows(
+	columns: readonly SourceColumn[],
+	absent: readonly { channel: string; instead: string | null }[]
+): ColumnRow[] {
+	const found = CHANNEL_ORDER.flatMap((channel) =>
+		columns
+			.filter((column) => column.channel === channel)
+			.map((column) => ({
+				need: CHANNEL_TEXT[channel],
+				header: column.header,
+				unit: column.unit,
+				samples: column.samples.map((sample) => sample.replace(/^-/, MINUS)),
+				range: rangeOf(column),
+				doubt: doubtOf(column.confidence),
+				instead: null
+			}))
+	);
+	const missing = absent.map(({ channel, instead }) => ({
+		need: absentName(channel),
+		header: null,
+		unit: '',
+		samples: [],
+		range: '',
+		doubt: null,
+		instead
+	}));
+	return [...found, ...missing];
+}
+
+/** Absent things may be wider than one channel ("positions"): those are called as they come. */
+function absentName(channel: string) {
+	const known = channelSchema.safeParse(channel);
+	return known.success ? CHANNEL_TEXT[known.data satisfies Channel] : capitalise(channel);
+}
