@@ -1,0 +1,69 @@
+import { readFileSync } from 'node:fs';
+import { join } from 'node:path';
+import { SetupError } from './SetupError.mjs';
+import { lastLines } from './debianPackages.mjs';
+import { findProgram, run } from './processes.mjs';
+
+/**
+ * Installs the packages of package-lock.json, the development ones too, where what is installed is not what it lists.
+ *
+ * @param {string} root
+ * @param {(line: string) => void} say
+ * @throws {SetupError} with npm's last words
+ */
+export async function installNpmPackages(root, say) {
+	if (packagesMatch(readJson(join(root, 'package-lock.json')), readJson(join(root, 'node_modules/.package-lock.json')))) return;
+	const npm = findProgram(['npm']);
+	if (!npm) throw new SetupError('npm is missing; install it beside Node and start again.');
+	say('Installing the npm packages (npm ci)');
+	const { code, output } = await run(npm, ['ci', '--include=dev', '--no-audit', '--no-fund', '--loglevel=error'], { cwd: root });
+	if (code === 0) return;
+	if (/ENOSPC/.test(output)) {
+		throw new SetupError(`The disk is full (${root}); the packages need about 350 MB; free some space and start again.`);
+	}
+	if (/EACCES|EPERM|EROFS/.test(output)) {
+		throw new SetupError(`This account may not write to ${root}; change the folder's owner or start from a clone of your own.`, {
+			details: lastLines(output)
+		});
+	}
+	throw new SetupError('npm could not install the packages; check the way to its registry and start again.', {
+		details: lastLines(output)
+	});
+}
+
+/**
+ * @typedef {{ packages?: Record<string, { version?: string, integrity?: string, optional?: boolean }> }} Lock
+ */
+
+/**
+ * Whether what npm last installed is what the lock file lists.
+ *
+ * npm writes its record (`node_modules/.package-lock.json`) as the last act of an install, so a broken-off one has none; an
+ * install without development packages lacks them. Packages for other platforms are optional and may be absent.
+ *
+ * @param {Lock | null} wanted     package-lock.json
+ * @param {Lock | null} installed  node_modules/.package-lock.json
+ * @returns {boolean}
+ */
+export function packagesMatch(wanted, installed) {
+	if (!wanted?.packages || !installed?.packages) return false;
+	for (const [name, entry] of Object.entries(wanted.packages)) {
+		if (name === '') continue;
+		const present = installed.packages[name];
+		if (!present) {
+			if (entry.optional) continue;
+			return false;
+		}
+		if (present.version !== entry.version || present.integrity !== entry.integrity) return false;
+	}
+	return true;
+}
+
+/** @param {string} path */
+function readJson(path) {
+	try {
+		return JSON.parse(readFileSync(path, 'utf8'));
+	} catch {
+		return null;
+	}
+}

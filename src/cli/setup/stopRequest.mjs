@@ -1,0 +1,31 @@
+import { stopRunning } from './processes.mjs';
+
+/** npm passes Ctrl-C on to a process that the terminal has told already; only a later one is impatience. */
+const SAME_REQUEST_MS = 2000;
+
+/** Thrown between two steps of a start that somebody has asked to stop. */
+export class StopRequested extends Error {}
+
+/**
+ * Listens for Ctrl-C, SIGTERM and a closed terminal.
+ *
+ * The first request ends the command that runs just now and lets the work come to a place where it can stop; one that comes
+ * again two seconds later ends this process at once (its services follow by themselves).
+ *
+ * @returns {{ requested: () => boolean, check: () => void }} `check` throws StopRequested once there was a request
+ */
+export function listenForStop() {
+	let requestedAt = 0;
+	const request = () => {
+		if (requestedAt && Date.now() - requestedAt > SAME_REQUEST_MS) process.exit(130);
+		requestedAt ||= Date.now();
+		stopRunning();
+	};
+	for (const name of /** @type {const} */ (['SIGINT', 'SIGTERM', 'SIGHUP'])) process.on(name, request);
+	return {
+		requested: () => requestedAt > 0,
+		check: () => {
+			if (requestedAt) throw new StopRequested();
+		}
+	};
+}

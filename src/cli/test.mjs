@@ -1,0 +1,6 @@
+// `npm test`. Syntax that an old Node can parse: see setup/nodeVersion.mjs.
+import { runOnModernNode } from './setup/nodeVersion.mjs';
+
+runOnModernNode(function () {
+	return import('./setup/runTests.mjs');
+});
