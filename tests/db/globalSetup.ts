@@ -1,7 +1,8 @@
 import knex from 'knex';
 import type { TestProject } from 'vitest/node';
 import { startTestMariadb } from '../../src/cli/setup/testMariadb.mjs';
-import { migrationSource } from '../../src/lib/server/db/migrations.ts';
+import { databaseConfig } from '../../src/lib/server/db/database.ts';
+import { migrateToLatest } from '../../src/lib/server/db/migrateToLatest.ts';
 
 declare module 'vitest' {
 	interface ProvidedContext {
@@ -26,14 +27,9 @@ export default async function setUpDatabase(project: TestProject): Promise<() =>
 	await admin.raw('CREATE DATABASE ?? CHARACTER SET utf8mb4 COLLATE utf8mb4_unicode_520_ci', [name]);
 
 	const databaseUrl = Object.assign(new URL(serverUrl), { pathname: `/${name}` }).href;
-	const migrator = knex({
-		client: 'mysql2',
-		connection: databaseUrl,
-		pool: { min: 0, max: 1 },
-		migrations: { migrationSource }
-	});
+	const migrator = knex(databaseConfig(databaseUrl, 2));
 	try {
-		await migrator.migrate.latest();
+		await migrateToLatest(migrator);
 	} finally {
 		await migrator.destroy();
 	}

@@ -10,7 +10,7 @@ export const ROOT = fileURLToPath(new URL('../../..', import.meta.url)).replace(
  * @typedef {object} Folders
  * @property {string} base      everything below is in here
  * @property {string} database  MariaDB's folder (data, log, secret)
- * @property {string} files     raw uploads
+ * @property {string} storage   raw uploads
  * @property {string} logs
  * @property {string} build     the built server, with `workers/` in it
  * @property {string} programs  programs unpacked without root
@@ -26,7 +26,7 @@ export function foldersOf(kind, root = ROOT) {
 	return {
 		base,
 		database: resolve(base, 'mariadb'),
-		files: resolve(base, 'files'),
+		storage: resolve(base, 'storage'),
 		logs: resolve(base, 'log'),
 		build: kind === 'product' ? resolve(root, 'build') : resolve(base, 'build'),
 		programs: resolve(root, 'var/programs')

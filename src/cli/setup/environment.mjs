@@ -23,7 +23,7 @@ export function productEnvironment({ folders, databaseUrl, demo, port, given = p
 		NODE_ENV: 'production',
 		DATABASE_URL: databaseUrl,
 		AUTH_SECRET: given.AUTH_SECRET || secretFrom(join(folders.base, 'auth-secret')),
-		KERBNOTE_FILES: given.KERBNOTE_FILES || folders.files,
+		KERBNOTE_STORAGE: given.KERBNOTE_STORAGE || folders.storage,
 		KERBNOTE_BUILD: folders.build,
 		KERBNOTE_DEMO: demo ? '1' : '',
 		KERBNOTE_DEMO_ACCOUNTS: accountsFile(folders)
