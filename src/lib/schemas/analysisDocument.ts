@@ -151,6 +151,7 @@ export const evidenceSchema = z.object({
 	atM: nullable,
 	plusMinus: nullable
 });
+export type Evidence = z.infer<typeof evidenceSchema>;
 export const findingSchema = z.object({
 	corner: z.number().int(),
 	code: findingCodeSchema,
