@@ -6,7 +6,7 @@ export default {
 	preprocess: vitePreprocess(),
 	compilerOptions: { runes: true },
 	kit: {
-		adapter: adapter({ precompress: true }),
+		adapter: adapter({ out: process.env.KERBNOTE_BUILD ?? 'build', precompress: true }),
 		csp: {
 			mode: 'auto',
 			directives: {

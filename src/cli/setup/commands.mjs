@@ -26,6 +26,7 @@ export async function runBuilt({ name, failure, root, env }) {
  */
 export function builtCommand(env, name) {
 	const script = join(env.KERBNOTE_BUILD ?? 'build', 'workers', `${name}.js`);
-	if (!existsSync(script)) throw new SetupError(`The build is not whole: ${script} is missing; delete its folder and start again.`);
+	if (!existsSync(script))
+		throw new SetupError(`The build is not whole: ${script} is missing; delete its folder and start again.`);
 	return script;
 }

@@ -9,7 +9,7 @@ import { findProgram, run } from './processes.mjs';
  * @typedef {object} Wanted
  * @property {string} what       for a person: "MariaDB", "Chromium"
  * @property {string[]} packages
- * @property {string} folder     where they are unpacked when they cannot be installed
+ * @property {string | null} folder  where they are unpacked when they cannot be installed; null where they only work installed
  */
 
 /**
@@ -37,8 +37,9 @@ export async function bringDebianPackages(wanted, say) {
 		if (!problem) return 'installed';
 		throw byHand(wanted, 'could not be installed', problem);
 	}
+	if (wanted.folder === null) throw byHand(wanted, 'is missing, and without root it cannot be installed', '');
 	say(`Unpacking ${wanted.what} into ${wanted.folder} (no root here)`);
-	const problem = await unpack(apt, wanted);
+	const problem = await unpack(apt, wanted.packages, wanted.folder);
 	if (!problem) return 'unpacked';
 	throw byHand(wanted, 'is missing, and without root it could not be unpacked either', problem);
 }
@@ -95,10 +96,11 @@ async function install(prefix, apt, packages) {
 
 /**
  * @param {string} apt
- * @param {Wanted} wanted
+ * @param {string[]} packages
+ * @param {string} folder
  * @returns {Promise<string>} what went wrong, '' for nothing
  */
-async function unpack(apt, { packages, folder }) {
+async function unpack(apt, packages, folder) {
 	const draft = `${folder}.${process.pid}.draft`;
 	const own = `${draft}.apt`;
 	const ownLists = ['-o', `Dir::State::lists=${own}/lists`, '-o', `Dir::Cache=${own}/cache`];

@@ -24,6 +24,8 @@ export function checkRoom(root, folders) {
 	const { bavail, bsize } = statfsSync(folders.base);
 	const freeMb = Math.floor((bavail * bsize) / 1e6);
 	if (!(freeMb >= neededMb)) {
-		throw new SetupError(`The disk is nearly full: ${freeMb} MB are free in ${root} and about ${neededMb} MB are needed; free some space and start again.`);
+		throw new SetupError(
+			`The disk is nearly full: ${freeMb} MB are free in ${root} and about ${neededMb} MB are needed; free some space and start again.`
+		);
 	}
 }

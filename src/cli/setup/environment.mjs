@@ -49,7 +49,8 @@ export function databaseAddress(text) {
 	} catch {
 		throw new SetupError(`${wanted}, and it is no address at all.`);
 	}
-	if (!['mysql:', 'mariadb:'].includes(url.protocol)) throw new SetupError(`${wanted}, and it begins with "${url.protocol}".`);
+	if (!['mysql:', 'mariadb:'].includes(url.protocol))
+		throw new SetupError(`${wanted}, and it begins with "${url.protocol}".`);
 	if (!/^\/[^/]+$/.test(url.pathname)) throw new SetupError(`${wanted}, and it names no database.`);
 	return `${url.hostname}:${url.port || 3306}${url.pathname}`;
 }

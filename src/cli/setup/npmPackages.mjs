@@ -12,19 +12,27 @@ import { findProgram, run } from './processes.mjs';
  * @throws {SetupError} with npm's last words
  */
 export async function installNpmPackages(root, say) {
-	if (packagesMatch(readJson(join(root, 'package-lock.json')), readJson(join(root, 'node_modules/.package-lock.json')))) return;
+	if (packagesMatch(readJson(join(root, 'package-lock.json')), readJson(join(root, 'node_modules/.package-lock.json'))))
+		return;
 	const npm = findProgram(['npm']);
 	if (!npm) throw new SetupError('npm is missing; install it beside Node and start again.');
 	say('Installing the npm packages (npm ci)');
-	const { code, output } = await run(npm, ['ci', '--include=dev', '--no-audit', '--no-fund', '--loglevel=error'], { cwd: root });
+	const { code, output } = await run(npm, ['ci', '--include=dev', '--no-audit', '--no-fund', '--loglevel=error'], {
+		cwd: root
+	});
 	if (code === 0) return;
 	if (/ENOSPC/.test(output)) {
-		throw new SetupError(`The disk is full (${root}); the packages need about 350 MB; free some space and start again.`);
+		throw new SetupError(
+			`The disk is full (${root}); the packages need about 350 MB; free some space and start again.`
+		);
 	}
 	if (/EACCES|EPERM|EROFS/.test(output)) {
-		throw new SetupError(`This account may not write to ${root}; change the folder's owner or start from a clone of your own.`, {
-			details: lastLines(output)
-		});
+		throw new SetupError(
+			`This account may not write to ${root}; change the folder's owner or start from a clone of your own.`,
+			{
+				details: lastLines(output)
+			}
+		);
 	}
 	throw new SetupError('npm could not install the packages; check the way to its registry and start again.', {
 		details: lastLines(output)

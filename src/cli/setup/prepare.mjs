@@ -18,7 +18,10 @@ export async function installAndBuild({ root, build, say, check }) {
 		patienceS: 900,
 		onwait: () => say('Waiting for another start or test that installs or builds in this folder')
 	});
-	if (!release) throw new SetupError('Another start or test has been installing or building here for 15 minutes; stop it and start again.');
+	if (!release)
+		throw new SetupError(
+			'Another start or test has been installing or building here for 15 minutes; stop it and start again.'
+		);
 	try {
 		await installNpmPackages(root, say);
 		check?.();

@@ -18,7 +18,9 @@ const NOT_BUILT = /\.(test|bench)\.ts$|\.mjs$|(^|\/)\.|~$/;
  */
 export function sourceHash(root) {
 	const hash = createHash('sha256');
-	const names = [...FILES, ...FOLDERS.flatMap((folder) => filesBelow(root, folder))].filter((name) => !NOT_BUILT.test(name));
+	const names = [...FILES, ...FOLDERS.flatMap((folder) => filesBelow(root, folder))].filter(
+		(name) => !NOT_BUILT.test(name)
+	);
 	for (const name of names.sort()) {
 		let content;
 		try {

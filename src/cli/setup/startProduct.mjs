@@ -34,7 +34,10 @@ export async function main(args) {
 	const closing = [];
 	try {
 		if (args[0] === 'admin') return await runAdmin(args.slice(1), closing);
-		if (args.length > 0) throw new SetupError(`npm start takes no arguments, got "${args.join(' ')}"; settings are environment variables (README.md).`);
+		if (args.length > 0)
+			throw new SetupError(
+				`npm start takes no arguments, got "${args.join(' ')}"; settings are environment variables (README.md).`
+			);
 		return await serve(stop, closing);
 	} catch (error) {
 		if (error instanceof StopRequested || stop.requested()) return 0;
@@ -76,10 +79,15 @@ async function serve(stop, closing) {
 	const worker = service('worker', builtCommand(env, 'worker'));
 	const watched = [server, worker, database];
 	const healthHost = ['0.0.0.0', '::'].includes(host) ? '127.0.0.1' : host.includes(':') ? `[${host}]` : host;
-	const healthy = await waitForHealth(`http://${healthHost}:${port}/health/live`, { alive: () => server.alive() && !stop.requested() });
+	const healthy = await waitForHealth(`http://${healthHost}:${port}/health/live`, {
+		alive: () => server.alive() && !stop.requested()
+	});
 	stop.check();
 	if (!healthy) {
-		throw new SetupError(`The server did not come up; its log is ${relative(ROOT, join(folders.logs, 'server.log'))}.`, { details: server.lastWords() });
+		throw new SetupError(
+			`The server did not come up; its log is ${relative(ROOT, join(folders.logs, 'server.log'))}.`,
+			{ details: server.lastWords() }
+		);
 	}
 	welcome(env.ORIGIN ?? '', demo);
 	return watch(watched, stop);
@@ -95,9 +103,12 @@ async function watch(watched, stop) {
 		if (stop.requested()) return 0;
 		const dead = watched.find((part) => !part.alive());
 		if (dead) {
-			throw new SetupError(`The ${dead.name} has ended by itself, so everything is stopped; its log is in ${relative(ROOT, folders.base)}.`, {
-				details: dead.lastWords()
-			});
+			throw new SetupError(
+				`The ${dead.name} has ended by itself, so everything is stopped; its log is in ${relative(ROOT, folders.base)}.`,
+				{
+					details: dead.lastWords()
+				}
+			);
 		}
 		await sleep(100);
 	}
@@ -114,11 +125,21 @@ async function prepare(closing, check) {
 	if (external) databaseAddress(external);
 	const startDatabase = async () => {
 		if (external) return { name: 'database', url: external, alive: () => true, lastWords: () => '' };
-		const mariadb = await startMariadb({ root: ROOT, folder: folders.database, programs: folders.programs, portFile, durable: true, say });
+		const mariadb = await startMariadb({
+			root: ROOT,
+			folder: folders.database,
+			programs: folders.programs,
+			portFile,
+			durable: true,
+			say
+		});
 		closing.push(mariadb.stop);
 		return { name: 'database', ...mariadb };
 	};
-	const [database] = await together([startDatabase(), installAndBuild({ root: ROOT, build: folders.build, say, check })]);
+	const [database] = await together([
+		startDatabase(),
+		installAndBuild({ root: ROOT, build: folders.build, say, check })
+	]);
 	const demo = external ? process.env.KERBNOTE_DEMO === '1' : process.env.KERBNOTE_DEMO !== '0';
 	return { database, demo };
 }
@@ -128,7 +149,9 @@ async function prepare(closing, check) {
  * @param {boolean} demo
  */
 async function migrateAndSeed(env, demo) {
-	const where = process.env.DATABASE_URL ? `The database ${databaseAddress(process.env.DATABASE_URL)} (DATABASE_URL)` : 'The database';
+	const where = process.env.DATABASE_URL
+		? `The database ${databaseAddress(process.env.DATABASE_URL)} (DATABASE_URL)`
+		: 'The database';
 	await runBuilt({ name: 'migrate', failure: `${where} could not be brought up to date.`, root: ROOT, env });
 	if (demo) await runBuilt({ name: 'seed', failure: 'The demo could not be put into the database.', root: ROOT, env });
 }
@@ -143,7 +166,11 @@ async function runAdmin(args, closing) {
 	const { database, demo } = await prepare(closing);
 	const env = productEnvironment({ folders, databaseUrl: database.url, demo });
 	await migrateAndSeed(env, false);
-	const { code } = await run(process.execPath, [builtCommand(env, 'admin'), ...args], { cwd: ROOT, env, inherit: true });
+	const { code } = await run(process.execPath, [builtCommand(env, 'admin'), ...args], {
+		cwd: ROOT,
+		env,
+		inherit: true
+	});
 	return code === 0 ? 0 : 1;
 }
 
@@ -155,7 +182,9 @@ function alreadyRunning() {
 	} catch {
 		// It has not chosen a port yet.
 	}
-	return new SetupError(`Kerbnote already runs from this folder${where} (process ${pid}); stop it before you start another.`);
+	return new SetupError(
+		`Kerbnote already runs from this folder${where} (process ${pid}); stop it before you start another.`
+	);
 }
 
 /**
@@ -169,7 +198,8 @@ function welcome(address, demo) {
 		const accounts = JSON.parse(readFileSync(accountsFile(folders), 'utf8'));
 		const width = Math.max(...accounts.map((account) => account.email.length));
 		say(`\nDemo accounts (kept in ${relative(ROOT, accountsFile(folders))}):`);
-		for (const { name, email, password, role } of accounts) say(`  ${email.padEnd(width)}  ${password}  ${name}, ${role}`);
+		for (const { name, email, password, role } of accounts)
+			say(`  ${email.padEnd(width)}  ${password}  ${name}, ${role}`);
 	}
 	say('\nStop it with Ctrl-C.');
 }
