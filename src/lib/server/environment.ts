@@ -9,10 +9,15 @@ const environmentSchema = z.object({
 	AUTH_SECRET: z.string().min(32, 'needs at least 32 characters'),
 	/** the address that people type; state changes from any other are refused */
 	ORIGIN: z.url({ protocol: /^https?$/ }).optional(),
-	/** folder of raw files */
+	/** folder of raw files; the same for all processes of one machine */
 	KERBNOTE_STORAGE: z
 		.string()
 		.default('var/storage')
+		.transform((folder) => resolve(folder)),
+	/** folder of the built product, in which the thread entries lie */
+	KERBNOTE_BUILD: z
+		.string()
+		.default('build')
 		.transform((folder) => resolve(folder)),
 	/** largest file that one upload may hand over */
 	KERBNOTE_UPLOAD_LIMIT_BYTES: z.coerce
