@@ -26,7 +26,7 @@ export default {
 		},
 		typescript: {
 			config: (config) => {
-				config.include.push('../migrations/**/*.ts', '../seeds/**/*.ts', '../*.ts', '../*.js');
+				config.include.push('../src/**/*.mjs', '../migrations/**/*.ts', '../seeds/**/*.ts', '../*.ts', '../*.js');
 			}
 		}
 	}

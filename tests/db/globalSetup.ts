@@ -44,10 +44,9 @@ export default async function setUpDatabase(project: TestProject): Promise<() =>
 
 /** Drops the databases of test runs that were killed: their process is gone, nobody else will. */
 async function dropLeftovers(admin: knex.Knex): Promise<void> {
-	const [rows]: [Array<{ name: string }>, unknown] = await admin.raw(
-		'SELECT schema_name AS name FROM information_schema.schemata WHERE schema_name LIKE ?',
-		[`${PREFIX.replaceAll('_', '\\_')}%`]
-	);
+	const rows = await admin('information_schema.schemata')
+		.where('schema_name', 'like', `${PREFIX.replaceAll('_', '\\_')}%`)
+		.select<Array<{ name: string }>>({ name: 'schema_name' });
 	for (const { name } of rows) {
 		const pid = Number(/^kerbnote_test_(\d+)_/.exec(name)?.[1]);
 		if (!lives(pid)) await admin.raw('DROP DATABASE IF EXISTS ??', [name]);

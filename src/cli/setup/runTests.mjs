@@ -65,7 +65,7 @@ export async function main(args) {
 
 /**
  * @param {import('./testArguments.mjs').TestWish} wish
- * @param {ReturnType<typeof listenForStop>} stop
+ * @param {import('./stopRequest.mjs').StopWatch} stop
  * @param {Array<() => unknown>} closing
  * @param {{ passed: number, failed: number }} sum
  */

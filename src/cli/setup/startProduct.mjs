@@ -50,7 +50,7 @@ export async function main(args) {
 }
 
 /**
- * @param {ReturnType<typeof listenForStop>} stop
+ * @param {import('./stopRequest.mjs').StopWatch} stop
  * @param {Array<() => unknown>} closing
  * @returns {Promise<number>}
  */
@@ -95,7 +95,7 @@ async function serve(stop, closing) {
 
 /**
  * @param {Array<{ name: string, alive: () => boolean, lastWords: () => string }>} watched
- * @param {ReturnType<typeof listenForStop>} stop
+ * @param {import('./stopRequest.mjs').StopWatch} stop
  * @returns {Promise<number>}
  */
 async function watch(watched, stop) {

@@ -3,6 +3,12 @@ import { stopRunning } from './processes.mjs';
 /** npm passes Ctrl-C on to a process that the terminal has told already; only a later one is impatience. */
 const SAME_REQUEST_MS = 2000;
 
+/**
+ * @typedef {object} StopWatch
+ * @property {() => boolean} requested
+ * @property {() => void} check  throws StopRequested once there was a request
+ */
+
 /** Thrown between two steps of a start that somebody has asked to stop. */
 export class StopRequested extends Error {}
 
@@ -12,7 +18,7 @@ export class StopRequested extends Error {}
  * The first request ends the command that runs just now and lets the work come to a place where it can stop; one that comes
  * again two seconds later ends this process at once (its services follow by themselves).
  *
- * @returns {{ requested: () => boolean, check: () => void }} `check` throws StopRequested once there was a request
+ * @returns {StopWatch}
  */
 export function listenForStop() {
 	let requestedAt = 0;

@@ -6,7 +6,7 @@ import { dirname } from 'node:path';
  *
  * @param {string} path
  * @param {string} text
- * @param {number} [mode] 0600 by default: what lands in `var/` is nobody else's business
+ * @param {number} [mode] for its owner only by default: what lands in `var/` is nobody else's business
  */
 export function writeWhole(path, text, mode = 0o600) {
 	mkdirSync(dirname(path), { recursive: true });
