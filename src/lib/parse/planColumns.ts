@@ -1,0 +1,139 @@
+import type { Channel } from '../schemas/channels.ts';
+import type { ColumnMapping } from '../schemas/columnMapping.ts';
+import { isUnitId, unitById } from './columnUnits.ts';
+import type { Unit } from './columnUnits.ts';
+import type { Table } from './findTable.ts';
+import { readAngle } from './readAngle.ts';
+import { readNumber } from './readNumber.ts';
+import { readClock, readDate, timeForm } from './readTime.ts';
+import type { TimeForm } from './readTime.ts';
+import { recogniseColumn } from './recogniseColumns.ts';
+import type { HelperColumn } from './recogniseColumns.ts';
+
+/** One column of the file and what is to be done with it. */
+export interface ColumnPlan {
+	header: string;
+	channel: Channel | HelperColumn | null;
+	/** the unit declared in header, row of units, cells or mapping; null: none */
+	unit: Unit | null;
+	confidence: number;
+	/** how times are written; null for other channels */
+	timeForm: TimeForm | null;
+	/** latitude, longitude with letters or degree signs */
+	angle: boolean;
+	samples: string[];
+	/** the header of an earlier column of the same meaning, which is used instead */
+	duplicateOf: string | null;
+	/** set by a person: values are not second-guessed */
+	mapped: boolean;
+}
+
+const MAX_SAMPLES = 3;
+const MAX_SAMPLE_LENGTH = 40;
+const TIMES: ReadonlySet<string> = new Set(['time', 'lapTime', 'lastLapTime']);
+const ANGLES: ReadonlySet<string> = new Set(['latitude', 'longitude']);
+
+/**
+ * Decides what each column of a table is: by mapping where a person set it, else by name and unit; of several columns for one channel
+ * the surest is used, among equals the first that is not constant.
+ */
+export function planColumns(table: Table, mapping?: ColumnMapping): ColumnPlan[] {
+	const plans = table.headers.map((header, column): ColumnPlan => {
+		const cells = table.firstRows.map((row) => row[column] ?? '');
+		const set = mapping?.columns.find(
+			(entry) => entry.header === header && (entry.index === undefined || entry.index === column)
+		);
+		const { channel, unit, confidence } = recogniseColumn(header, table.units[column]);
+		const samples = cells
+			.filter((cell) => cell.trim() !== '')
+			.slice(0, MAX_SAMPLES)
+			.map((cell) => cell.trim().slice(0, MAX_SAMPLE_LENGTH));
+		const plan: ColumnPlan = {
+			header,
+			channel,
+			unit,
+			confidence,
+			timeForm: null,
+			angle: false,
+			samples,
+			duplicateOf: null,
+			mapped: false
+		};
+		if (set) {
+			const chosen = set.unit && isUnitId(set.unit) ? unitById(set.unit) : channel === set.channel ? unit : null;
+			Object.assign(plan, { channel: set.channel, unit: chosen, confidence: set.channel ? 1 : 0, mapped: true });
+		}
+		return readForm(plan, cells, table.decimal);
+	});
+	return chooseOnePerChannel(plans, table);
+}
+
+function readForm(plan: ColumnPlan, cells: readonly string[], decimal: '.' | ','): ColumnPlan {
+	const isNumber = (cell: string) => readNumber(cell, decimal) !== undefined;
+	const channel = plan.channel ?? '';
+	const filled = cells.filter((cell) => cell.trim() !== '');
+	if (TIMES.has(channel) || (channel === 'lap' && filled.some((cell) => cell.includes(':')))) {
+		plan.timeForm = timeForm(cells, isNumber);
+		// "Lap" over stop-watch times is a lap time.
+		if (channel === 'lap' && plan.timeForm === 'clock') plan.channel = 'lapTime';
+	}
+	if (ANGLES.has(channel)) plan.angle = filled.length > 0 && filled.filter(isNumber).length * 2 < filled.length;
+	// A name alone makes no channel of a column of words.
+	else if (!plan.mapped && !plan.timeForm && channel !== '' && !channel.endsWith('Hemisphere') && channel !== 'gear') {
+		if (filled.length > 0 && filled.filter(isNumber).length * 2 < filled.length)
+			Object.assign(plan, { channel: null, confidence: 0 });
+	}
+	return plan;
+}
+
+function chooseOnePerChannel(plans: ColumnPlan[], table: Table): ColumnPlan[] {
+	const chosen = new Map<string, ColumnPlan>();
+	const rank = (plan: ColumnPlan) =>
+		(plan.mapped ? 2 : 0) + plan.confidence - (isConstant(plan, plans, table) ? 0.3 : 0);
+	for (const plan of plans) {
+		if (plan.channel === null) continue;
+		const other = chosen.get(plan.channel);
+		if (!other || rank(plan) > rank(other) + 1e-9) chosen.set(plan.channel, plan);
+	}
+	for (const plan of plans) {
+		const used = plan.channel === null ? plan : chosen.get(plan.channel);
+		if (used === plan || !used) continue;
+		plan.duplicateOf = used.header;
+		plan.channel = null;
+	}
+	return plans;
+}
+
+function isConstant(plan: ColumnPlan, plans: readonly ColumnPlan[], table: Table): boolean {
+	const column = plans.indexOf(plan);
+	const cells = table.firstRows.map((row) => row[column] ?? '');
+	return cells.length > 20 && cells.every((cell) => cell === cells[0]) && plan.channel === 'speed';
+}
+
+const GEARS = new Map([
+	['n', 0],
+	['neutral', 0],
+	['p', 0],
+	['r', -1],
+	['reverse', -1]
+]);
+
+/** How the text of a cell becomes a number for this column: times in their own form, angles in degrees, else as written. */
+export function cellReader(plan: ColumnPlan, decimal: '.' | ','): (text: string) => number | undefined {
+	if (plan.timeForm === 'clock') return (text) => (text.trim() === '' ? NaN : readClock(text));
+	if (plan.timeForm === 'date') return (text) => (text.trim() === '' ? NaN : readDate(text)?.epochS);
+	if (plan.angle) return readAngle;
+	if (plan.channel === 'gear') {
+		return (text) =>
+			GEARS.get(text.trim().toLowerCase()) ?? readNumber(text.replace(/^\s*[a-z]+\s*(?=\d)/i, ''), decimal);
+	}
+	if (plan.channel === 'latitudeHemisphere' || plan.channel === 'longitudeHemisphere') {
+		return (text) => (/^\s*[SW]/i.test(text) ? -1 : 1);
+	}
+	return (text) => readNumber(text, decimal);
+}
+
+/** May plain numbers of this column be read straight from the bytes? */
+export function isPlain(plan: ColumnPlan): boolean {
+	return (plan.timeForm === null || plan.timeForm === 'number') && !plan.angle && !plan.channel?.endsWith('Hemisphere');
+}

@@ -1,0 +1,210 @@
+import type { Warning } from '../schemas/analysisDocument.ts';
+import type { ColumnMapping } from '../schemas/columnMapping.ts';
+import { KerbnoteError } from '../schemas/kerbnoteError.ts';
+import { buildRuns } from './buildRuns.ts';
+import { ByteScanner } from './byteScanner.ts';
+import { isWide } from './columns.ts';
+import type { Columns } from './columns.ts';
+import { ColumnStore } from './columnStore.ts';
+import { decoderLabel, detectEncoding } from './encoding.ts';
+import type { DetectedEncoding } from './encoding.ts';
+import { findTable } from './findTable.ts';
+import type { Table } from './findTable.ts';
+import { cellReader, isPlain, planColumns } from './planColumns.ts';
+import type { ColumnPlan } from './planColumns.ts';
+import { QuotedReader } from './quotedReader.ts';
+import type { RawRun } from './rawRun.ts';
+import { refuseForeignBytes, refuseForeignText } from './refuseForeign.ts';
+import { RowNotes } from './rowNotes.ts';
+import type { RowPlan } from './rowPlan.ts';
+
+export interface ReadOptions {
+	/** name of the file, for messages */
+	fileName: string;
+	/** what a person said about the columns */
+	mapping?: ColumnMapping;
+}
+
+/** Bytes that are looked at before a decision: past any usual preamble, and hundreds of rows. */
+const HEAD_BYTES = 1 << 17;
+/** A first row longer than this has no place in a run. */
+const MAX_HEAD_BYTES = 1 << 20;
+
+interface Reading {
+	table: Table;
+	plans: ColumnPlan[];
+	rowPlan: RowPlan;
+	store: ColumnStore;
+	notes: RowNotes;
+	scanner: ByteScanner;
+	quoted: QuotedReader | null;
+	/** by slot */
+	kept: ColumnPlan[];
+}
+
+/**
+ * Reads a file chunk by chunk into runs. Cost is linear in the file's size; what is held is the recognised columns and one row.
+ *
+ * Plain rows go through a byte scanner; from the first quoted cell on PapaParse reads. UTF-16 is turned into UTF-8 on the way in.
+ *
+ * @example const reader = new RunReader({ fileName: 'run.csv' }); reader.push(bytes); const [run] = reader.end();
+ */
+export class RunReader {
+	readonly #options: ReadOptions;
+	#head: Uint8Array[] = [];
+	#headBytes = 0;
+	#encoding: DetectedEncoding | null = null;
+	#transcoder: TextDecoder | null = null;
+	readonly #encoder = new TextEncoder();
+	#reading: Reading | null = null;
+
+	constructor(options: ReadOptions) {
+		this.#options = options;
+	}
+
+	/** @throws {KerbnoteError} where the file is no table of a run; nothing may be pushed after that */
+	push(chunk: Uint8Array): void {
+		if (this.#reading) {
+			this.#feed(this.#reading, this.#toScan(chunk));
+			return;
+		}
+		this.#head.push(chunk);
+		this.#headBytes += chunk.length;
+		if (this.#headBytes >= HEAD_BYTES) this.#begin(false);
+	}
+
+	/**
+	 * Ends the file.
+	 *
+	 * @returns its runs, at least one
+	 * @throws {KerbnoteError} where it holds none
+	 */
+	end(): RawRun[] {
+		const reading = this.#reading ?? this.#begin(true);
+		if (!reading) throw new RangeError('a whole file must begin a reading or throw');
+		if (this.#transcoder) this.#feed(reading, this.#encoder.encode(this.#transcoder.decode()));
+		if (reading.quoted) reading.quoted.end();
+		else {
+			const rest = reading.scanner.end();
+			if (rest) {
+				this.#handOver(reading, rest);
+				reading.quoted?.end();
+			}
+		}
+		return this.#finish(reading);
+	}
+
+	/** Decides what the file is; null where more of it is needed for that. */
+	#begin(wholeFile: boolean): Reading | null {
+		let head = joined(this.#head, this.#headBytes);
+		if (head.length === 0)
+			throw new KerbnoteError(
+				'empty_file',
+				'the file is empty',
+				'Export the run again and check that the file has a size'
+			);
+		this.#encoding ??= detectEncoding(head);
+		const { encoding, markBytes } = this.#encoding;
+		const wide = encoding === 'utf-16le' || encoding === 'utf-16be';
+		if (!wide) refuseForeignBytes(head, wholeFile);
+		head = head.subarray(markBytes);
+		const decoder = new TextDecoder(decoderLabel(encoding));
+		const text = decoder.decode(head, { stream: true }).replaceAll('\0', '');
+		if (!wholeFile && !/[\r\n]/.test(text) && this.#headBytes < MAX_HEAD_BYTES) return null;
+		refuseForeignText(text);
+		let table: Table;
+		try {
+			table = findTable(text, wholeFile);
+		} catch (error) {
+			// A preamble may be longer than the first look: look again with more before giving up.
+			if (
+				!wholeFile &&
+				this.#headBytes < MAX_HEAD_BYTES &&
+				error instanceof KerbnoteError &&
+				error.code !== 'too_many_columns'
+			)
+				return null;
+			throw error;
+		}
+		this.#reading = this.#plan(table, encoding);
+		this.#head = [];
+		if (wide) this.#transcoder = new TextDecoder(encoding);
+		this.#feed(this.#reading, this.#toScan(head));
+		return this.#reading;
+	}
+
+	#plan(table: Table, encoding: DetectedEncoding['encoding']): Reading {
+		const plans = planColumns(table, this.#options.mapping);
+		const kept = plans.filter(({ channel }) => channel !== null);
+		const slotOf = Int16Array.from(plans, (plan) => kept.indexOf(plan));
+		const wide = encoding === 'utf-16le' || encoding === 'utf-16be';
+		const rowPlan: RowPlan = {
+			delimiter: table.delimiter,
+			decimal: table.decimal,
+			width: table.headers.length,
+			slotOf,
+			readers: kept.map((plan) => cellReader(plan, table.decimal)),
+			plain: Uint8Array.from(kept, (plan) => (isPlain(plan) ? 1 : 0)),
+			firstDataLine: table.firstDataLine,
+			decoder: wide ? 'utf-8' : decoderLabel(encoding)
+		};
+		const store = new ColumnStore(kept.map(({ channel }) => channel !== null && isWide(channel)));
+		const notes = new RowNotes();
+		return { table, plans, rowPlan, store, notes, kept, scanner: new ByteScanner(rowPlan, store, notes), quoted: null };
+	}
+
+	#toScan(chunk: Uint8Array): Uint8Array {
+		return this.#transcoder ? this.#encoder.encode(this.#transcoder.decode(chunk, { stream: true })) : chunk;
+	}
+
+	#feed(reading: Reading, bytes: Uint8Array): void {
+		if (reading.quoted) {
+			reading.quoted.push(bytes);
+			return;
+		}
+		const rest = reading.scanner.push(bytes);
+		if (rest) this.#handOver(reading, rest);
+	}
+
+	#handOver(reading: Reading, rest: Uint8Array): void {
+		reading.quoted = new QuotedReader(reading.rowPlan, reading.store, reading.notes, reading.scanner.line);
+		reading.quoted.push(rest);
+	}
+
+	#finish({ table, plans, store, notes, kept }: Reading): RawRun[] {
+		const { columns, lines } = store.finish();
+		const byChannel: Columns = new Map();
+		kept.forEach((plan, slot) => {
+			if (plan.channel) byChannel.set(plan.channel, columns[slot]);
+		});
+		const encoding = this.#encoding?.encoding ?? 'utf-8';
+		const warnings: Warning[] = notes.toWarnings(kept.map(({ header }) => header));
+		if (this.#encoding?.assumed) {
+			warnings.unshift({ code: 'encoding_assumed', message: `the text was read as ${encoding}`, row: null });
+		}
+		return buildRuns({
+			columns: byChannel,
+			lines,
+			plans,
+			source: {
+				encoding,
+				delimiter: table.delimiter,
+				decimal: table.decimal,
+				headerRow: table.headerLine,
+				metadata: table.metadata
+			},
+			warnings
+		});
+	}
+}
+
+function joined(parts: readonly Uint8Array[], length: number): Uint8Array {
+	if (parts.length === 1) return parts[0];
+	const all = new Uint8Array(length);
+	let at = 0;
+	for (const part of parts) {
+		all.set(part, at);
+		at += part.length;
+	}
+	return all;
+}
