@@ -31,8 +31,9 @@ function doubtOf(confidence: number) {
 
 function rangeOf({ min, max }: SourceColumn) {
 	if (min === null || max === null) return '';
-	const decimals =
-		Math.max(Math.abs(min), Math.abs(max)) >= 100 ? 0 : Math.max(Math.abs(min), Math.abs(max)) >= 10 ? 1 : 2;
+	const largest = Math.max(Math.abs(min), Math.abs(max));
+	const whole = Number.isInteger(min) && Number.isInteger(max);
+	const decimals = whole || largest >= 100 ? 0 : largest >= 10 ? 1 : 2;
 	return `${formatNumber(min, { decimals })} to${NO_BREAK_SPACE}${formatNumber(max, { decimals })}`;
 }
 

@@ -19,8 +19,8 @@ export const CONDITIONS_TEXT: Record<Conditions, string> = {
 export const INTENT_TEXT: Record<Intent, string> = {
 	pace: 'pace',
 	learning: 'learning',
-	fuel: 'saving fuel',
-	tyres: 'warming tyres',
+	fuel: 'fuel',
+	tyres: 'tyres',
 	unknown: 'not said'
 };
 

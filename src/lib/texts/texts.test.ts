@@ -3,6 +3,9 @@ import { channelSchema } from '../schemas/channels.ts';
 import { CHANNEL_ORDER } from './channels.ts';
 import { describeLap } from './laps.ts';
 import { layoutName, runName } from './runs.ts';
+import { describeSource } from './source.ts';
+import { describeUpload, isSettled } from './uploads.ts';
+import { warningText } from './warnings.ts';
 
 describe('describeLap', () => {
 	it.each([
@@ -50,5 +53,65 @@ describe('names of runs and layouts', () => {
 describe('CHANNEL_ORDER', () => {
 	it('names every channel once', () => {
 		expect([...CHANNEL_ORDER].sort()).toEqual([...channelSchema.options].sort());
+	});
+});
+
+describe('warningText', () => {
+	it('makes a sentence of the message and says what follows', () => {
+		expect(warningText({ code: 'no_clean_lap', message: 'no lap of this run is clean' })).toBe(
+			'No lap of this run is clean. The fastest timed lap stands in for it.'
+		);
+	});
+
+	it('leaves a message alone that says it all', () => {
+		expect(warningText({ code: 'metadata', message: 'Two lines above the table were read.' })).toBe(
+			'Two lines above the table were read.'
+		);
+	});
+});
+
+describe('describeSource', () => {
+	const source = {
+		rows: 92210,
+		sampleRateHz: 100,
+		columns: [],
+		warnings: [],
+		encoding: 'utf-8',
+		delimiter: ',',
+		decimal: '.',
+		headerRow: 14,
+		metadata: {}
+	} as const;
+	const shown = (changes: object) =>
+		describeSource({ ...source, columns: [], warnings: [], ...changes }, 18_400_000).replaceAll('\u00a0', ' ');
+
+	it.each([
+		{ changes: {}, expected: '18.4 MB, 92 210 rows, 100 a second · comma, decimal point · names in row 14' },
+		{
+			changes: { delimiter: '\t', decimal: ',', headerRow: null, sampleRateHz: 9.9 },
+			expected: '18.4 MB, 92 210 rows, 9.9 a second · tab, decimal comma · no row of names'
+		}
+	])('says "$expected"', ({ changes, expected }) => {
+		expect(shown(changes)).toBe(expected);
+	});
+});
+
+describe('describeUpload', () => {
+	it.each([
+		{ upload: { state: 'reading', stage: 'laps', error: null }, expected: 'finding laps', settled: false },
+		{ upload: { state: 'stored', stage: 'waiting', error: null }, expected: 'waiting its turn', settled: false },
+		{ upload: { state: 'analysed', stage: 'done', error: null }, expected: 'understood', settled: true },
+		{
+			upload: {
+				state: 'refused',
+				stage: 'reading',
+				error: { code: 'no_header', message: 'no row of names', row: 1, column: null, remedy: 'Export it with names' }
+			},
+			expected: 'refused: no row of names',
+			settled: true
+		}
+	] as const)('says "$expected"', ({ upload, expected, settled }) => {
+		expect(describeUpload(upload)).toBe(expected);
+		expect(isSettled(upload)).toBe(settled);
 	});
 });

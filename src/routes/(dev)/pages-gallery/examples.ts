@@ -91,6 +91,7 @@ const own = lapHead(laps[4], mira);
 const reference: LapHead = {
 	...lapHead(laps[4], rhea),
 	id: id('rheatap'),
+	runId: id('rhearun'),
 	timeS: 97.663,
 	startedAt: '2026-05-03T10:00:00.000Z',
 	shelfName: 'Rhea, May'
@@ -126,7 +127,7 @@ export const run: RunView = {
 	warnings: [],
 	laps,
 	corners: names.map((name, index) => ({
-		id: id(`c${index}`),
+		id: id(`c${String(index).padStart(2, '0')}`),
 		name: index === 2 ? null : name,
 		number: index + 1,
 		startM: 250 + index * 270,
