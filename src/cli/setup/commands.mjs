@@ -1,32 +1,64 @@
 import { existsSync } from 'node:fs';
-import { join } from 'node:path';
+import { join, relative } from 'node:path';
 import { SetupError } from './SetupError.mjs';
+import { ROOT } from './checkout.mjs';
 import { lastLines } from './debianPackages.mjs';
 import { run } from './processes.mjs';
 
 /**
- * Runs one of the built commands (migrate, seed) to its end.
+ * How a program of ours is run: from the build by plain Node, or, while somebody develops, from its source.
  *
- * @param {object} wish
- * @param {string} wish.name   the file's name in `workers/` of the build
- * @param {string} wish.failure  the sentence that is shown where it fails
- * @param {string} wish.root
- * @param {NodeJS.ProcessEnv} wish.env  of `productEnvironment`
- * @throws {SetupError}
+ * @typedef {'built' | 'source'} Way
  */
-export async function runBuilt({ name, failure, root, env }) {
-	const { code, output } = await run(process.execPath, [builtCommand(env, name)], { cwd: root, env });
-	if (code !== 0) throw new SetupError(failure, { details: lastLines(output, 12) });
+
+/**
+ * The arguments for Node that run one of the programs in `src/cli`.
+ *
+ * @param {string} name  migrate, seed, worker, admin
+ * @param {Way} way
+ * @param {string} build  the folder of the build
+ * @returns {string[]}
+ * @throws {SetupError} where the build is not whole
+ */
+export function programArguments(name, way, build) {
+	if (way === 'source') return ['--import', 'tsx', join(ROOT, 'src/cli', `${name}.ts`)];
+	const script = join(build, 'workers', `${name}.js`);
+	if (existsSync(script)) return [script];
+	throw new SetupError(
+		`The build is not whole, ${relative(ROOT, script)} is missing; delete ${relative(ROOT, build)} and start again.`
+	);
 }
 
 /**
- * @param {NodeJS.ProcessEnv} env
- * @param {string} name
- * @returns {string} absolute path
+ * Brings the schema to its newest step and, where wanted, puts the demo in. Both do nothing where that has been done.
+ *
+ * @param {object} wish
+ * @param {NodeJS.ProcessEnv} wish.env  of `productEnvironment`
+ * @param {boolean} wish.demo
+ * @param {Way} wish.way
+ * @param {string} wish.build
+ * @param {string} wish.database  its name in messages
+ * @throws {SetupError} with the program's last words
  */
-export function builtCommand(env, name) {
-	const script = join(env.KERBNOTE_BUILD ?? 'build', 'workers', `${name}.js`);
-	if (!existsSync(script))
-		throw new SetupError(`The build is not whole: ${script} is missing; delete its folder and start again.`);
-	return script;
+export async function migrateAndSeed({ env, demo, way, build, database }) {
+	await runProgram(programArguments('migrate', way, build), env, `${database} could not be brought up to date.`);
+	if (demo)
+		await runProgram(
+			programArguments('seed', way, build),
+			env,
+			`The demo could not be put into ${database.replace(/^The/, 'the')}.`
+		);
+}
+
+/**
+ * @param {string[]} args
+ * @param {NodeJS.ProcessEnv} env
+ * @param {string} failure
+ */
+async function runProgram(args, env, failure) {
+	const { code, output } = await run(process.execPath, args, { cwd: ROOT, env });
+	if (code === 0) return;
+	if (/ENOSPC|is full/.test(output))
+		throw new SetupError('The disk is full; free some space and start again.', { details: lastLines(output) });
+	throw new SetupError(failure, { details: lastLines(output, 12) });
 }

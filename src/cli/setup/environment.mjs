@@ -1,5 +1,6 @@
 import { join } from 'node:path';
 import { SetupError } from './SetupError.mjs';
+import { ROOT } from './checkout.mjs';
 import { secretFrom } from './secrets.mjs';
 
 /**
@@ -10,17 +11,20 @@ import { secretFrom } from './secrets.mjs';
  * @param {string} wish.databaseUrl
  * @param {boolean} wish.demo
  * @param {number} [wish.port]
+ * @param {boolean} [wish.developing]
  * @param {NodeJS.ProcessEnv} [wish.given]
  * @returns {NodeJS.ProcessEnv}
  */
-export function productEnvironment({ folders, databaseUrl, demo, port, given = process.env }) {
+export function productEnvironment({ folders, databaseUrl, demo, port, developing = false, given = process.env }) {
 	return {
 		BODY_SIZE_LIMIT: '600M', // routes have smaller limits of their own
 		SHUTDOWN_TIMEOUT: '10',
 		HOST: '127.0.0.1',
 		...given,
 		...(port === undefined ? {} : { PORT: String(port), ORIGIN: given.ORIGIN || `http://localhost:${port}` }),
-		NODE_ENV: 'production',
+		NODE_ENV: developing ? 'development' : 'production',
+		// Where tsx finds what $lib means, for programs that run from their source.
+		TSX_TSCONFIG_PATH: join(ROOT, 'src/cli/tsconfig.json'),
 		DATABASE_URL: databaseUrl,
 		AUTH_SECRET: given.AUTH_SECRET || secretFrom(join(folders.base, 'auth-secret')),
 		KERBNOTE_STORAGE: given.KERBNOTE_STORAGE || folders.storage,

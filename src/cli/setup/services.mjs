@@ -21,33 +21,46 @@ const LARGEST_LOG_BYTES = 10e6;
 /**
  * Starts a Node script that writes its log to a file and stops when this process goes.
  *
- * @param {{ name: string, script: string, cwd: string, env: NodeJS.ProcessEnv, logFile: string, patienceS?: number }} wish
- *   `patienceS`: how long it may take to stop before it is forced
+ * @param {object} wish
+ * @param {string} wish.name
+ * @param {string[]} wish.args  for Node: options, script, its arguments
+ * @param {string} wish.cwd
+ * @param {NodeJS.ProcessEnv} wish.env
+ * @param {string | null} wish.logFile  null: it writes to the terminal
+ * @param {number} [wish.patienceS]  how long it may take to stop before it is forced
  * @returns {Service}
  */
-export function startService({ name, script, cwd, env, logFile, patienceS = 20 }) {
-	mkdirSync(dirname(logFile), { recursive: true });
-	if (existsSync(logFile) && statSync(logFile).size > LARGEST_LOG_BYTES) renameSync(logFile, `${logFile}.old`);
-	const log = openSync(logFile, 'a', 0o600);
-	const child = spawn(process.execPath, ['--import', new URL('followParent.mjs', import.meta.url).href, script], {
+export function startService({ name, args, cwd, env, logFile, patienceS = 20 }) {
+	const output = logFile === null ? 'inherit' : openLog(logFile);
+	const child = spawn(process.execPath, ['--import', new URL('followParent.mjs', import.meta.url).href, ...args], {
 		cwd,
 		env,
 		// Its own process group: Ctrl-C in the terminal reaches only the start, which stops things in order.
 		detached: true,
-		stdio: ['ignore', log, log, 'ipc']
+		stdio: ['ignore', output, output, 'ipc']
 	});
-	closeSync(log);
+	if (typeof output === 'number') closeSync(output);
 	let ended = false;
 	child.once('error', () => (ended = true));
 	child.once('exit', () => (ended = true));
 	return {
 		name,
 		alive: () => !ended,
-		lastWords: () => lastLines(existsSync(logFile) ? readFileSync(logFile, 'utf8') : ''),
+		lastWords: () => (logFile === null ? '' : lastLines(readFileSync(logFile, 'utf8'))),
 		stop: async () => {
 			if (!ended && child.pid) await stopProcess(child.pid, { patienceS });
 		}
 	};
+}
+
+/**
+ * @param {string} path
+ * @returns {number} a file descriptor to append to
+ */
+function openLog(path) {
+	mkdirSync(dirname(path), { recursive: true });
+	if (existsSync(path) && statSync(path).size > LARGEST_LOG_BYTES) renameSync(path, `${path}.old`);
+	return openSync(path, 'a', 0o600);
 }
 
 /**

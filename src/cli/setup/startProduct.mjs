@@ -1,8 +1,9 @@
 import { readFileSync } from 'node:fs';
 import { join, relative } from 'node:path';
 import { setTimeout as sleep } from 'node:timers/promises';
+import { SetupError } from './SetupError.mjs';
 import { ROOT, foldersOf } from './checkout.mjs';
-import { builtCommand, runBuilt } from './commands.mjs';
+import { migrateAndSeed, programArguments } from './commands.mjs';
 import { checkRoom } from './diskSpace.mjs';
 import { accountsFile, databaseAddress, productEnvironment } from './environment.mjs';
 import { holderOf, tryLock } from './fileLock.mjs';
@@ -11,9 +12,9 @@ import { choosePort, parsePort } from './ports.mjs';
 import { installAndBuild, together } from './prepare.mjs';
 import { run } from './processes.mjs';
 import { report } from './report.mjs';
-import { SetupError } from './SetupError.mjs';
 import { startService, waitForHealth } from './services.mjs';
 import { StopRequested, listenForStop } from './stopRequest.mjs';
+import { welcomeText } from './welcome.mjs';
 
 const folders = foldersOf('product');
 const portFile = join(folders.base, 'ports.json');
@@ -21,11 +22,14 @@ const portFile = join(folders.base, 'ports.json');
 /** @param {string} line */
 const say = (line) => console.log(line);
 
+/** @typedef {import('./commands.mjs').Way} Way */
+
 /**
  * `npm start`: everything from a fresh clone to a served page, then watches until it is asked to stop.
+ * `npm run dev`: the same from the sources, with pages that follow each change.
  * `npm run admin -- …`: the same preparation, then one command instead of the server.
  *
- * @param {string[]} args  [] or ['admin', …]
+ * @param {string[]} args  [], ['dev'] or ['admin', …]
  * @returns {Promise<number>} exit code: 0 after a requested stop, 1 after a failure
  */
 export async function main(args) {
@@ -33,12 +37,13 @@ export async function main(args) {
 	/** What has to be ended, last begun first. @type {Array<() => unknown>} */
 	const closing = [];
 	try {
-		if (args[0] === 'admin') return await runAdmin(args.slice(1), closing);
-		if (args.length > 0)
-			throw new SetupError(
-				`npm start takes no arguments, got "${args.join(' ')}"; settings are environment variables (README.md).`
-			);
-		return await serve(stop, closing);
+		const [command, ...rest] = args;
+		if (command === 'admin') return await runAdmin(rest, closing);
+		if (rest.length === 0 && command === undefined) return await serve('built', stop, closing);
+		if (rest.length === 0 && command === 'dev') return await serve('source', stop, closing);
+		throw new SetupError(
+			`npm start takes no arguments, got "${args.join(' ')}"; its settings are environment variables (README.md).`
+		);
 	} catch (error) {
 		if (error instanceof StopRequested || stop.requested()) return 0;
 		report(error);
@@ -50,11 +55,12 @@ export async function main(args) {
 }
 
 /**
+ * @param {Way} way
  * @param {import('./stopRequest.mjs').StopWatch} stop
  * @param {Array<() => unknown>} closing
  * @returns {Promise<number>}
  */
-async function serve(stop, closing) {
+async function serve(way, stop, closing) {
 	checkRoom(ROOT, folders);
 	const release = tryLock(join(folders.base, 'start.lock'));
 	if (!release) throw alreadyRunning();
@@ -63,97 +69,98 @@ async function serve(stop, closing) {
 	const given = parsePort(process.env.KERBNOTE_PORT || process.env.PORT, 'KERBNOTE_PORT');
 	const host = process.env.HOST || '127.0.0.1';
 	const port = await choosePort({ root: ROOT, use: 'server', file: portFile, given, variable: 'KERBNOTE_PORT', host });
-	const { database, demo } = await prepare(closing, stop.check);
-	const env = productEnvironment({ folders, databaseUrl: database.url, demo, port });
+	const { database, demo } = await prepare(way, closing, stop.check);
+	const developing = way === 'source';
+	const env = productEnvironment({ folders, databaseUrl: database.url, demo, port, developing });
+	await migrateAndSeed({ env, demo, way, build: folders.build, database: databaseName() });
 	stop.check();
 
-	/** @param {string} name @param {string} script */
-	const service = (name, script) => {
-		const started = startService({ name, script, cwd: ROOT, env, logFile: join(folders.logs, `${name}.log`) });
+	/** @param {string} name @param {string[]} args */
+	const service = (name, args) => {
+		const logFile = developing ? null : join(folders.logs, `${name}.log`);
+		const started = startService({ name, args, cwd: ROOT, env, logFile });
 		closing.push(started.stop);
 		return started;
 	};
-	await migrateAndSeed(env, demo);
-	stop.check();
-	const server = service('server', join(folders.build, 'index.js'));
-	const worker = service('worker', builtCommand(env, 'worker'));
-	const watched = [server, worker, database];
-	const healthHost = ['0.0.0.0', '::'].includes(host) ? '127.0.0.1' : host.includes(':') ? `[${host}]` : host;
-	const healthy = await waitForHealth(`http://${healthHost}:${port}/health/live`, {
-		alive: () => server.alive() && !stop.requested()
-	});
+	const vite = [
+		join(ROOT, 'node_modules/vite/bin/vite.js'),
+		'dev',
+		'--port',
+		`${port}`,
+		'--host',
+		host,
+		'--strictPort'
+	];
+	const server = service('server', developing ? vite : [join(folders.build, 'index.js')]);
+	const worker = service('worker', programArguments('worker', way, folders.build));
+
+	const alive = () => server.alive() && !stop.requested();
+	const healthy = await waitForHealth(`http://${reachable(host)}:${port}/health/live`, { alive });
 	stop.check();
 	if (!healthy) {
 		throw new SetupError(
 			`The server did not come up; its log is ${relative(ROOT, join(folders.logs, 'server.log'))}.`,
-			{ details: server.lastWords() }
+			{
+				details: server.lastWords()
+			}
 		);
 	}
-	welcome(env.ORIGIN ?? '', demo);
-	return watch(watched, stop);
+	say(welcomeText(env.ORIGIN ?? '', demo ? accountsFile(folders) : null));
+	return watch([server, worker, database], stop);
 }
 
 /**
- * @param {Array<{ name: string, alive: () => boolean, lastWords: () => string }>} watched
+ * @param {string} host  where the server listens
+ * @returns {string} where it can be asked: listening everywhere is no address
+ */
+function reachable(host) {
+	if (host === '0.0.0.0' || host === '::') return '127.0.0.1';
+	return host.includes(':') ? `[${host}]` : host;
+}
+
+/**
+ * Waits until somebody asks to stop.
+ *
+ * @param {Array<{ name: string, alive: () => boolean, lastWords: () => string }>} parts
  * @param {import('./stopRequest.mjs').StopWatch} stop
  * @returns {Promise<number>}
+ * @throws {SetupError} where a part has ended by itself: the rest would only seem to work
  */
-async function watch(watched, stop) {
-	for (;;) {
-		if (stop.requested()) return 0;
-		const dead = watched.find((part) => !part.alive());
+async function watch(parts, stop) {
+	while (!stop.requested()) {
+		const dead = parts.find((part) => !part.alive());
 		if (dead) {
-			throw new SetupError(
-				`The ${dead.name} has ended by itself, so everything is stopped; its log is in ${relative(ROOT, folders.base)}.`,
-				{
-					details: dead.lastWords()
-				}
-			);
+			const logs = relative(ROOT, dead.name === 'database' ? folders.database : folders.logs);
+			throw new SetupError(`The ${dead.name} has ended by itself, so the rest was stopped; its log is in ${logs}.`, {
+				details: dead.lastWords()
+			});
 		}
 		await sleep(100);
 	}
+	return 0;
 }
 
 /**
  * Packages, build and database: what the server and the commands both need.
  *
+ * @param {Way} way
  * @param {Array<() => unknown>} closing
  * @param {() => void} [check]
  */
-async function prepare(closing, check) {
+async function prepare(way, closing, check) {
 	const external = process.env.DATABASE_URL;
 	if (external) databaseAddress(external);
 	const startDatabase = async () => {
 		if (external) return { name: 'database', url: external, alive: () => true, lastWords: () => '' };
-		const mariadb = await startMariadb({
-			root: ROOT,
-			folder: folders.database,
-			programs: folders.programs,
-			portFile,
-			durable: true,
-			say
-		});
+		const { database: folder, programs } = folders;
+		const mariadb = await startMariadb({ root: ROOT, folder, programs, portFile, durable: true, say });
 		closing.push(mariadb.stop);
 		return { name: 'database', ...mariadb };
 	};
-	const [database] = await together([
-		startDatabase(),
-		installAndBuild({ root: ROOT, build: folders.build, say, check })
-	]);
-	const demo = external ? process.env.KERBNOTE_DEMO === '1' : process.env.KERBNOTE_DEMO !== '0';
-	return { database, demo };
-}
-
-/**
- * @param {NodeJS.ProcessEnv} env
- * @param {boolean} demo
- */
-async function migrateAndSeed(env, demo) {
-	const where = process.env.DATABASE_URL
-		? `The database ${databaseAddress(process.env.DATABASE_URL)} (DATABASE_URL)`
-		: 'The database';
-	await runBuilt({ name: 'migrate', failure: `${where} could not be brought up to date.`, root: ROOT, env });
-	if (demo) await runBuilt({ name: 'seed', failure: 'The demo could not be put into the database.', root: ROOT, env });
+	const build = way === 'built' ? folders.build : undefined;
+	const [database] = await together([startDatabase(), installAndBuild({ root: ROOT, build, say, check })]);
+	check?.();
+	return { database, demo: external ? process.env.KERBNOTE_DEMO === '1' : process.env.KERBNOTE_DEMO !== '0' };
 }
 
 /**
@@ -163,15 +170,18 @@ async function migrateAndSeed(env, demo) {
  */
 async function runAdmin(args, closing) {
 	checkRoom(ROOT, folders);
-	const { database, demo } = await prepare(closing);
-	const env = productEnvironment({ folders, databaseUrl: database.url, demo });
-	await migrateAndSeed(env, false);
-	const { code } = await run(process.execPath, [builtCommand(env, 'admin'), ...args], {
-		cwd: ROOT,
-		env,
-		inherit: true
-	});
+	const { database } = await prepare('built', closing);
+	const env = productEnvironment({ folders, databaseUrl: database.url, demo: false });
+	const { build } = folders;
+	await migrateAndSeed({ env, demo: false, way: 'built', build, database: databaseName() });
+	const command = [...programArguments('admin', 'built', build), ...args];
+	const { code } = await run(process.execPath, command, { cwd: ROOT, env, inherit: true });
 	return code === 0 ? 0 : 1;
+}
+
+function databaseName() {
+	const external = process.env.DATABASE_URL;
+	return external ? `The database ${databaseAddress(external)} of DATABASE_URL` : 'The database';
 }
 
 function alreadyRunning() {
@@ -185,21 +195,4 @@ function alreadyRunning() {
 	return new SetupError(
 		`Kerbnote already runs from this folder${where} (process ${pid}); stop it before you start another.`
 	);
-}
-
-/**
- * @param {string} address
- * @param {boolean} demo
- */
-function welcome(address, demo) {
-	say(`\nKerbnote is ready: ${address}`);
-	if (demo) {
-		/** @type {Array<{ name: string, email: string, password: string, role: string }>} */
-		const accounts = JSON.parse(readFileSync(accountsFile(folders), 'utf8'));
-		const width = Math.max(...accounts.map((account) => account.email.length));
-		say(`\nDemo accounts (kept in ${relative(ROOT, accountsFile(folders))}):`);
-		for (const { name, email, password, role } of accounts)
-			say(`  ${email.padEnd(width)}  ${password}  ${name}, ${role}`);
-	}
-	say('\nStop it with Ctrl-C.');
 }

@@ -1,7 +1,7 @@
 import { mkdirSync, rmSync } from 'node:fs';
 import { join } from 'node:path';
 import { ROOT, foldersOf } from './checkout.mjs';
-import { builtCommand, runBuilt } from './commands.mjs';
+import { migrateAndSeed, programArguments } from './commands.mjs';
 import { accountsFile, productEnvironment } from './environment.mjs';
 import { choosePort, parsePort } from './ports.mjs';
 import { SetupError } from './SetupError.mjs';
@@ -33,14 +33,13 @@ export async function serveForJourneys(serverUrl) {
 	// The person's own settings are for their product: the journeys run on known ones.
 	const given = { ...process.env, ORIGIN: '', HOST: '127.0.0.1', AUTH_SECRET: '', KERBNOTE_STORAGE: '' };
 	const env = productEnvironment({ folders, databaseUrl: database, demo: true, port, given });
-	await runBuilt({ name: 'migrate', failure: 'The schema could not be made from empty.', root: ROOT, env });
-	await runBuilt({ name: 'seed', failure: 'The demo could not be put into an empty database.', root: ROOT, env });
+	const { build, logs } = folders;
+	await migrateAndSeed({ env, demo: true, way: 'built', build, database: 'The empty database of the journeys' });
 
-	/** @param {string} name @param {string} script */
-	const service = (name, script) =>
-		startService({ name, script, cwd: ROOT, env, logFile: join(folders.logs, `${name}.log`) });
-	const server = service('server', join(folders.build, 'index.js'));
-	const worker = service('worker', builtCommand(env, 'worker'));
+	/** @param {string} name @param {string[]} args */
+	const service = (name, args) => startService({ name, args, cwd: ROOT, env, logFile: join(logs, `${name}.log`) });
+	const server = service('server', [join(build, 'index.js')]);
+	const worker = service('worker', programArguments('worker', 'built', build));
 	const stop = async () => {
 		await Promise.all([server.stop(), worker.stop()]);
 	};
