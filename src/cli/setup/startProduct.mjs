@@ -1,4 +1,4 @@
-import { readFileSync } from 'node:fs';
+import { readFileSync, rmSync } from 'node:fs';
 import { join, relative } from 'node:path';
 import { setTimeout as sleep } from 'node:timers/promises';
 import { SetupError } from './SetupError.mjs';
@@ -15,9 +15,12 @@ import { report } from './report.mjs';
 import { startService, waitForHealth } from './services.mjs';
 import { StopRequested, listenForStop } from './stopRequest.mjs';
 import { welcomeText } from './welcome.mjs';
+import { writeWhole } from './writeWhole.mjs';
 
 const folders = foldersOf('product');
 const portFile = join(folders.base, 'ports.json');
+/** Says to a second start where the first one serves. */
+const addressFile = join(folders.base, 'address');
 
 /** @param {string} line */
 const say = (line) => console.log(line);
@@ -72,6 +75,8 @@ async function serve(way, stop, closing) {
 	const { database, demo } = await prepare(way, closing, stop.check);
 	const developing = way === 'source';
 	const env = productEnvironment({ folders, databaseUrl: database.url, demo, port, developing });
+	writeWhole(addressFile, `${env.ORIGIN}\n`);
+	closing.push(() => rmSync(addressFile, { force: true }));
 	await migrateAndSeed({ env, demo, way, build: folders.build, database: databaseName() });
 	stop.check();
 
@@ -188,9 +193,9 @@ function alreadyRunning() {
 	const pid = holderOf(join(folders.base, 'start.lock'));
 	let where = '';
 	try {
-		where = ` at http://localhost:${JSON.parse(readFileSync(portFile, 'utf8')).server}`;
+		where = ` at ${readFileSync(addressFile, 'utf8').trim()}`;
 	} catch {
-		// It has not chosen a port yet.
+		// It has not come so far yet.
 	}
 	return new SetupError(
 		`Kerbnote already runs from this folder${where} (process ${pid}); stop it before you start another.`
