@@ -1,16 +1,18 @@
 import { capitalise } from '../format/count.ts';
 import { formatNumber } from '../format/number.ts';
 import { MINUS, NO_BREAK_SPACE } from '../format/signs.ts';
+import { formatUnit } from '../format/unit.ts';
 import type { SourceColumn } from '../schemas/analysisDocument.ts';
 import { channelSchema, type Channel } from '../schemas/channels.ts';
 import { CHANNEL_ORDER, CHANNEL_TEXT } from '../texts/channels.ts';
+import { unitAfterReading, unitText } from '../texts/columnUnit.ts';
 
 export interface ColumnRow {
 	/** what the product needs it for */
 	need: string;
 	/** header in the file; null where the file has no such column */
 	header: string | null;
-	/** as in the file */
+	/** as in the file, and what it became */
 	unit: string;
 	samples: string[];
 	range: string;
@@ -29,12 +31,12 @@ function doubtOf(confidence: number) {
 	return confidence >= FAIRLY_SURE ? 'fairly sure' : 'a guess, please check';
 }
 
-function rangeOf({ min, max }: SourceColumn) {
+function rangeOf(channel: Channel, { min, max, unit }: SourceColumn) {
 	if (min === null || max === null) return '';
 	const largest = Math.max(Math.abs(min), Math.abs(max));
 	const whole = Number.isInteger(min) && Number.isInteger(max);
 	const decimals = whole || largest >= 100 ? 0 : largest >= 10 ? 1 : 2;
-	return `${formatNumber(min, { decimals })} to${NO_BREAK_SPACE}${formatNumber(max, { decimals })}`;
+	return `${formatNumber(min, { decimals })} to${NO_BREAK_SPACE}${formatUnit(max, unitAfterReading(channel, unit), { decimals })}`;
 }
 
 /**
@@ -51,9 +53,9 @@ export function columnRows(
 			.map((column) => ({
 				need: CHANNEL_TEXT[channel],
 				header: column.header,
-				unit: column.unit,
+				unit: unitText(channel, column.unit),
 				samples: column.samples.map((sample) => sample.replace(/^-/, MINUS)),
-				range: rangeOf(column),
+				range: rangeOf(channel, column),
 				doubt: doubtOf(column.confidence),
 				instead: null
 			}))
