@@ -1,0 +1,87 @@
+import type { Comparison, Corner, CornerMetrics } from '../../schemas/analysisDocument.ts';
+import type { FullThrottleModel } from '../car/fullThrottle.ts';
+import { countsOnce } from '../findings/countsOnce.ts';
+import { differenceOf } from '../findings/difference.ts';
+import { nameFindings } from '../findings/nameFindings.ts';
+import type { LapGrid } from '../model.ts';
+import { attributeLoss } from './attributeLoss.ts';
+import { cornerPlaces } from './cornerPlaces.ts';
+import { deltaTrace } from './deltaTrace.ts';
+import { cornerBorders, cutLedger } from './ledger.ts';
+import { speedGap } from './speedGap.ts';
+import { planStages } from './stages.ts';
+
+/** One of the two laps: its traces on the path's grid and its corner metrics. */
+export interface CompareSide {
+	grid: LapGrid;
+	/** of this lap */
+	metrics: CornerMetrics[];
+}
+
+export interface CompareInput {
+	driver: CompareSide;
+	reference: CompareSide;
+	corners: Corner[];
+	/** the driver's whole run, for habits and for the car at full throttle */
+	run: { metrics: CornerMetrics[]; cleanLaps: number[]; fullThrottle: FullThrottleModel | null };
+}
+
+/** Room before the first braking, so that the gap there is read before it changes. */
+const LEAD_M = 10;
+
+/**
+ * Compares two laps on one path: Δ at every metre, the time ledger that sums to it, and what cost the time.
+ *
+ * Works from stored data alone. Under 15 ms for 5 km.
+ *
+ * @throws {RangeError} if the laps lie on paths of different length
+ */
+export function compareLaps({ driver, reference, corners, run }: CompareInput): Comparison {
+	const trace = deltaTrace(driver.grid, reference.grid);
+	const { lengthM } = trace;
+	const places = cornerPlaces(corners, lengthM, driver.metrics, reference.metrics);
+	const borders = places.map(cornerBorders);
+	const ledger = cutLedger(trace, borders);
+
+	const margin = Math.min(driver.grid.marginM, reference.grid.marginM);
+	const entries = borders.map(({ entryM }) => entryM);
+	const fromM = Math.max(Math.floor(Math.min(0, ...entries) - LEAD_M), -margin);
+	const gap = speedGap(driver.grid, reference.grid, fromM, Math.ceil(lengthM));
+	const idle = places.map((place) => {
+		const of = (metrics: CornerMetrics[]) => metrics.find((m) => m.corner === place.number);
+		const pair = { driver: of(driver.metrics), reference: of(reference.metrics), apexM: place.apexM, lengthM };
+		const gapS = differenceOf(pair, 'idleGapS');
+		return gapS !== null && gapS.counts && gapS.by > 0;
+	});
+	const plan = planStages(places, entries, idle, driver.grid, reference.grid, fromM, Math.ceil(lengthM));
+	const losses = attributeLoss(gap, plan, ledger, run.fullThrottle);
+	const clean = new Set(run.cleanLaps);
+	const findings = nameFindings({
+		places,
+		rows: ledger,
+		losses,
+		gap,
+		driver,
+		reference,
+		cleanMetrics: run.metrics.filter((m) => clean.has(m.lap))
+	});
+	const unexplained = ledger.map(({ corner, totalS }) => {
+		const explained = findings
+			.filter(countsOnce)
+			.flatMap(({ shares }) => shares)
+			.filter((share) => share.corner === corner)
+			.reduce((sum, { costS }) => sum + costS, 0);
+		return { corner, costS: totalS - explained };
+	});
+	return {
+		lap: driver.grid.lapNumber,
+		referenceLap: reference.grid.lapNumber,
+		deltaS: trace.finalS,
+		stepM: 1,
+		delta: Array.from(trace.deltaS),
+		referenceMetrics: reference.metrics,
+		ledger,
+		findings,
+		unexplained
+	};
+}
