@@ -1,0 +1,51 @@
+import type { Handle, RequestEvent } from '@sveltejs/kit';
+import { problemResponse } from '../http/problem.ts';
+
+const SAFE_METHODS = new Set(['GET', 'HEAD', 'OPTIONS']);
+/** Forms and JSON; raw files have a limit of their own and one route. */
+const LARGEST_BODY_BYTES = 512 * 1024;
+const RAW_UPLOAD_PATH = '/api/v1/uploads';
+
+/**
+ * Stops what no route needs to see: a change asked for by a page of another site, and bodies that nobody would read.
+ *
+ * A browser sends Origin with every change. A program signs in by token, which no other site's page can add, so it may leave
+ * Origin out.
+ */
+export const guardRequest: Handle = async ({ event, resolve }) => {
+	const { request } = event;
+	if (!SAFE_METHODS.has(request.method)) {
+		if (!hasBearer(event) && request.headers.get('origin') !== event.url.origin) {
+			return problemResponse({
+				status: 403,
+				code: 'foreign_origin',
+				detail: `a change requires the origin ${event.url.origin}, got ${request.headers.get('origin') ?? 'none'}`
+			});
+		}
+		const refusal = refuseBody(event);
+		if (refusal) return refusal;
+	}
+	return await resolve(event);
+};
+
+export function hasBearer(event: Pick<RequestEvent, 'request'>): boolean {
+	return /^bearer /i.test(event.request.headers.get('authorization') ?? '');
+}
+
+/** Every body but a raw upload states its length, so that the limit holds before a byte is read. */
+function refuseBody(event: RequestEvent): Response | null {
+	const { request } = event;
+	if (request.body === null || (request.method === 'PUT' && event.url.pathname === RAW_UPLOAD_PATH)) return null;
+	const stated = request.headers.get('content-length');
+	if (stated === null) {
+		return problemResponse({ status: 411, code: 'length_required', detail: 'the request requires a Content-Length' });
+	}
+	if (!(Number(stated) <= LARGEST_BODY_BYTES)) {
+		return problemResponse({
+			status: 413,
+			code: 'body_too_large',
+			detail: `the request requires at most ${LARGEST_BODY_BYTES} bytes, got ${stated}`
+		});
+	}
+	return null;
+}
