@@ -4,7 +4,8 @@ import { findViewer } from './findViewer.ts';
 import { guardRequest } from './guardRequest.ts';
 import { nameRequest } from './nameRequest.ts';
 import { setHeaders } from './setHeaders.ts';
+import { setTheme } from './setTheme.ts';
 import { speakProblem } from './speakProblem.ts';
 
 /** From outside to inside: each sees the request before the next, and the answer after it. */
-export const handle = sequence(nameRequest, setHeaders, speakProblem, guardRequest, authenticate, findViewer);
+export const handle = sequence(nameRequest, setHeaders, speakProblem, guardRequest, authenticate, findViewer, setTheme);
