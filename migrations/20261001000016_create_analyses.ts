@@ -1,6 +1,6 @@
 import type { Knex } from 'knex';
 
-/** One reading of a run: which code, mapping, path and map it stands on. A newer one supersedes it in one transaction. */
+/** One reading of a run: which code, mapping, path and map it stands on. A newer one takes its place in one transaction. */
 export async function up(knex: Knex): Promise<void> {
 	await knex.raw(`
 		CREATE TABLE IF NOT EXISTS analyses (
@@ -18,8 +18,7 @@ export async function up(knex: Knex): Promise<void> {
 			full_throttle JSON NULL,
 			speed_strip JSON NOT NULL,
 			created_at DATETIME(3) NOT NULL DEFAULT CURRENT_TIMESTAMP(3),
-			superseded_at DATETIME(3) NULL,
-			KEY analyses_run (run_id, superseded_at),
+			KEY analyses_run (run_id),
 			KEY analyses_path (layout_id, path_version),
 			KEY analyses_map (layout_id, map_version),
 			CONSTRAINT analyses_run_id_fk FOREIGN KEY (run_id) REFERENCES runs (id) ON DELETE CASCADE,

@@ -10,9 +10,9 @@ const environmentSchema = z.object({
 	/** the address that people type; state changes from any other are refused */
 	ORIGIN: z.url({ protocol: /^https?$/ }).optional(),
 	/** folder of raw files; the same for all processes of one machine */
-	KERBNOTE_STORAGE: z
+	KERBNOTE_FILES: z
 		.string()
-		.default('var/storage')
+		.default('var/files')
 		.transform((folder) => resolve(folder)),
 	/** folder of the built product, in which the thread entries lie */
 	KERBNOTE_BUILD: z

@@ -1,0 +1,89 @@
+import type { Viewer } from '../access/viewer.ts';
+import { mayUpload } from '../auth/throttle.ts';
+import { database } from '../db/database.ts';
+import { encodePublicId, newPublicId } from '../db/publicId.ts';
+import { retryOnDeadlock } from '../db/retryOnDeadlock.ts';
+import { environment } from '../environment.ts';
+import { RequestProblem } from '../http/problem.ts';
+import { enqueue } from '../jobs/jobQueue.ts';
+import { FileTooLarge, type KeptFile } from '../storage/rawStore.ts';
+import { rawStore, storageKeyOf } from '../storage/store.ts';
+import { importKey } from './importKey.ts';
+
+const LONGEST_NAME = 255;
+
+/**
+ * Keeps a raw file and queues its import. The row comes first and says "receiving", so that nothing is on disk that no row
+ * speaks of; the file's name and the job come with one transaction, so that a kept file is always worked on.
+ *
+ * @param fileName as the browser says it; only its last part is kept
+ * @param body the bytes, in chunks; gzip is kept as it came
+ * @returns the upload's public id
+ * @throws {RequestProblem} `throttled`, `too_large`, `upload_interrupted`, `unavailable`; nothing is kept then
+ */
+export async function receiveUpload(viewer: Viewer, fileName: string, body: AsyncIterable<Uint8Array>): Promise<string> {
+	const db = database();
+	if (!(await mayUpload(db, viewer.personId))) {
+		throw new RequestProblem(429, 'throttled', 'an hour holds at most 200 uploads of one person', {
+			remedy: 'Wait a while, then hand over the rest'
+		});
+	}
+	const publicId = newPublicId();
+	const id = encodePublicId(publicId);
+	const storageKey = storageKeyOf(id);
+	const [uploadId]: number[] = await db('uploads').insert({
+		public_id: publicId,
+		owner_id: viewer.personId,
+		uploaded_by: viewer.personId,
+		file_name: cleanName(fileName),
+		storage_key: storageKey,
+		state: 'receiving'
+	});
+	let kept: KeptFile;
+	try {
+		kept = await rawStore().write(storageKey, body, environment().KERBNOTE_UPLOAD_LIMIT_BYTES);
+	} catch (error) {
+		await db('uploads').where({ id: uploadId }).delete();
+		throw problemOfWrite(error);
+	}
+	await retryOnDeadlock(db, async (trx) => {
+		await trx('uploads')
+			.where({ id: uploadId })
+			.update({
+				state: 'stored',
+				size_bytes: kept.sizeBytes,
+				sha256: kept.sha256,
+				stored_at: trx.raw('CURRENT_TIMESTAMP(3)')
+			});
+		await enqueue(trx, 'importRun', { uploadId, revision: 1 }, { uniqueKey: importKey(uploadId, 1) });
+	});
+	return id;
+}
+
+/** The last part of a path, without characters that steer a terminal or a header. */
+export function cleanName(fileName: string): string {
+	const last = fileName.normalize('NFC').split(/[/\\]/).pop() ?? '';
+	const clean = last.replaceAll(/\p{Cc}|\p{Cf}/gu, '').trim();
+	return [...clean].slice(0, LONGEST_NAME).join('') || 'run.csv';
+}
+
+function problemOfWrite(error: unknown): unknown {
+	if (error instanceof FileTooLarge) {
+		const limitMb = Math.floor(error.limitBytes / 1024 / 1024);
+		return new RequestProblem(413, 'too_large', `a file requires at most ${limitMb} MB`, {
+			remedy: 'Cut the recording into runs, or compress it with gzip'
+		});
+	}
+	if (error instanceof Error && 'code' in error && typeof error.code === 'string') {
+		if (error.code === 'ENOSPC' || error.code === 'EDQUOT') {
+			return new RequestProblem(503, 'unavailable', 'there is no room for the file at the moment', { remedy: 'Try again later' });
+		}
+		if (INTERRUPTED.has(error.code)) {
+			return new RequestProblem(400, 'upload_interrupted', 'the file ended before all of it was here', { remedy: 'Send it again' });
+		}
+	}
+	return error;
+}
+
+/** What the way to the browser throws when it goes away in mid-file. */
+const INTERRUPTED = new Set(['ECONNRESET', 'ABORT_ERR', 'ERR_STREAM_PREMATURE_CLOSE', 'UND_ERR_ABORTED', 'EPIPE']);
