@@ -1,4 +1,5 @@
-import { readFileSync } from 'node:fs';
+import { createHash } from 'node:crypto';
+import { existsSync, readFileSync, writeFileSync } from 'node:fs';
 import { join } from 'node:path';
 import { SetupError } from './SetupError.mjs';
 import { lastLines } from './debianPackages.mjs';
@@ -20,7 +21,7 @@ export async function installNpmPackages(root, say) {
 	const { code, output } = await run(npm, ['ci', '--include=dev', '--no-audit', '--no-fund', '--loglevel=error'], {
 		cwd: root
 	});
-	if (code === 0) return;
+	if (code === 0) return writeFileSync(mark, lockHash);
 	if (/ENOSPC/.test(output)) {
 		throw new SetupError(
 			`The disk is full (${root}); the packages need about 350 MB; free some space and start again.`
@@ -40,14 +41,15 @@ export async function installNpmPackages(root, say) {
 }
 
 /**
- * @typedef {{ packages?: Record<string, { version?: string, integrity?: string, optional?: boolean }> }} Lock
+ * @typedef {{ packages?: Record<string, { version?: string, integrity?: string, optional?: boolean, extraneous?: boolean }> }} Lock
  */
 
 /**
  * Whether what npm last installed is what the lock file lists.
  *
  * npm writes its record (`node_modules/.package-lock.json`) as the last act of an install, so a broken-off one has none; an
- * install without development packages lacks them. Packages for other platforms are optional and may be absent.
+ * install without development packages lacks them. Packages for other platforms are optional and may be absent, and so may what
+ * the lock file itself calls extraneous.
  *
  * @param {Lock | null} wanted     package-lock.json
  * @param {Lock | null} installed  node_modules/.package-lock.json
@@ -56,7 +58,7 @@ export async function installNpmPackages(root, say) {
 export function packagesMatch(wanted, installed) {
 	if (!wanted?.packages || !installed?.packages) return false;
 	for (const [name, entry] of Object.entries(wanted.packages)) {
-		if (name === '') continue;
+		if (name === '' || entry.extraneous) continue;
 		const present = installed.packages[name];
 		if (!present) {
 			if (entry.optional) continue;

@@ -13,7 +13,7 @@ const SAME_REQUEST_MS = 2000;
 export class StopRequested extends Error {}
 
 /**
- * Listens for Ctrl-C, SIGTERM and a closed terminal.
+ * Listens for Ctrl-C, SIGTERM, a closed terminal and the end of the npm that began this process.
  *
  * The first request ends the command that runs just now and lets the work come to a place where it can stop; one that comes
  * again two seconds later ends this process at once (its services follow by themselves).
@@ -27,6 +27,11 @@ export function listenForStop() {
 		requestedAt ||= Date.now();
 		stopRunning();
 	};
+	// npm, killed without a chance to pass it on, leaves its script behind: a changed parent says so.
+	const parent = process.ppid;
+	if (process.env.npm_lifecycle_event) {
+		setInterval(() => process.ppid !== parent && !requestedAt && request(), 500).unref();
+	}
 	for (const name of /** @type {const} */ (['SIGINT', 'SIGTERM', 'SIGHUP'])) process.on(name, request);
 	return {
 		requested: () => requestedAt > 0,
