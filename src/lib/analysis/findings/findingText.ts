@@ -110,19 +110,19 @@ const SENTENCES: Record<FindingCode, Sentence> = {
 	idle_gap: (_, first) => [
 		'Neither turns nor accelerates hard for ',
 		...against(first),
-		' before the next corner of the chain.'
+		', before the next corner of the chain.'
 	],
 	lock_up: (_, first) => ['Lock-ups: ', ...against(first), '. Check for a flat spot.'],
 	line: (find, first) => {
 		const offset = find('offset');
 		const side = offset ? [`, ${offset.by} beside the reference’s line`] : [];
-		return ['Turns a radius of ', ...against(first), ` at ${first.at}`, ...side, '.'];
+		return ['Turns a radius of ', ...against(first), `, at ${first.at}`, ...side, '.'];
 	},
-	grip_unused: (_, first) => ['Corners with ', ...against(first), ` at ${first.at}, on the same radius.`],
+	grip_unused: (_, first) => ['Corners with ', ...against(first), `, at ${first.at}, on the same radius.`],
 	car_or_wind: (_, first) => [
 		'Reaches ',
 		...against(first),
-		' at the end of the straight, which arrival speed and full throttle do not explain: car, tow or wind.'
+		', at the end of the straight, which arrival speed and full throttle do not explain: car, tow or wind.'
 	],
 	carried_in: (find, first) => {
 		const corner = find('fromCorner');

@@ -13,7 +13,7 @@ export function fixed(value: number, digits: number): string {
 /** Digits for two values that a sentence sets side by side: as few as keep them apart. */
 export function digitsFor(unit: string, driver: number | null, reference: number | null): number {
 	const apart = driver !== null && reference !== null ? Math.abs(driver - reference) : Infinity;
-	if (unit === 's') return apart < 0.1 ? 2 : 1;
+	if (unit === 's') return apart < 0.25 ? 2 : 1;
 	if (unit === 'm/s²') return 1;
 	if (unit === '') return 0;
 	return apart < 2 ? 1 : 0;
