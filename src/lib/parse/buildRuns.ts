@@ -236,7 +236,7 @@ function splitRuns(table: ReadTable, { timeline, lines, clock, warnings, describ
 		const source: SourceSummary = {
 			...table.source,
 			rows: to - from,
-			sampleRateHz: roundRate(1 / typicalStep(seconds)),
+			sampleRateHz: sampleRate(seconds),
 			columns: described,
 			warnings: [...warnings]
 		};
@@ -256,6 +256,15 @@ function cut(column: Column, from: number, to: number): Column {
 	return from === 0 && to === column.length ? column : column.slice(from, to);
 }
 
-function roundRate(rate: number): number {
-	return Number.isFinite(rate) ? Math.round(rate * 1000) / 1000 : 0;
+/** Samples per second, from the steps near the usual one: pauses do not count. */
+function sampleRate(seconds: Float64Array): number {
+	const usual = typicalStep(seconds);
+	let [sum, count] = [0, 0];
+	for (let i = 1; i < seconds.length; i++) {
+		const step = seconds[i] - seconds[i - 1];
+		if (step > 1.5 * usual) continue;
+		sum += step;
+		count++;
+	}
+	return sum > 0 ? Math.round((count / sum) * 1000) / 1000 : 0;
 }

@@ -187,9 +187,10 @@ function decimalSign(rows: readonly string[][], delimiter: Delimiter): '.' | ','
 			const text = cell.trim();
 			if (!/^[+\-\u2212]?[\d.,\s'’]+(?:e[+-]?\d+)?$/i.test(text)) continue;
 			const [lastComma, lastPoint] = [text.lastIndexOf(','), text.lastIndexOf('.')];
-			if (lastComma >= 0 && lastPoint >= 0) lastComma > lastPoint ? comma++ : point++;
-			else if (lastPoint >= 0) /^[+-]?[1-9]\d{0,2}(?:\.\d{3})+$/.test(text) ? (point += 0.1) : point++;
-			else if (lastComma >= 0) /^[+-]?[1-9]\d{0,2}(?:,\d{3})+$/.test(text) ? (comma += 0.1) : comma++;
+			// Groups of three may be thousands: such a cell is a hint, no more.
+			const weight = /^[+-]?[1-9]\d{0,2}(?:[.,]\d{3})+$/.test(text) ? 0.1 : 1;
+			if (lastComma > lastPoint) comma += weight;
+			else if (lastPoint >= 0) point += weight;
 		}
 	}
 	// Where commas separate cells, a lone "1,234" in quotes is a grouped thousand.

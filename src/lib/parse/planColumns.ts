@@ -98,7 +98,8 @@ function chooseOnePerChannel(plans: ColumnPlan[], table: Table): ColumnPlan[] {
 	for (const plan of plans) {
 		const used = plan.channel === null ? plan : chosen.get(plan.channel);
 		if (used === plan || !used) continue;
-		plan.duplicateOf = used.header;
+		// A surer reading elsewhere leaves this one a guess; only an equal one is a duplicate worth a word.
+		if (plan.confidence >= used.confidence - 0.06) plan.duplicateOf = used.header;
 		plan.channel = null;
 	}
 	return plans;

@@ -83,14 +83,9 @@ export class RunReader {
 		const reading = this.#reading ?? this.#begin(true);
 		if (!reading) throw new RangeError('a whole file must begin a reading or throw');
 		if (this.#transcoder) this.#feed(reading, this.#encoder.encode(this.#transcoder.decode()));
-		if (reading.quoted) reading.quoted.end();
-		else {
-			const rest = reading.scanner.end();
-			if (rest) {
-				this.#handOver(reading, rest);
-				reading.quoted?.end();
-			}
-		}
+		const rest = reading.quoted ? null : reading.scanner.end();
+		const quoted = rest ? this.#handOver(reading, rest) : reading.quoted;
+		quoted?.end();
 		return this.#finish(reading);
 	}
 
@@ -166,9 +161,11 @@ export class RunReader {
 		if (rest) this.#handOver(reading, rest);
 	}
 
-	#handOver(reading: Reading, rest: Uint8Array): void {
-		reading.quoted = new QuotedReader(reading.rowPlan, reading.store, reading.notes, reading.scanner.line);
-		reading.quoted.push(rest);
+	#handOver(reading: Reading, rest: Uint8Array): QuotedReader {
+		const quoted = new QuotedReader(reading.rowPlan, reading.store, reading.notes, reading.scanner.line);
+		reading.quoted = quoted;
+		quoted.push(rest);
+		return quoted;
 	}
 
 	#finish({ table, plans, store, notes, kept }: Reading): RawRun[] {
