@@ -122,7 +122,15 @@ export function planStages(
 	const gain = new Int16Array(n).fill(REST);
 	const owner = new Int16Array(n);
 	const straight = new Uint8Array(n);
-	const throttle = (grid: LapGrid, atM: number): number => grid.throttlePct?.[atM + grid.marginM] ?? NaN;
+	// the lowest opening over the next metres, so that a lift begins as early as the gap that it opens
+	const throttle = (grid: LapGrid, atM: number): number => {
+		let low = NaN;
+		for (let m = 0; m <= BLUR_M; m++) {
+			const value = grid.throttlePct?.[atM + m + grid.marginM] ?? NaN;
+			if (!(value >= low)) low = value;
+		}
+		return low;
+	};
 	let k = 0;
 	let opening = 0;
 	for (let i = 0; i < n; i++) {
@@ -140,7 +148,8 @@ export function planStages(
 			continue;
 		}
 		const place = places[k - 1];
-		if (bothFull && passed(atM, place.driver.pickUpM ?? place.apexM)) {
+		const neitherLifts = place.driver.liftM === null && place.reference.liftM === null;
+		if (bothFull && (neitherLifts || passed(atM, place.driver.pickUpM ?? place.apexM))) {
 			loss[i] = gain[i] = poolOf(k, 'straight');
 			straight[i] = 1;
 			continue;
