@@ -13,8 +13,12 @@ import { findProgram, run } from './processes.mjs';
  * @throws {SetupError} with npm's last words
  */
 export async function installNpmPackages(root, say) {
-	if (packagesMatch(readJson(join(root, 'package-lock.json')), readJson(join(root, 'node_modules/.package-lock.json'))))
-		return;
+	const lock = readFileSync(join(root, 'package-lock.json'), 'utf8');
+	const lockHash = createHash('sha256').update(lock).digest('hex');
+	const record = join(root, 'node_modules/.package-lock.json');
+	const mark = join(root, 'node_modules/.kerbnote-lock');
+	if (existsSync(record) && existsSync(mark) && readFileSync(mark, 'utf8') === lockHash) return;
+	if (packagesMatch(JSON.parse(lock), readJson(record))) return;
 	const npm = findProgram(['npm']);
 	if (!npm) throw new SetupError('npm is missing; install it beside Node and start again.');
 	say('Installing the npm packages (npm ci)');
