@@ -16,16 +16,17 @@ export interface CornerPassage {
 	endS: number;
 	/** the timed lap in which its apex lies; null in out laps and beyond */
 	lap: Lap | null;
-	/** index in `brakings` of the run of the braking for this corner; null for none */
-	braking: BrakeApplication | null;
-	/** further brakings for this corner, not counting pulses */
-	furtherBrakings: number;
+	/** the brakings for this corner, in order; empty for none */
+	brakings: BrakeApplication[];
+	/** touches of the pedal beside them, too weak to be measured */
+	touches: number;
 	/** how long until the start of the next corner; infinite for the last */
 	toNextS: number;
 }
 
 /** Under this impulse a touch of the pedal is not a braking for a corner: 10 % for 0.03 s. */
 const LEAST_IMPULSE_PCT_S = 0.3;
+const TOUCH_SHARE = 0.2;
 /** Full throttle for longer than this between a braking and the corner: it was not for the corner. */
 const FULL_THROTTLE_BETWEEN_S = 0.7;
 const FULL_THROTTLE_PCT = 95;
@@ -33,11 +34,12 @@ const FULL_THROTTLE_PCT = 95;
 const FAR_FROM_NEXT_S = 2;
 
 /**
- * Every passage of a numbered corner in a run, in the order of driving, each with the braking that belongs to it.
+ * Every passage of a numbered corner in a run, in the order of driving, each with the brakings that belong to it.
  *
  * A braking belongs to the first corner whose apex comes after half of its impulse: a stop trailed past an apex stays with that
  * corner, one that begins in a flat-out bend goes to the corner behind. Behind the apex, but in the corner and far from the next, it
- * stays. Of several for one corner the strongest is measured; one with full throttle for over 0.7 s between it and the corner is left out.
+ * stays. A corner may have several; one with full throttle for over 0.7 s between it and the corner is left out, and one of under a fifth
+ * of the strongest's impulse is a touch.
  *
  * @param placed  the run
  * @param corners the corner map; kinks (number null) have no passages
@@ -100,8 +102,8 @@ function listPassages(placed: PlacedRun, corners: Corner[]): CornerPassage[] {
 				apexS: timeAtPlace(placed, apexM),
 				endS: timeAtPlace(placed, endM),
 				lap: lapOfTurn.get(turn) ?? null,
-				braking: null,
-				furtherBrakings: 0,
+				brakings: [],
+				touches: 0,
 				toNextS: Infinity
 			});
 		}
@@ -124,7 +126,7 @@ function choose(placed: PlacedRun, passage: CornerPassage, held: BrakeApplicatio
 		}
 		return fullS <= FULL_THROTTLE_BETWEEN_S;
 	});
-	if (fits.length === 0) return;
-	passage.braking = fits.reduce((best, one) => (one.impulsePctS > best.impulsePctS ? one : best));
-	passage.furtherBrakings = fits.length - 1;
+	const strongest = fits.reduce((most, one) => Math.max(most, one.impulsePctS), 0);
+	passage.brakings = fits.filter((one) => one.impulsePctS >= TOUCH_SHARE * strongest);
+	passage.touches = fits.length - passage.brakings.length;
 }

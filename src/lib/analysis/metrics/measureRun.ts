@@ -38,11 +38,11 @@ export function measureRun(placed: PlacedRun, corners: Corner[]): { metrics: Cor
 
 function passageOf({ passages, placed }: MeasuredRun, { startS }: WheelLock): CornerPassage | undefined {
 	const { timeS } = placed.channels;
-	const braked = passages.find(
-		({ braking }) =>
-			braking &&
-			startS >= timeS[Math.max(braking.onsetIndex, 0)] &&
-			startS <= timeS[Math.min(braking.offIndex + 1, timeS.length - 1)]
+	const braked = passages.find(({ brakings }) =>
+		brakings.some(
+			({ onsetIndex, offIndex }) =>
+				startS >= timeS[Math.max(onsetIndex, 0)] && startS <= timeS[Math.min(offIndex + 1, timeS.length - 1)]
+		)
 	);
 	if (braked) return braked;
 	const placeM = placeAtTime(placed, startS);

@@ -49,7 +49,7 @@ export function prepareRun(placed: PlacedRun, corners: Corner[]): MeasuredRun {
 	const brakingOf = new Map<BrakeApplication, Braking>();
 	if (brake) {
 		const cornerOf = new Map<BrakeApplication, number>();
-		for (const { braking, corner } of passages) if (braking) cornerOf.set(braking, corner.number);
+		for (const { brakings: own, corner } of passages) for (const one of own) cornerOf.set(one, corner.number);
 		const rises = quickestRise(brake, applications, cornerOf);
 		for (const application of applications) {
 			const rise = rises(cornerOf.get(application) ?? null);

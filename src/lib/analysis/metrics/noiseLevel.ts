@@ -16,7 +16,15 @@ export interface NoiseOptions {
  *
  * @returns in the signal's unit; 0 where under 8 triples can be read
  */
-export function noiseLevel(values: Float64Array, { counts = () => true, lag = 1 }: NoiseOptions = {}): number {
+export function noiseLevel(values: Float64Array, options: NoiseOptions = {}): number {
+	return secondDifferences(values, options).sd;
+}
+
+/** The noise level, and by how much the largest tenth of the differences exceeds their median: 2.4 for noise, more for movement. */
+function secondDifferences(
+	values: Float64Array,
+	{ counts = () => true, lag = 1 }: NoiseOptions
+): { sd: number; tail: number } {
 	const stride = Math.max(1, Math.floor(values.length / (2 * TRIPLES)));
 	const sizes = new Float64Array(Math.ceil(values.length / stride));
 	let found = 0;
@@ -29,8 +37,10 @@ export function noiseLevel(values: Float64Array, { counts = () => true, lag = 1 
 			if (second >= 0) sizes[found++] = second;
 		}
 	}
-	if (found < 8) return 0;
-	return (SD_PER_MEDIAN * sizes.subarray(0, found).sort()[found >> 1]) / Math.sqrt(6);
+	if (found < 8) return { sd: 0, tail: 0 };
+	const sorted = sizes.subarray(0, found).sort();
+	const median = sorted[found >> 1];
+	return { sd: (SD_PER_MEDIAN * median) / Math.sqrt(6), tail: sorted[Math.floor(0.9 * found)] / median };
 }
 
 const isPressed = (value: number) => value > 10 && value < 97;
@@ -44,12 +54,13 @@ const isAtRest = (value: number) => value < 3;
  */
 export function pedalNoise(pct: Float64Array): number {
 	const atRest = noiseLevel(pct, { counts: isAtRest });
-	const near = noiseLevel(pct, { counts: isPressed });
+	const near = secondDifferences(pct, { counts: isPressed });
 	const far = noiseLevel(pct, { counts: isPressed, lag: 2 });
-	const pressed = far < 1.6 * near ? near : 0;
+	const pressed = far < 1.6 * near.sd ? near.sd : 0;
 	if (atRest > 0.02) return Math.min(Math.max(pressed, atRest), 2 * atRest);
-	return pressed <= LARGEST_SENSOR_NOISE_PCT ? pressed : 0;
+	return pressed <= LARGEST_SENSOR_NOISE_PCT && near.tail < LONGEST_TAIL ? pressed : 0;
 }
 
-/** Above this a quiet pedal that jumps is being pulsed, not noisy: an anti-lock system works at the sampling rate. */
-const LARGEST_SENSOR_NOISE_PCT = 2;
+/** A pedal that is silent at rest and jumps by more, or much more at times than at others, is being pulsed: an anti-lock system works at the sampling rate. */
+const LARGEST_SENSOR_NOISE_PCT = 1;
+const LONGEST_TAIL = 4;

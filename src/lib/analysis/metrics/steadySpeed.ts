@@ -77,7 +77,8 @@ export function minimumSpeed(trace: SpeedTrace, fromS: number, toS: number): Min
 	}
 	const atEnds = [fromS, toS].map((timeS) => ({ timeS, kmh: speedAt(trace, timeS) }));
 	const kmh = quiet ? meetingSpeed(trace, lowest) : widestAverage(trace, lowest, noiseKmh);
-	const end = atEnds.find((one) => one.kmh < Math.min(kmh, course[lowest - first]) - 2 * QUIET_KMH);
+	const margin = quiet ? 0 : 2 * QUIET_KMH;
+	const end = atEnds.find((one) => one.kmh < Math.min(kmh, course[lowest - first]) - margin);
 	if (end) return { ...end, plusMinusKmh: noiseKmh };
 	const same = course[lowest - first] + Math.max(SAME_KMH, quiet ? 0 : (2 * noiseKmh) / Math.sqrt(2 * half + 1));
 	let a = lowest;

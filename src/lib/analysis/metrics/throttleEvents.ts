@@ -13,6 +13,8 @@ const BLIP_S = 0.3;
 const CROSSOVER_S = 0.3;
 /** A fall by less is no lift: a foot moves that much on a kerb. */
 const LIFT_LEAST_PCT = 10;
+/** A throttle that comes back sooner was cut by the car, not lifted by the driver. */
+const LIFT_LEAST_S = 0.1;
 
 export interface ThrottleWindow {
 	/** apex of the corner before: lifts before that belong to it */
@@ -61,10 +63,13 @@ export function throttleEvents(throttle: Signal, window: ThrottleWindow, quickes
 		? pickUpAfterBrake(throttle, index(window.brakeOnsetS ?? 0), index(window.brakeOffS ?? 0), until)
 		: -1;
 	// an unbraked corner: the smallest opening in it, or on the way into it
-	const smallestRange = braked
-		? [index(window.brakeOnsetS ?? 0), pickUpIndex >= 0 ? pickUpIndex : index(window.brakeOffS ?? 0)]
-		: [Math.max(earliest, index(window.fromS)), index(window.toS)];
-	const smallest = smallestIndex(values, smallestRange[0], smallestRange[1]);
+	const smallest = braked
+		? smallestIndex(
+				values,
+				index(window.brakeOnsetS ?? 0),
+				pickUpIndex >= 0 ? pickUpIndex : index(window.brakeOffS ?? 0)
+			)
+		: smallestLift(throttle, Math.max(earliest, index(window.fromS)), index(window.toS));
 	const events: ThrottleEvents = {
 		kind: 'closed',
 		lift: null,
@@ -123,6 +128,30 @@ function smallestIndex(values: Float64Array, from: number, to: number): number {
 	let smallest = from;
 	for (let i = from; i <= to; i++) if (!(values[i] >= values[smallest])) smallest = i;
 	return smallest;
+}
+
+/** The smallest opening of the stretches below 95 % that last; where none does, of what is left. */
+function smallestLift({ timeS, values }: Signal, from: number, to: number): number {
+	let smallest = -1;
+	let since = -1;
+	for (let i = from; i <= to + 1; i++) {
+		if (i <= to && values[i] < FULL_PCT) {
+			if (since < 0) since = i;
+			continue;
+		}
+		if (since >= 0 && (since === from || i > to || timeS[i] - timeS[since] >= LIFT_LEAST_S)) {
+			const here = smallestIndex(values, since, i - 1);
+			if (smallest < 0 || values[here] < values[smallest]) smallest = here;
+		}
+		since = -1;
+	}
+	return smallest >= 0 ? smallest : largestIndex(values, from, to);
+}
+
+function largestIndex(values: Float64Array, from: number, to: number): number {
+	let largest = from;
+	for (let i = from; i <= to; i++) if (values[i] > values[largest]) largest = i;
+	return largest;
 }
 
 /** The last fall below 95 % before an index; where full throttle was never reached since `earliest`, from 95 % of the most that was. */
