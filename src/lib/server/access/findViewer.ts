@@ -83,6 +83,16 @@ export async function findViewerByToken(db: Knex, token: string): Promise<Viewer
 	return found?.viewer ?? null;
 }
 
+/** The viewer that a person is, for work that is done in their name; null for a closed account. */
+export async function findViewerOfPerson(db: Knex, personId: number): Promise<Viewer | null> {
+	const [rows] = await db.raw(
+		`SELECT ${PERSON}, NULL AS session_id, NULL AS scopes, FALSE AS seen_long_ago
+		FROM people ${JOINS} WHERE people.id = ? AND people.disabled_at IS NULL`,
+		[personId]
+	);
+	return readRows(rows)?.viewer ?? null;
+}
+
 function readRows(input: unknown): { viewer: Viewer; seenLongAgo: boolean } | null {
 	const rows = z.array(rowSchema).parse(input);
 	const [first] = rows;

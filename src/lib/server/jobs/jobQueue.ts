@@ -35,7 +35,13 @@ export async function enqueue<Kind extends JobKind>(
 	const [{ affectedRows }] = await trx.raw(
 		`INSERT IGNORE INTO jobs (kind, unique_key, payload, max_attempts, run_at)
 		VALUES (?, ?, ?, ?, CURRENT_TIMESTAMP(3) + INTERVAL ? MICROSECOND)`,
-		[kind, options.uniqueKey ?? null, JSON.stringify(payload), options.maxAttempts ?? 4, Math.round((options.delayS ?? 0) * 1e6)]
+		[
+			kind,
+			options.uniqueKey ?? null,
+			JSON.stringify(payload),
+			options.maxAttempts ?? 4,
+			Math.round((options.delayS ?? 0) * 1e6)
+		]
 	);
 	return affectedRows === 1;
 }

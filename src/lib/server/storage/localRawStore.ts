@@ -43,13 +43,12 @@ export class LocalRawStore implements RawStore {
 	}
 
 	async read(key: string): Promise<Readable> {
-		const path = this.localPath(key);
-		try {
-			await stat(path);
-		} catch (cause) {
-			throw new FileMissing(key, { cause });
-		}
-		return createReadStream(path, { highWaterMark: 1 << 20 });
+		if (!(await this.has(key))) throw new FileMissing(key);
+		return createReadStream(this.localPath(key), { highWaterMark: 1 << 20 });
+	}
+
+	async has(key: string): Promise<boolean> {
+		return (await stat(this.localPath(key)).catch(() => null)) !== null;
 	}
 
 	async measure(key: string): Promise<KeptFile | null> {
@@ -89,7 +88,8 @@ export class LocalRawStore implements RawStore {
 	}
 
 	localPath(key: string): string {
-		if (!KEY.test(key)) throw new RangeError(`LocalRawStore requires a key such as "ab/abcdef", got ${JSON.stringify(key)}`);
+		if (!KEY.test(key))
+			throw new RangeError(`LocalRawStore requires a key such as "ab/abcdef", got ${JSON.stringify(key)}`);
 		return join(this.root, key);
 	}
 }

@@ -16,6 +16,7 @@ export interface RawStore {
 	write(key: string, source: AsyncIterable<Uint8Array>, limitBytes: number): Promise<KeptFile>;
 	/** @throws {FileMissing} when nothing is kept under the key */
 	read(key: string): Promise<Readable>;
+	has(key: string): Promise<boolean>;
 	/** Measures what is kept, or null when nothing is. */
 	measure(key: string): Promise<KeptFile | null>;
 	/** Removes what is kept; nothing there is no error. */
@@ -36,8 +37,8 @@ export class FileTooLarge extends Error {
 }
 
 export class FileMissing extends Error {
-	constructor(key: string, options?: ErrorOptions) {
-		super(`no file is kept under ${key}`, options);
+	constructor(key: string) {
+		super(`no file is kept under ${key}`);
 		this.name = 'FileMissing';
 	}
 }

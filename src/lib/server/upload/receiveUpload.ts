@@ -21,7 +21,11 @@ const LONGEST_NAME = 255;
  * @returns the upload's public id
  * @throws {RequestProblem} `throttled`, `too_large`, `upload_interrupted`, `unavailable`; nothing is kept then
  */
-export async function receiveUpload(viewer: Viewer, fileName: string, body: AsyncIterable<Uint8Array>): Promise<string> {
+export async function receiveUpload(
+	viewer: Viewer,
+	fileName: string,
+	body: AsyncIterable<Uint8Array>
+): Promise<string> {
 	const db = database();
 	if (!(await mayUpload(db, viewer.personId))) {
 		throw new RequestProblem(429, 'throttled', 'an hour holds at most 200 uploads of one person', {
@@ -76,10 +80,14 @@ function problemOfWrite(error: unknown): unknown {
 	}
 	if (error instanceof Error && 'code' in error && typeof error.code === 'string') {
 		if (error.code === 'ENOSPC' || error.code === 'EDQUOT') {
-			return new RequestProblem(503, 'unavailable', 'there is no room for the file at the moment', { remedy: 'Try again later' });
+			return new RequestProblem(503, 'unavailable', 'there is no room for the file at the moment', {
+				remedy: 'Try again later'
+			});
 		}
 		if (INTERRUPTED.has(error.code)) {
-			return new RequestProblem(400, 'upload_interrupted', 'the file ended before all of it was here', { remedy: 'Send it again' });
+			return new RequestProblem(400, 'upload_interrupted', 'the file ended before all of it was here', {
+				remedy: 'Send it again'
+			});
 		}
 	}
 	return error;
