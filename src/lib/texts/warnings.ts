@@ -25,6 +25,8 @@ const CONSEQUENCE: Record<WarningCode, string | null> = {
 	speed_from_distance: null,
 	speed_from_positions: 'Minimum speeds are smoother than the car’s own sensor would show.',
 	speed_negative: null,
+	negative_speed: null,
+	direction: null,
 	frozen_channel: null,
 	duplicate_column: null,
 	duplicate_rows: null,
