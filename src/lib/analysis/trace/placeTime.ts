@@ -1,3 +1,4 @@
+import { KMH_PER_MPS } from '../../units.ts';
 import type { PlacedRun } from '../model.ts';
 
 /**
@@ -44,8 +45,21 @@ export function wayShare(share: number, v0: number, v1: number): number {
 	return (share * (2 * v0 + (v1 - v0) * share)) / (v0 + v1);
 }
 
+/** A file that is cut at the line ends up to this many sample steps away from it; so far places go on at the last speed. */
+const STEPS_BEYOND = 1.6;
+
+/** Time of a place up to a sample step beyond the first or last placed sample, at that sample's speed; NaN further away. */
+function timeBeyond({ placeM: places, channels }: PlacedRun, placeM: number, end: number, neighbour: number): number {
+	const { timeS, speedKmh } = channels;
+	const speed = speedKmh[end] / KMH_PER_MPS;
+	const apart = (placeM - places[end]) / speed;
+	const step = Math.abs(timeS[end] - timeS[neighbour]);
+	return Math.abs(apart) <= STEPS_BEYOND * step ? timeS[end] + apart : NaN;
+}
+
 /**
- * Time at which the run first reaches a place.
+ * Time at which the run first reaches a place. Up to a sample step beyond the run's ends the last speed is carried on, because
+ * people export files that are cut at the line.
  *
  * @param placed the run on its path
  * @param placeM unwrapped place, turn · L + s
@@ -54,7 +68,8 @@ export function wayShare(share: number, v0: number, v1: number): number {
 export function timeAtPlace(placed: PlacedRun, placeM: number): number {
 	const { placeM: places, channels } = placed;
 	const { first, last } = placedEnds(places);
-	if (!(placeM >= places[first] && placeM <= places[last])) return NaN;
+	if (!(placeM >= places[first])) return last > first ? timeBeyond(placed, placeM, first, first + 1) : NaN;
+	if (!(placeM <= places[last])) return last > first ? timeBeyond(placed, placeM, last, last - 1) : NaN;
 	// lower bound: the first sample at or beyond the place
 	let low = first;
 	let high = last;
@@ -91,15 +106,20 @@ export function sampleBefore(timeS: Float64Array, atS: number): number {
  *
  * @param placed the run on its path
  * @param timeS  s from the run's first sample
- * @returns turn · L + s in m; NaN outside the placed samples
+ * @returns turn · L + s in m; NaN outside the placed samples, but for a sample step beyond the run's ends
  */
 export function placeAtTime(placed: PlacedRun, timeS: number): number {
 	const { placeM: places, channels } = placed;
+	const last = channels.timeS.length - 1;
 	const i = sampleBefore(channels.timeS, timeS);
-	if (i < 0) return NaN;
+	if (i < 0 || i === last) {
+		const end = Math.max(i, 0);
+		const apart = timeS - channels.timeS[end];
+		const step = i < 0 ? channels.timeS[1] - channels.timeS[0] : channels.timeS[last] - channels.timeS[last - 1];
+		return Math.abs(apart) <= STEPS_BEYOND * step ? places[end] + (channels.speedKmh[end] / KMH_PER_MPS) * apart : NaN;
+	}
 	const from = channels.timeS[i];
 	if (timeS === from) return places[i];
-	if (i + 1 >= channels.timeS.length) return NaN;
 	const share = (timeS - from) / (channels.timeS[i + 1] - from);
 	const { speedKmh } = channels;
 	return places[i] + (places[i + 1] - places[i]) * wayShare(share, speedKmh[i], speedKmh[i + 1]);

@@ -1,0 +1,138 @@
+import { wayBetween } from '../laps/wayBetween.ts';
+import type { Channels } from '../model.ts';
+import type { Positions } from './freshPositions.ts';
+import type { PathGeometry } from './pathGeometry.ts';
+import { PathPoint } from './pathPoint.ts';
+
+/** Where each position lies on a path. */
+export interface Tracked {
+	/** unwrapped place, one entry per position; NaN where the car is not on the path */
+	placeM: Float64Array;
+	/** left of the path positive */
+	offsetM: Float64Array;
+	/** share of the driven way that was found on the path, 0 … 1 */
+	onPath: number;
+	/** the run follows the path, but the other way round */
+	reversed: boolean;
+}
+
+/** A position is on the path up to this distance from it: run-off, pit lane beside the straight. */
+const LARGEST_OFFSET_M = 60;
+/** A position that has been lost is found again within this distance. */
+const FOUND_OFFSET_M = 30;
+/** Step along the path against the driven way: slack, and share of the way. */
+const STEP_SLACK_M = 10;
+const STEP_SHARE = 0.6;
+/** After this time without a place the whole path is searched. */
+const SEARCH_AFTER_S = 1;
+/** The driven way over a longer gap says too little about where the car is. */
+const LONGEST_STEP_S = 4;
+/** Slower than this a car has no course to search by. */
+const COURSE_KMH = 15;
+/** Cosine that the course must have with the path's direction. */
+const ALONG_COS = 0.5;
+
+/**
+ * Follows a run along a path: each position is dropped on it square to its direction, near where the driven way since the last one
+ * leads, so that neighbouring stretches, crossings and hairpins are not mixed up. Between two points of the path the direction
+ * turns evenly, which makes places continuous. Where the car leaves the path its place is unknown until it is back.
+ *
+ * O(positions); the whole path is searched only at the start and after leaving it.
+ */
+export function trackOnPath(positions: Positions, channels: Channels, path: PathGeometry): Tracked {
+	const { sample, xM, yM } = positions;
+	const { timeS } = channels;
+	const n = sample.length;
+	const placeM = new Float64Array(n).fill(NaN);
+	const offsetM = new Float64Array(n).fill(NaN);
+	const at = new PathPoint(path);
+	const start = firstOnPath();
+	if (start.index < 0) return { placeM, offsetM, onPath: 0, reversed: start.against > 0 };
+	follow(start.index, 1);
+	follow(start.index, -1);
+	let driven = 0;
+	let found = 0;
+	for (let j = 1; j < n; j++) {
+		const way = wayBetween(channels, sample[j - 1], sample[j]);
+		driven += way;
+		if (Math.abs(offsetM[j]) < FOUND_OFFSET_M) found += way;
+	}
+	const onPath = driven > 0 ? found / driven : 0;
+	return { placeM, offsetM, onPath, reversed: start.against > start.along };
+
+	/** First position from which the path can be followed, and how many before it ran along or against it. */
+	function firstOnPath(): { index: number; along: number; against: number } {
+		let along = 0;
+		let against = 0;
+		let index = -1;
+		let triedS = -Infinity;
+		for (let j = 0; j < n - 1; j++) {
+			if (timeS[sample[j]] < triedS + SEARCH_AFTER_S || !(channels.speedKmh[sample[j]] > COURSE_KMH)) continue;
+			triedS = timeS[sample[j]];
+			const cos = at.search(xM[j], yM[j], course(j), FOUND_OFFSET_M);
+			if (!(Math.abs(at.offsetM) < FOUND_OFFSET_M)) continue;
+			if (cos > ALONG_COS) along++;
+			else if (cos < -ALONG_COS) against++;
+			if (index < 0 && cos > ALONG_COS) index = j;
+			if (along + against >= 60) break;
+		}
+		return { index: along > against ? index : -1, along, against };
+	}
+
+	/** Direction of travel around a position, from a chord that noise cannot turn. */
+	function course(j: number): number {
+		const reach = Math.max(3, 12 * positions.noiseM);
+		let high = j;
+		while (high < n - 1 && high < j + 100 && Math.hypot(xM[high] - xM[j], yM[high] - yM[j]) < reach) high++;
+		let low = j;
+		if (high === n - 1) while (low > 0 && Math.hypot(xM[high] - xM[low], yM[high] - yM[low]) < reach) low--;
+		return Math.atan2(yM[high] - yM[low], xM[high] - xM[low]);
+	}
+
+	function follow(from: number, direction: 1 | -1): void {
+		at.search(xM[from], yM[from], course(from), FOUND_OFFSET_M);
+		let place = at.placeM;
+		let turns = 0;
+		placeM[from] = place;
+		offsetM[from] = at.offsetM;
+		let last = from;
+		let expected = place;
+		for (let j = from + direction; j >= 0 && j < n; j += direction) {
+			const before = direction > 0 ? j - 1 : j;
+			const way = wayBetween(channels, sample[before], sample[before + 1]);
+			expected += direction * way;
+			const stepS = timeS[sample[before + 1]] - timeS[sample[before]];
+			const lostS = Math.abs(timeS[sample[j]] - timeS[sample[last]]);
+			if (lostS < SEARCH_AFTER_S + stepS && stepS < LONGEST_STEP_S) {
+				at.moveTo(expected - turns * path.lengthM);
+				const reach = STEP_SLACK_M + STEP_SHARE * Math.abs(expected - place);
+				if (at.settle(xM[j], yM[j], reach) && Math.abs(at.offsetM) <= LARGEST_OFFSET_M) {
+					const found = at.placeM + (turns + at.turns) * path.lengthM;
+					if (Math.abs(found - expected) <= reach) {
+						turns += at.turns;
+						place = found;
+						expected = found;
+						placeM[j] = found;
+						offsetM[j] = at.offsetM;
+						last = j;
+					}
+				}
+				continue;
+			}
+			if (!(channels.speedKmh[sample[j]] > COURSE_KMH)) continue;
+			const cos = at.search(xM[j], yM[j], course(j), FOUND_OFFSET_M);
+			if (!(cos > ALONG_COS && Math.abs(at.offsetM) < FOUND_OFFSET_M)) continue;
+			turns = path.closed ? Math.round((expected - at.placeM) / path.lengthM) : 0;
+			// a car does not go back a lap
+			if (direction * (at.placeM + turns * path.lengthM - place) < -STEP_SLACK_M * 4) {
+				if (!path.closed) continue;
+				turns += direction;
+			}
+			place = at.placeM + turns * path.lengthM;
+			expected = place;
+			placeM[j] = place;
+			offsetM[j] = at.offsetM;
+			last = j;
+		}
+	}
+}
