@@ -1,5 +1,4 @@
-import { readFileSync } from 'node:fs';
-import { gunzipSync } from 'node:zlib';
+import { passing, pedalAt, readClosedForm, type ClosedFormTruth } from '../../src/cli/accuracy/closedFormTruth.ts';
 import type { LapGrid } from '../../src/lib/analysis/model.ts';
 import type { Corner, CornerMetrics } from '../../src/lib/schemas/analysisDocument.ts';
 
@@ -8,89 +7,7 @@ import type { Corner, CornerMetrics } from '../../src/lib/schemas/analysisDocume
  * comparison says of them can be held against exact values.
  */
 
-interface TruthCorner {
-	corner: number;
-	kind: string;
-	start_m: number;
-	end_m: number;
-	entry_speed_kmh: number;
-	exit_speed_kmh: number;
-	min_speed_kmh: number;
-	min_speed_from_m: number;
-	corner_time_s: number;
-	brake?: {
-		peak_pct: number;
-		peak_first_m: number;
-		ramp_s: number;
-		release_start_m: number;
-		release_start_s: number;
-		onset_at: Record<string, { m: number; s: number }>;
-		end_at: Record<string, { m: number; s: number }>;
-		hold?: { duration_s: number };
-	};
-	throttle?: { first_over_5: { m: number }; first_95: { m: number } | null; lift_end_m: number };
-	coasting?: { throttle_lt5_brake_lt2_s: number };
-}
-
-interface TruthLap {
-	lap_time_s: number;
-	delta_final_s?: number;
-	altered: { corner?: number; corner2?: number; what: string };
-	segments_s0_s1_t0_v0_a: [number, number, number, number, number][];
-	throttle_knots_s_pct: [number, number][];
-	brake_knots_s_pct: [number, number][];
-	corners: TruthCorner[];
-	delta_every_2_m_of_reference_distance_s?: number[];
-}
-
-export interface ClosedFormTruth {
-	length_m: number;
-	corners: {
-		corner: number;
-		start_m: number;
-		apex_m: number;
-		end_m: number;
-		radius_m: number;
-		angle_deg: number;
-		direction: 'left' | 'right';
-	}[];
-	laps: Record<string, TruthLap>;
-}
-
-/** Reads the circuit's truth file; what stands in it is described in the folder's README. */
-export function readClosedForm(): ClosedFormTruth {
-	const packed = readFileSync(new URL('../../fixtures/closed-form/marrow_fen.truth.json.gz', import.meta.url));
-	return JSON.parse(gunzipSync(packed).toString('utf8')) as ClosedFormTruth;
-}
-
-function pieceAt(lap: TruthLap, placeM: number): [number, number, number, number, number] {
-	const pieces = lap.segments_s0_s1_t0_v0_a;
-	let low = 0;
-	let high = pieces.length - 1;
-	while (low < high) {
-		const middle = (low + high + 1) >> 1;
-		if (pieces[middle][0] <= placeM) low = middle;
-		else high = middle - 1;
-	}
-	return pieces[low];
-}
-
-/** Passing time and speed at a place, in closed form. */
-export function passing(lap: TruthLap, placeM: number): { timeS: number; speedMps: number } {
-	const [s0, , t0, v0, a] = pieceAt(lap, placeM);
-	const way = placeM - s0;
-	const speedMps = Math.sqrt(Math.max(v0 * v0 + 2 * a * way, 0));
-	return { timeS: t0 + (2 * way) / (v0 + speedMps), speedMps };
-}
-
-function knots(points: [number, number][], timeS: number): number {
-	const at = points.findLastIndex(([t]) => t <= timeS);
-	if (at < 0) return points[0][1];
-	if (at + 1 >= points.length) return points[at][1];
-	const [ta, ya] = points[at];
-	const [tb, yb] = points[at + 1];
-	return tb > ta ? ya + ((yb - ya) * (timeS - ta)) / (tb - ta) : yb;
-}
+export { readClosedForm, type ClosedFormTruth };
 
 /** One lap on the 1 m grid; before and after the line the car goes on as in the same lap. */
 export function closedFormGrid(truth: ClosedFormTruth, motion: string, lapNumber: number, marginM = 250): LapGrid {
@@ -108,8 +25,8 @@ export function closedFormGrid(truth: ClosedFormTruth, motion: string, lapNumber
 		const { timeS: at, speedMps } = passing(lap, placeM - turn * lengthM);
 		timeS[i] = at + turn * lap.lap_time_s;
 		speedKmh[i] = speedMps * 3.6;
-		brakePct[i] = knots(lap.brake_knots_s_pct, at);
-		throttlePct[i] = knots(lap.throttle_knots_s_pct, at);
+		brakePct[i] = pedalAt(lap.brake_knots_s_pct, at);
+		throttlePct[i] = pedalAt(lap.throttle_knots_s_pct, at);
 	}
 	return {
 		lapNumber,

@@ -6,6 +6,7 @@ import type {
 	CornerMetrics,
 	Warning
 } from '../schemas/analysisDocument.ts';
+import type { WarningCode } from '../schemas/codes.ts';
 import { KerbnoteError } from '../schemas/kerbnoteError.ts';
 import type { RawRun } from '../parse/rawRun.ts';
 import { fitFullThrottle, type FullThrottleModel } from './car/fullThrottle.ts';
@@ -61,6 +62,9 @@ export interface RunAnalysis {
 	fullThrottle: FullThrottleModel | null;
 }
 
+/** What a reference's run says of the path, which holds for every run laid on it. */
+const OF_THE_PATH: ReadonlySet<WarningCode> = new Set(['line_chosen', 'path_from_accelerations', 'speed_only']);
+
 /** A run laid on a path and measured. */
 interface Measured {
 	placed: PlacedRun;
@@ -83,31 +87,26 @@ export function analyseRun(raws: RawRun[], options: AnalyseOptions = {}): RunAna
 	if (raws.length > 1 && options.run === undefined)
 		warnings.push({
 			code: 'more_runs',
-			message: `The file holds ${raws.length} runs; this is the first`,
+			message: `the file holds ${raws.length} runs; this is the first`,
 			row: null
 		});
 	const { channels, referenceChannels } = prepareBoth(raw, options);
 
+	const { layout } = options;
 	const own = referenceChannels ?? channels;
-	const layout = options.layout;
-	const built = layout ? null : buildPath(own, { line: options.line });
-	const path = layout?.path ?? built?.path;
-	if (!path) throw new RangeError('analyseRun requires a layout or a run that a path can be built from');
-
-	const ownPlaced = placeRun(own, path);
-	const corners = layout?.corners ?? findCorners(ownPlaced.placed);
-	const ownMeasured = measure(ownPlaced, corners, built?.warnings ?? []);
+	const laid = layout ? { path: layout.path, ...placeRun(own, layout.path) } : buildPath(own, { line: options.line });
+	const { path } = laid;
+	const corners = layout?.corners ?? findCorners(laid.placed);
+	const ownMeasured = measure(laid, corners);
 	const reference = referenceChannels ? ownMeasured : null;
-	const measured = reference ? measure(placeRun(channels, path), corners, []) : ownMeasured;
+	const measured = reference ? measure(placeRun(channels, path), corners) : ownMeasured;
+	if (reference) warnings.push(...reference.warnings.filter(({ code }) => OF_THE_PATH.has(code)));
 	const cells = layout?.cells ?? cellsOf(ownMeasured, corners, path.lengthM);
 	const fullThrottle = fitFullThrottle(channels);
 
 	const { laps } = measured.placed;
 	const chosen = chooseBoth(laps, reference?.placed.laps ?? null, options, warnings);
 	const comparison = chosen && compareChosen(chosen, measured, reference ?? measured, corners, fullThrottle);
-	if (!laps.some((lap) => lap.kind === 'timed'))
-		warnings.push({ code: 'no_complete_lap', message: 'The run holds no lap from line to line', row: null });
-
 	const cellS = laps.map((lap) => cellTimes(measured.placed, lap, cells));
 	const cleanCellS = cellS.filter((_, i) => laps[i].clean);
 	const document = toDocument({
@@ -160,9 +159,8 @@ function prepareBoth(raw: RawRun, options: AnalyseOptions): { channels: Channels
 	return { channels: shared(raw, channels), referenceChannels: shared(referenceRaw, referenceChannels) };
 }
 
-function measure(from: { placed: PlacedRun; warnings: Warning[] }, corners: Corner[], warnings: Warning[]): Measured {
-	const { metrics, lockUps } = measureRun(from.placed, corners);
-	return { placed: from.placed, metrics, lockUps, warnings: [...warnings, ...from.warnings] };
+function measure({ placed, warnings }: { placed: PlacedRun; warnings: Warning[] }, corners: Corner[]): Measured {
+	return { placed, warnings, ...measureRun(placed, corners) };
 }
 
 const cleanLaps = (laps: readonly Lap[]): number[] => laps.filter((lap) => lap.clean).map((lap) => lap.number);
@@ -185,10 +183,10 @@ function chooseBoth(
 	if (!asked) return null;
 	const reference = chooseLap(referenceLaps ?? laps, options.referenceLap, 'the reference');
 	if (!driver || !reference) return null;
-	if (driver.noneClean || reference.noneClean)
+	if (referenceLaps && reference.noneClean)
 		warnings.push({
 			code: 'no_clean_lap',
-			message: `${driver.noneClean ? 'The run' : 'The reference'} holds no clean lap; the fastest timed one is compared`,
+			message: 'the reference holds no clean lap; its fastest timed one stands in',
 			row: null
 		});
 	return { driver, reference };
