@@ -80,22 +80,31 @@ export function cornersOf(truth: ClosedForm): Corner[] {
 	}));
 }
 
+/** Last row whose entry in a column is at most a value; the first where none is. Rows ascend by that column. */
+function lastRow<Row extends readonly number[]>(rows: Row[], column: number, value: number): Row {
+	let low = 0;
+	let high = rows.length - 1;
+	while (low < high) {
+		const middle = (low + high + 1) >> 1;
+		if (rows[middle][column] <= value) low = middle;
+		else high = middle - 1;
+	}
+	return rows[low];
+}
+
 /** Value of a piecewise straight course at a time; the end values hold outside. */
 export function knotValue(knots: [number, number][], atS: number): number {
-	if (atS <= knots[0][0]) return knots[0][1];
-	for (let i = 1; i < knots.length; i++) {
-		const [t1, y1] = knots[i];
-		if (atS > t1) continue;
-		const [t0, y0] = knots[i - 1];
-		return t1 === t0 ? y1 : y0 + ((y1 - y0) * (atS - t0)) / (t1 - t0);
-	}
-	return knots[knots.length - 1][1];
+	const last = knots[knots.length - 1];
+	if (atS >= last[0]) return last[1];
+	const before = lastRow(knots, 0, atS);
+	if (atS <= before[0]) return before[1];
+	const after = knots[knots.indexOf(before) + 1];
+	return before[1] + ((after[1] - before[1]) * (atS - before[0])) / (after[0] - before[0]);
 }
 
 /** Place and speed of a lap at a time from its line. */
 export function motionAt(lap: ClosedFormLap, atS: number): { placeM: number; speedMps: number } {
-	const segments = lap.segments_s0_s1_t0_v0_a;
-	const [s0, , t0, v0, a] = segments.findLast((segment) => segment[2] <= atS) ?? segments[0];
+	const [s0, , t0, v0, a] = lastRow(lap.segments_s0_s1_t0_v0_a, 2, atS);
 	const d = atS - t0;
 	return { placeM: s0 + v0 * d + (a * d * d) / 2, speedMps: v0 + a * d };
 }
@@ -194,10 +203,21 @@ function curvatureAt(truth: ClosedForm, lap: ClosedFormLap, s: number): number {
 		);
 		return s < from ? (first * (from - s)) / ramp : s > to ? (second * (s - to)) / ramp : 0;
 	}
+	const [start, length, k0, k1] = lastRow(elementsFrom(truth), 0, s);
+	return k0 + ((k1 - k0) * (s - start)) / length;
+}
+
+const elements = new WeakMap<ClosedForm, [number, number, number, number][]>();
+
+/** The path's elements, each with the place where it begins. */
+function elementsFrom(truth: ClosedForm): [number, number, number, number][] {
+	const known = elements.get(truth);
+	if (known) return known;
 	let start = 0;
-	for (const [length, k0, k1] of truth.elements_length_k0_k1) {
-		if (s < start + length) return k0 + ((k1 - k0) * (s - start)) / length;
+	const listed = truth.elements_length_k0_k1.map(([length, k0, k1]): [number, number, number, number] => {
 		start += length;
-	}
-	return 0;
+		return [start - length, length, k0, k1];
+	});
+	elements.set(truth, listed);
+	return listed;
 }
