@@ -53,7 +53,7 @@ export const LARK_SINGLE_SEATER: DemoVehicle = {
 
 export const TERN_KART: DemoVehicle = {
 	...BRINDLE_GT,
-	name: 'Rental kart',
+	name: 'Kart',
 	tractionMps2: 3.4,
 	powerPerKg: 52,
 	dragPerM: 0.0021,

@@ -14,7 +14,7 @@ function metresPerRadian(latitudeDeg: number): { north: number; east: number } {
 /**
  * Writes a run of the demo as the CSV that a logger would have saved: the demo then takes the same way in as anybody's file.
  *
- * @returns text with a header line, comma separated, LF line ends
+ * @returns text with a few lines on who and what, a header line, comma separated, LF line ends
  */
 export function writeRun(demo: DemoRun): string {
 	const driven = driveRun(centreLine(demo.circuit), demo);
@@ -22,7 +22,14 @@ export function writeRun(demo: DemoRun): string {
 	const header =
 		'time (s),lap,distance (m),speed (km/h),throttle (%),brake (%),steering (deg),gear,engine speed (1/min),' +
 		'latitude (deg),longitude (deg),longitudinal acceleration (g),lateral acceleration (g)';
-	const lines = [header];
+	const lines = [
+		`driver,${demo.driver.name}`,
+		`car,${demo.vehicle.name}`,
+		`circuit,${demo.circuit.circuit}`,
+		`layout,${demo.circuit.layout}`,
+		'',
+		header
+	];
 	driven.timeS.forEach((time, i) => {
 		lines.push(
 			[
