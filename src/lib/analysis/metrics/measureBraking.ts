@@ -40,6 +40,8 @@ const HOLD = { low: 2, high: 12, steepest: 15, leastS: 0.2 };
 /** A pulse or dab is a fall and a new rise of at least this share of the peak, and at least that much. */
 const DAB_SHARE = 0.2;
 const DAB_LEAST_PCT = 10;
+/** From so many dabs on a stroke is pulsed, by a system or by a foot. */
+const PULSED_DABS = 3;
 /** Pulses this close to each other are one pressure to the wheels. */
 const PULSE_GAP_S = 0.1;
 const HOLE_S = 0.5;
@@ -129,7 +131,7 @@ function peakOf(brake: Signal, first: number, last: number, sampleS: number, dab
 	const pct = heldLevel(brake, first, last, PEAK_HELD_S, sampleS);
 	let rawPct = 0;
 	for (let i = first; i <= last; i++) if (brake.values[i] > rawPct) rawPct = brake.values[i];
-	if (dabs < 2 || pct > 0.5 * rawPct) return { pct, rawPct };
+	if (dabs < PULSED_DABS) return { pct, rawPct };
 	const closed = brake.values.slice(first, last + 1);
 	const timeS = brake.timeS.subarray(first, last + 1);
 	closeGaps(timeS, closed);
