@@ -1,3 +1,4 @@
+import { UNITS_PER_PX } from './geometry/units.ts';
 import { line } from 'd3-shape';
 import { deltaWord, formatDelta, type DeltaWord } from '../format/delta.ts';
 import type { ComparisonView } from '../schemas/views.ts';
@@ -6,7 +7,6 @@ import { CompactPath } from './geometry/CompactPath.ts';
 import { pathPoint } from './geometry/pathPoint.ts';
 import { placeLabel, type Box } from './geometry/placeLabel.ts';
 import { planFrame } from './geometry/planFrame.ts';
-import { UNITS_PER_PX } from './geometry/tracePath.ts';
 import { handAt } from './planLines.ts';
 
 /** The layout from above, north up, each corner's number as large as what it cost. */

@@ -15,7 +15,7 @@ import {
 	type EvidenceTag,
 	type RowCanvas
 } from './evidenceTags.ts';
-import { findingLines, ownShareS, type FindingLines } from './findingLines.ts';
+import { findingLines, orderedFindings, type FindingLines } from './findingLines.ts';
 import { deltaAt, gridValue, metresBetween } from './gridValue.ts';
 import { placeLabel } from './geometry/placeLabel.ts';
 import { driverLabel, referenceLabel, type LapLabel } from './lapLabels.ts';
@@ -125,7 +125,7 @@ export function cornerCard(view: ComparisonView, number: number, options: CardOp
 	const totalS = places.ledger.totalS;
 	const findings = findingLines(comparison, number);
 	const chart = { view, window, rows, speedUnit };
-	const { tags, slowest } = annotate(chart, places, corner);
+	const { tags, slowest } = annotate(chart, places);
 	const placeM = cursorPlace(tags, places, window);
 	return {
 		number,
@@ -184,7 +184,7 @@ export function commonDomain({ comparison, driverGrid, referenceGrid }: Comparis
 }
 
 /** Rings and the slowest speeds, placed so that they cover as little as they can. */
-function annotate(chart: Chart, places: PlacedCorner, corner: CornerView): Pick<CornerCard, 'tags' | 'slowest'> {
+function annotate(chart: Chart, places: PlacedCorner): Pick<CornerCard, 'tags' | 'slowest'> {
 	const { view, window, rows, speedUnit } = chart;
 	const canvases = new Map(
 		rows.map((row) => {
@@ -195,14 +195,10 @@ function annotate(chart: Chart, places: PlacedCorner, corner: CornerView): Pick<
 	);
 	const speed = canvases.get('speed');
 	const slowest = speed ? slowestLabel(speed.wide, places) : null;
-	const own = view.comparison.findings
-		.filter((finding) => finding.corner === corner.number)
-		.map((finding) => ({ finding, shareS: ownShareS(finding, finding.corner) ?? finding.costS ?? 0 }))
-		.sort((a, b) => Math.abs(b.shareS) - Math.abs(a.shareS));
-	const tags = own.flatMap(({ finding }, i) => {
-		const place = evidencePlace(finding, rows, window, corner.apexM, view.path.lengthM, view.path.closed);
+	const tags = orderedFindings(view.comparison, places.ledger.corner).flatMap(({ finding, number }) => {
+		const place = evidencePlace(finding, rows, window, places, view.path.lengthM, view.path.closed);
 		const canvas = place && canvases.get(place.row.key);
-		return place && canvas ? [placeTag(i + 1, finding.code, place.atM, canvas)] : [];
+		return place && canvas && number !== null ? [placeTag(number, finding.code, place.atM, canvas)] : [];
 	});
 	return { tags, slowest };
 }
@@ -273,8 +269,8 @@ function neighbours(view: ComparisonView, number: number): CornerCard['neighbour
 function altText(corner: CornerView, places: PlacedCorner, { lines }: FindingLines): string {
 	const { entryS, midS, exitS, totalS } = places.ledger;
 	const parts = `entry ${formatSignedSeconds(entryS)}, mid ${formatSignedSeconds(midS)}, exit ${formatSignedSeconds(exitS)}`;
-	const cause = lines[0]?.segments.map((segment) => segment.text).join('');
-	return `${cornerName(corner)}: ${formatDelta(totalS)}; ${parts}.${cause ? ` ${cause}.` : ''}`;
+	const cause = lines[0]?.segments.map((segment) => segment.text).join('') ?? '';
+	return `${cornerName(corner)}: ${formatDelta(totalS)}; ${parts}.${cause ? ` ${cause}` : ''}`;
 }
 
 /** Is there anything to read of a lap within a window: false where the recording has a hole as wide as it. */

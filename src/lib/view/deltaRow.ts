@@ -1,10 +1,10 @@
+import { UNITS_PER_PX, WIDTH_UNITS } from './geometry/units.ts';
 import { scaleLinear } from 'd3-scale';
 import { formatDelta, deltaWord, type DeltaWord } from '../format/delta.ts';
 import { deltaAt, metresBetween } from './gridValue.ts';
 import { polygonClip } from './geometry/polygonClip.ts';
-import { tracePath, UNITS_PER_PX } from './geometry/tracePath.ts';
+import { tracePath } from './geometry/tracePath.ts';
 import type { LapGrid } from '../analysis/model.ts';
-import { WIDTH_UNITS } from './traceRows.ts';
 
 /** The row of time: what the corner has cost since its span began. Lost goes up. */
 export interface DeltaRow {

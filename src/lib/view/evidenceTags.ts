@@ -3,7 +3,7 @@ import type { LapGrid } from '../analysis/model.ts';
 import { speedIn, type SpeedUnit } from '../format/speed.ts';
 import type { Finding } from '../schemas/analysisDocument.ts';
 import type { FindingCode } from '../schemas/codes.ts';
-import { nearestTurn } from './placedCorner.ts';
+import { nearestTurn, type PlacedCorner } from './placedCorner.ts';
 import { gridValue, metresBetween, type GridColumn } from './gridValue.ts';
 import { placeLabel, type Box } from './geometry/placeLabel.ts';
 import { NARROW_PLOT_PX, WIDE_PLOT_PX } from './rulerView.ts';
@@ -107,18 +107,37 @@ export function valueOf({ row, speedUnit }: RowValues, grid: LapGrid, placeM: nu
 	return row.key === 'speed' ? speedIn(value, speedUnit) : value;
 }
 
+/** The metric that a finding points at where its evidence has no place of its own. */
+const POINTS_AT: Partial<Record<FindingCode, PlaceField>> = {
+	peak_over: 'peakM',
+	peak_under: 'peakM',
+	rise_quick: 'onsetM',
+	second_dab: 'peakM',
+	release_abrupt: 'releaseEndM',
+	release_long: 'releaseEndM',
+	hold_missing: 'releaseEndM',
+	lock_up: 'peakM',
+	min_speed_low: 'minSpeedM',
+	entry_fast: 'turnInM',
+	coasting: 'liftM',
+	second_lift: 'fullThrottleM'
+};
+type PlaceField = 'onsetM' | 'peakM' | 'releaseEndM' | 'minSpeedM' | 'turnInM' | 'liftM' | 'fullThrottleM';
+
 /** Where a finding's ring belongs: row and place; null where it has no place in the window or its row has no curve. */
 export function evidencePlace(
-	finding: Pick<Finding, 'code' | 'evidence'>,
+	{ code, evidence }: Pick<Finding, 'code' | 'evidence'>,
 	rows: readonly TraceRow[],
 	window: { fromM: number; toM: number },
-	apexM: number,
+	{ apexM, endM, driver }: PlacedCorner,
 	lengthM: number,
 	closed: boolean
 ): { row: TraceRow; atM: number } | null {
-	const row = ROW_OF[finding.code].map((key) => rows.find((r) => r.key === key && r.driver !== '')).find(Boolean);
-	const raw = finding.evidence.find((item) => item.atM !== null)?.atM;
-	if (!row || raw === undefined || raw === null) return null;
+	const row = ROW_OF[code].map((key) => rows.find((r) => r.key === key && r.driver !== '')).find(Boolean);
+	const field = POINTS_AT[code];
+	const measured = field ? driver?.[field] : null;
+	const raw = measured ?? evidence.find((item) => item.atM !== null)?.atM ?? (code === 'exit_speed_low' ? endM : null);
+	if (!row || raw === null) return null;
 	const atM = nearestTurn(raw, apexM, lengthM, closed);
 	return atM >= window.fromM && atM <= window.toM ? { row, atM } : null;
 }

@@ -3,19 +3,20 @@ import { formatUnit } from '../format/unit.ts';
 import { figureOf } from '../format/count.ts';
 import type { Comparison, Finding } from '../schemas/analysisDocument.ts';
 import type { FindingCode } from '../schemas/codes.ts';
-import { markReference, type Segment } from './markReference.ts';
+import { findingParts, type TextPart } from '../analysis/findings/findingText.ts';
+import { countsOnce } from '../analysis/findings/countsOnce.ts';
 
 /** One measured cause as a line on the card. */
 export interface FindingLine {
-	/** ringed number, from 1; the same stands in the chart */
-	number: number;
+	/** ringed number, from 1; the same stands in the chart. Null for what comes from another corner */
+	number: number | null;
 	code: FindingCode;
-	segments: Segment[];
+	segments: TextPart[];
 	/** "about 0.12 s lost": its share in this corner; null where it has none */
 	cost: { text: string; word: DeltaWord } | null;
 	/** "another 0.05 s carried on" */
 	carriedOn: string | null;
-	habit: { shown: number; of: number; text: string } | null;
+	habit: { shown: number; of: number; isHabit: boolean; text: string } | null;
 }
 
 export interface FindingLines {
@@ -36,30 +37,49 @@ export function costText(costS: number): { text: string; word: DeltaWord } {
 
 /** What a finding costs within one ledger row. `carried_in` repeats shares of other findings and has none of its own. */
 export function ownShareS(finding: Finding, corner: number): number | null {
-	if (finding.shares.length === 0) return finding.costS;
+	if (!countsOnce(finding)) return finding.costS;
 	const shares = finding.shares.filter((share) => share.corner === corner);
 	return shares.length === 0 ? null : shares.reduce((sum, share) => sum + share.costS, 0);
 }
 
-/** Findings of a corner, largest share first, as sentences; then what is left without a cause. */
-export function findingLines(comparison: Comparison, corner: number): FindingLines {
-	const own = comparison.findings
+/** A finding of one corner with its share there and the number that stands in its ring. */
+export interface OrderedFinding {
+	finding: Finding;
+	shareS: number | null;
+	number: number | null;
+}
+
+/**
+ * Findings of a corner in the order in which they are told: what costs the most here first, what differs without a cost last.
+ * What is carried in from another corner is told, but it has no ring: its evidence lies elsewhere.
+ */
+export function orderedFindings(comparison: Comparison, corner: number): OrderedFinding[] {
+	let number = 0;
+	return comparison.findings
 		.filter((finding) => finding.corner === corner)
 		.map((finding) => ({ finding, shareS: ownShareS(finding, corner) }))
-		.sort((a, b) => Math.abs(b.shareS ?? b.finding.costS ?? 0) - Math.abs(a.shareS ?? a.finding.costS ?? 0));
+		.sort((a, b) => Math.abs(b.shareS ?? 0) - Math.abs(a.shareS ?? 0))
+		.map((entry) => ({ ...entry, number: countsOnce(entry.finding) ? ++number : null }));
+}
+
+/** Findings of a corner as sentences, then what is left without a cause: shares and rest sum to the corner. */
+export function findingLines(comparison: Comparison, corner: number): FindingLines {
 	const restS = comparison.unexplained.find((row) => row.corner === corner)?.costS ?? 0;
 	return {
-		lines: own.map(({ finding, shareS }, i) => {
-			const carriedS = (finding.costS ?? 0) - (shareS ?? 0);
+		lines: orderedFindings(comparison, corner).map(({ finding, shareS, number }) => {
+			const carriedS = countsOnce(finding) ? (finding.costS ?? 0) - (shareS ?? 0) : 0;
+			const amount = formatUnit(Math.abs(carriedS), 's', { decimals: 2 });
 			return {
-				number: i + 1,
+				number,
 				code: finding.code,
-				segments: markReference(withoutStop(finding.text), finding.evidence),
-				cost: shareS === null ? null : costText(shareS),
+				segments: findingParts(finding),
+				cost: Math.abs(shareS ?? 0) < SAYABLE_S ? null : costText(shareS ?? 0),
 				carriedOn:
-					shareS !== null && carriedS >= SAYABLE_S
-						? `another ${formatUnit(carriedS, 's', { decimals: 2 })} carried on`
-						: null,
+					Math.abs(carriedS) < SAYABLE_S
+						? null
+						: carriedS > 0
+							? `another ${amount} carried on`
+							: `${amount} won back after it`,
 				habit: habitText(finding)
 			};
 		}),
@@ -72,9 +92,5 @@ export function habitText({ habit, habitLaps }: Pick<Finding, 'habit' | 'habitLa
 	if (habitLaps === null || habit === null) return null;
 	const { shown, of } = habitLaps;
 	const laps = `${shown} of ${figureOf(of, 'lap')}`;
-	return { shown, of, text: habit ? `habit, ${laps}` : shown <= 1 ? `one-off, ${laps}` : laps };
-}
-
-function withoutStop(text: string): string {
-	return text.trim().replace(/\.$/, '');
+	return { shown, of, isHabit: habit, text: habit ? `habit, ${laps}` : shown <= 1 ? `one-off, ${laps}` : laps };
 }

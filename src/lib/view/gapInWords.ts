@@ -6,7 +6,7 @@ import type { Finding } from '../schemas/analysisDocument.ts';
 import type { FindingCode } from '../schemas/codes.ts';
 import type { ComparisonView } from '../schemas/views.ts';
 import { cornerName } from './cornerTitle.ts';
-import { ownShareS } from './findingLines.ts';
+import { orderedFindings } from './findingLines.ts';
 
 /** The conclusion that opens the compare page: sentences in order, and the corner to begin with. */
 export interface GapInWords {
@@ -22,6 +22,9 @@ const CLEAR_S = 0.01;
 /** The corners that are named together hold at least this share of the gap, or there are four of them. */
 const SHARE_NAMED = 2 / 3;
 const MOST_NAMED = 4;
+/** A cause is worth a clause from here; the second one where it costs at least this share of the first. */
+const SAID_FROM_S = 0.01;
+const SECOND_CAUSE_SHARE = 0.35;
 
 /**
  * Says in words where the time went: "Four corners hold 73 % of it: 4, 8, 6 and 10. Begin at Tern Hairpin, where the brake
@@ -51,11 +54,13 @@ export function gapInWords(view: ComparisonView, speedUnit: SpeedUnit = 'kmh'): 
 	if (worst) {
 		const corner = view.corners.find((c) => c.number === worst.corner);
 		const where = corner?.name ?? `corner ${worst.corner}`;
-		const causes = comparison.findings
-			.filter((finding) => finding.corner === worst.corner && (ownShareS(finding, worst.corner) ?? 0) > 0)
-			.sort((a, b) => (ownShareS(b, worst.corner) ?? 0) - (ownShareS(a, worst.corner) ?? 0))
+		const costly = orderedFindings(comparison, worst.corner).filter(
+			({ number, shareS }) => number !== null && (shareS ?? 0) >= SAID_FROM_S
+		);
+		const causes = costly
+			.filter(({ shareS }) => (shareS ?? 0) >= (costly[0].shareS ?? 0) * SECOND_CAUSE_SHARE)
 			.slice(0, 2)
-			.map((finding) => clause(finding, speedUnit))
+			.map(({ finding }) => clause(finding, speedUnit))
 			.filter((text) => text !== null);
 		const said = [...new Set(causes)];
 		const verb = gapS >= NOTHING_S ? 'Begin at' : 'There is still time at';

@@ -1,6 +1,6 @@
 import { formatDay, type DateFormat } from '../format/date.ts';
 import { formatLapTime } from '../format/lapTime.ts';
-import type { Fairness, LapHead } from '../schemas/views.ts';
+import type { LapHead } from '../schemas/views.ts';
 
 /** How a lap is called where it is laid on another. */
 export interface LapLabel {
@@ -51,14 +51,3 @@ function stateText(lap: LapHead): string {
 		.filter(Boolean)
 		.join(', ');
 }
-
-/** What a reader must know before trusting the pair, one sentence each. */
-export const FAIRNESS_TEXT: Record<Fairness, string> = {
-	other_car: 'The two laps were driven in different cars.',
-	car_unknown: 'The car of one lap is not known, so it may not be the same.',
-	other_conditions: 'The two laps were driven in different conditions.',
-	conditions_unknown: 'The conditions of one lap are not known.',
-	other_place: 'One lap comes from a simulator and the other from a circuit.',
-	driver_lap_not_clean: 'The driver’s lap is not clean.',
-	reference_not_clean: 'The reference lap is not clean.'
-};

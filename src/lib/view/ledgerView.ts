@@ -1,4 +1,4 @@
-import { scaleLinear } from 'd3-scale';
+import { scaleLinear, type ScaleLinear } from 'd3-scale';
 import { deltaWord, formatSignedSeconds, type DeltaWord } from '../format/delta.ts';
 import { formatNumber } from '../format/number.ts';
 import type { Comparison, LedgerRow } from '../schemas/analysisDocument.ts';
@@ -119,13 +119,10 @@ export function ledgerView(comparison: Comparison, corners: readonly CornerView[
 	return {
 		heightPx: HEIGHT_PX,
 		zeroPx: round(y(0)),
-		ticks: y
-			.ticks(4)
-			.filter((value) => value !== 0)
-			.map((value) => ({
-				topPx: round(y(value)),
-				text: formatNumber(value, { decimals: Number.isInteger(value * 10) ? 1 : 2 })
-			})),
+		ticks: fewTicks(y).map((value) => ({
+			topPx: round(y(value)),
+			text: formatNumber(value, { decimals: Number.isInteger(value * 10) ? 1 : 2 })
+		})),
 		columns,
 		sums: [
 			sum((row) => (row.corner === 0 ? row.totalS : row.entryS)),
@@ -139,6 +136,12 @@ export function ledgerView(comparison: Comparison, corners: readonly CornerView[
 			word: deltaWord(running)
 		}
 	};
+}
+
+/** At most three levels beside zero. */
+function fewTicks(y: ScaleLinear<number, number>): number[] {
+	const levels = (count: number): number[] => y.ticks(count).filter((value) => value !== 0);
+	return [4, 3, 2, 1].map(levels).find((ticks) => ticks.length <= 3) ?? [];
 }
 
 /** The run-up is one step: all of it is entry. */

@@ -1,3 +1,4 @@
+import { UNITS_PER_PX, WIDTH_UNITS } from './geometry/units.ts';
 import { scaleLinear } from 'd3-scale';
 import { deltaWord, formatDelta, formatSignedSeconds, type DeltaWord } from '../format/delta.ts';
 import type { LapGrid } from '../analysis/model.ts';
@@ -7,11 +8,10 @@ import { cornerWindow } from './cornerWindow.ts';
 import { deltaRow, type DeltaRow } from './deltaRow.ts';
 import { findingLines } from './findingLines.ts';
 import { gridValue, metresBetween, type GridColumn } from './gridValue.ts';
-import { tracePath, UNITS_PER_PX } from './geometry/tracePath.ts';
-import type { Segment } from './markReference.ts';
+import { tracePath } from './geometry/tracePath.ts';
+import type { TextPart } from '../analysis/findings/findingText.ts';
 import { placedCorner } from './placedCorner.ts';
 import { cornerFrame, handAt, MINI_RIBBON, planRibbon, planTrack, stretchLines } from './planLines.ts';
-import { WIDTH_UNITS } from './traceRows.ts';
 
 /** One corner on the contact sheet. */
 export interface MiniCard {
@@ -20,7 +20,7 @@ export interface MiniCard {
 	total: { deltaS: number; text: string; word: DeltaWord };
 	parts: { name: 'entry' | 'mid' | 'exit'; text: string }[];
 	/** the largest cause, and the next one where there is room */
-	sentence: Segment[];
+	sentence: TextPart[];
 	/** "habit, 6 of 7 laps" */
 	habit: string | null;
 	plan: { widthPx: number; heightPx: number; reference: string; driver: string } | null;
@@ -75,7 +75,7 @@ export function miniCard(view: ComparisonView, number: number, domain: [number, 
 	const hand = handAt(path, corner.apexM, corner.direction);
 	const planFrom = Math.max(fromM, Math.floor(places.turnInM - 64));
 	const planTo = Math.min(toM, Math.ceil(places.endM + 40));
-	const { lines } = findingLines(view.comparison, number);
+	const lines = findingLines(view.comparison, number).lines.filter((line) => line.number !== null);
 	const { ledger } = places;
 	return {
 		number,
@@ -139,22 +139,13 @@ function miniPlan(view: ComparisonView, fromM: number, toM: number, hand: 1 | -1
 	};
 }
 
-function sentence(causes: Segment[][], totalS: number): Segment[] {
-	const plain = (text: string): Segment => ({ text, reference: false });
+/** The first cause; the second behind it where both fit. Each is a sentence of its own already. */
+function sentence(causes: TextPart[][], totalS: number): TextPart[] {
+	const plain = (text: string): TextPart => ({ text, isReference: false });
 	if (causes.length === 0) {
 		return [plain(deltaWord(totalS) === 'found' ? 'Quicker here than the reference.' : 'No single cause found.')];
 	}
-	const length = (segments: Segment[]): number => segments.reduce((sum, segment) => sum + segment.text.length, 0);
+	const length = (parts: TextPart[]): number => parts.reduce((sum, part) => sum + part.text.length, 0);
 	const [first, second] = causes;
-	if (second && length(first) + length(second) <= TWO_LINES) {
-		const [head, ...tail] = second;
-		return [
-			...first,
-			plain('; '),
-			{ ...head, text: head.text.charAt(0).toLowerCase() + head.text.slice(1) },
-			...tail,
-			plain('.')
-		];
-	}
-	return [...first, plain('.')];
+	return second && length(first) + length(second) <= TWO_LINES ? [...first, plain(' '), ...second] : first;
 }

@@ -1,10 +1,10 @@
+import { UNITS_PER_PX } from './geometry/units.ts';
 import type { LapGrid, ReferencePath } from '../analysis/model.ts';
 import type { ComparisonView } from '../schemas/views.ts';
 import { gridValue } from './gridValue.ts';
 import { pathPoint, type PathPoint } from './geometry/pathPoint.ts';
 import { planFrame, type PlanFrame } from './geometry/planFrame.ts';
 import { ribbonPath, type RibbonPoint } from './geometry/ribbonPath.ts';
-import { UNITS_PER_PX } from './geometry/tracePath.ts';
 
 /** Widths by pressure, px at 0 and added at full: pressure is width, and no other scale of pressure stands in the plan. */
 export const RIBBON = { pen: [1.6, 4.4], highlighter: [6.5, 7.5] } as const;

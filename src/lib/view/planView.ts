@@ -1,3 +1,4 @@
+import { UNITS_PER_PX } from './geometry/units.ts';
 import { formatDistance } from '../format/distance.ts';
 import { formatNumber } from '../format/number.ts';
 import type { ComparisonView, CornerView } from '../schemas/views.ts';
@@ -7,7 +8,6 @@ import { CompactPath } from './geometry/CompactPath.ts';
 import { pathPoint } from './geometry/pathPoint.ts';
 import { placeLabel, type Box } from './geometry/placeLabel.ts';
 import type { PlanFrame } from './geometry/planFrame.ts';
-import { UNITS_PER_PX } from './geometry/tracePath.ts';
 import { rulerTicks, type RulerTick } from './rulerView.ts';
 import { cornerFrame, handAt, planRibbon, planTrack, RIBBON, stretchLines } from './planLines.ts';
 
@@ -42,7 +42,7 @@ export interface PlanView {
 	note: string | null;
 }
 
-const SIZE = { widthPx: 372, heightPx: [300, 424] as [number, number] };
+const SIZE = { widthPx: 372, heightPx: [300, 500] as [number, number] };
 const PADDING: [number, number, number, number] = [26, 30, 22, 62];
 /** px per character of 12 px Public Sans, generous */
 const CHARACTER_PX = 6.6;

@@ -1,7 +1,6 @@
+import { UNITS_PER_PX, WIDTH_UNITS } from './geometry/units.ts';
 import { scaleLinear } from 'd3-scale';
 import { CompactPath } from './geometry/CompactPath.ts';
-import { UNITS_PER_PX } from './geometry/tracePath.ts';
-import { WIDTH_UNITS } from './traceRows.ts';
 import { formatDistance } from '../format/distance.ts';
 import { formatNumber } from '../format/number.ts';
 

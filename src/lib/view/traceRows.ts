@@ -1,9 +1,10 @@
+import { UNITS_PER_PX, WIDTH_UNITS } from './geometry/units.ts';
 import { scaleLinear } from 'd3-scale';
 import type { LapGrid } from '../analysis/model.ts';
 import { formatNumber } from '../format/number.ts';
 import { SPEED_UNIT_TEXT, speedIn, type SpeedUnit } from '../format/speed.ts';
 import { gridValue, metresBetween, type GridColumn } from './gridValue.ts';
-import { tracePath, UNITS_PER_PX } from './geometry/tracePath.ts';
+import { tracePath } from './geometry/tracePath.ts';
 
 export type RowKey = 'brake' | 'speed' | 'throttle' | 'steering';
 
@@ -24,9 +25,6 @@ export interface TraceRow {
 	/** said in the row where a file lacks the channel; both lines may be empty then */
 	missing: string | null;
 }
-
-/** Rows are drawn on a plot of 1000 px and stretched to the width that there is. */
-export const WIDTH_UNITS = 1000 * UNITS_PER_PX;
 
 export interface TraceInput {
 	driver: LapGrid;
@@ -102,7 +100,9 @@ export function rowScale(key: RowKey, values: number[]): Pick<TraceRow, 'domain'
 		const to = (value: number, round: (v: number) => number): number => round(value / 30) * 30 + 0;
 		const domain: [number, number] = [to(Math.min(0, low), Math.floor), to(Math.max(0, high), Math.ceil)];
 		if (domain[0] === domain[1] || !Number.isFinite(domain[0])) return { domain: [-30, 30], ticks: say([0]) };
-		return { domain, ticks: say([...new Set([0, domain[0], domain[1]])]) };
+		// Ends too near to 0 for two numbers are not written.
+		const clear = domain.filter((end) => Math.abs(end) > 0.3 * (domain[1] - domain[0]));
+		return { domain, ticks: say([0, ...clear]) };
 	}
 	if (low > high) return { domain: [0, 100], ticks: say([0, 50, 100]) };
 	const domain: [number, number] = [

@@ -2,9 +2,6 @@ import { line } from 'd3-shape';
 import { CompactPath } from './CompactPath.ts';
 import { keepIndices } from './keepIndices.ts';
 
-/** Paths are written in tenths of a pixel, so that whole numbers are exact enough. */
-export const UNITS_PER_PX = 10;
-
 export interface TracePathInput {
 	/** places in m, increasing */
 	placesM: readonly number[];
