@@ -10,9 +10,9 @@ const environmentSchema = z.object({
 	/** the address that people type; state changes from any other are refused */
 	ORIGIN: z.url({ protocol: /^https?$/ }).optional(),
 	/** folder of raw files; the same for all processes of one machine */
-	KERBNOTE_FILES: z
+	KERBNOTE_STORAGE: z
 		.string()
-		.default('var/files')
+		.default('var/storage')
 		.transform((folder) => resolve(folder)),
 	/** folder of the built product, in which the thread entries lie */
 	KERBNOTE_BUILD: z

@@ -6,7 +6,7 @@ let shared: RawStore | undefined;
 
 /** The raw store of this process. */
 export function rawStore(): RawStore {
-	return (shared ??= new LocalRawStore(environment().KERBNOTE_FILES));
+	return (shared ??= new LocalRawStore(environment().KERBNOTE_STORAGE));
 }
 
 /** Where the raw file of an upload lies. */
