@@ -33,6 +33,11 @@ const SPELLED: Record<string, string> = {
 	'–': ''
 };
 
+/** A unit as a page writes it: "0–1" for "0..1". */
+export function spelledUnit(unit: string): string {
+	return SPELLED[unit] ?? unit;
+}
+
 const RATIO = new Set(['%', '0..1', '‰']);
 const PRESSURE = new Set(['bar', 'mbar', 'kPa', 'hPa', 'Pa', 'MPa', 'psi']);
 const FORCE = new Set(['N', 'kN', 'daN', 'kgf', 'lbf']);
@@ -54,7 +59,7 @@ export function unitAfterReading(channel: Channel, fileUnit: string): string {
 
 /** What a column was measured in and what it became: "m/s → km/h"; one unit where nothing was converted. */
 export function unitText(channel: Channel, fileUnit: string): string {
-	const written = SPELLED[fileUnit] ?? fileUnit;
+	const written = spelledUnit(fileUnit);
 	const after = unitAfterReading(channel, fileUnit);
 	return after === '' || written === '' || written === after ? written || after : `${written} → ${after}`;
 }
