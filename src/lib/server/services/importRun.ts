@@ -33,7 +33,8 @@ type Upload = z.infer<typeof uploadSchema>;
 
 /**
  * Reads, analyses and stores one upload: raw file → thread → one transaction that holds the job and the upload. A refused file
- * leaves its reason and nothing else; a job that was taken away, and one for an older reading, store nothing.
+ * leaves its reason and nothing else (runs of an earlier reading stay); a job that was taken away, and one for an older reading,
+ * store nothing.
  *
  * @param signal ends the thread; nothing was stored yet
  * @throws what is not the file's fault, for another try
@@ -56,7 +57,6 @@ export async function importRun(
 	);
 	if ('refusal' in answer) {
 		await settle(db, job, upload, async (trx) => {
-			await trx('runs').where({ upload_id: upload.id }).delete();
 			await trx('uploads')
 				.where({ id: upload.id })
 				.update({
