@@ -69,7 +69,7 @@ export function mappingFromForm(fields: ReadonlyMap<string, string>, columns: re
 	return {
 		problem: null,
 		mapping: {
-			columns: columns.flatMap((column, index) => {
+			columns: columns.flatMap((column, index): ColumnMapping['columns'] => {
 				const channel = channelAt.get(index) ?? null;
 				if (channel === null) {
 					const isOurs = column.channel === null || choosable.has(column.channel);
