@@ -6,7 +6,7 @@ test.describe('signing in', () => {
 
 	test('the first page says what it is for and leads to the sign-in', async ({ page, open, expectSound }) => {
 		await open('/');
-		await expect(page.getByRole('heading', { level: 1 })).toHaveText('You have a lap file and a feeling');
+		await expect(page.getByRole('heading', { name: 'You have a lap file and a feeling' })).toBeVisible();
 		await expectSound();
 		await page.getByRole('main').getByRole('link', { name: 'Sign in' }).click();
 		await expect(page).toHaveURL(/\/sign-in$/);
