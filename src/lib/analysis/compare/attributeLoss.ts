@@ -10,6 +10,8 @@ const NO_DEFICIT = 0.05;
 /** On a straight the gap may drift by this share, or by this speed, before the car, a tow or the wind is held responsible. */
 const DRIFT_SHARE = 0.3;
 const DRIFT_MPS = 1 / KMH_PER_MPS;
+/** Elsewhere this much is the jitter of places and speeds. */
+const JITTER_SHARE = 0.02;
 /** Share of the model's own scatter that the mean over a whole straight may be off by. */
 const SCATTER_SHARE = 0.3;
 
@@ -53,7 +55,7 @@ export function attributeLoss(
 			const own = Math.abs(pools.gap) > NO_DEFICIT ? 1 + ownGrowth(gap, i, model) / pools.gap : 1;
 			pools.evolve(next, Math.min(Math.max(own, 0), 2), loss[i]);
 		} else if (straight[i]) pools.change(next, REST, 1 + DRIFT_SHARE);
-		else pools.change(next, next > 0 ? loss[i] : gain[i]);
+		else pools.change(next, next > 0 ? loss[i] : gain[i], 1 + JITTER_SHARE);
 
 		const atM = fromM + i;
 		if (atM < 0 || !Number.isFinite(lossPerDeficit[i] + lossPerDeficit[i + 1])) continue;

@@ -34,6 +34,8 @@ const TIGHTER_RADIUS = 0.93;
 const GRIP_USED = 0.97;
 const GRIP_LEFT = 0.93;
 const LEAST_OFFSET_M = 0.8;
+/** Coasting that is worth a word beside a low minimum speed. */
+const LEAST_COASTING_S = 0.1;
 /** An opening of the throttle longer than the reference's is a cause of its own from this share of the lateness on. */
 const SLOW_OPENING_SHARE = 0.5;
 
@@ -111,7 +113,7 @@ export function causesOfSlowing(c: CornerCase, onBrake: boolean): CauseShare[] {
 		const line = tighterLine(c);
 		if (line) return whole(line);
 		const longer = more(differenceOf(c.pair, 'releaseEndM')) ? (['releaseEndM'] as const) : [];
-		const rolls = !longer.length && more(coasting) ? (['coastingS'] as const) : [];
+		const rolls = !longer.length && more(coasting) && coasting.by > LEAST_COASTING_S ? (['coastingS'] as const) : [];
 		return whole(cause(c, 'min_speed_low', 'minKmh', ...longer, ...rolls));
 	}
 	if (onBrake) {
