@@ -2,7 +2,7 @@ import type { SourceColumn, SourceSummary, Warning } from '../schemas/analysisDo
 import { channelSchema } from '../schemas/channels.ts';
 import type { Channel } from '../schemas/channels.ts';
 import { KerbnoteError } from '../schemas/kerbnoteError.ts';
-import { pick, quantile, typicalStep } from './columns.ts';
+import { pick, range, typicalStep } from './columns.ts';
 import type { Column, Columns } from './columns.ts';
 import { readClockColumn } from './fileClock.ts';
 import type { FileClock } from './fileClock.ts';
@@ -128,7 +128,8 @@ function convertLapTimes(columns: Columns, plans: ReadonlyMap<string, ColumnPlan
 function relabelRestartingDistance(columns: Columns, plans: Map<string, ColumnPlan>): boolean {
 	const distance = columns.get('distance');
 	if (!distance || columns.has('lapDistance')) return false;
-	const span = quantile(distance, 1) - quantile(distance, 0);
+	const { min, max } = range(distance);
+	const span = max - min;
 	let restarts = 0;
 	for (let i = 1; i < distance.length; i++) if (distance[i] < distance[i - 1] - 0.4 * span) restarts++;
 	if (restarts === 0) return false;
@@ -181,7 +182,7 @@ function describeColumns(
 		const channel = used && relabelled && plan.channel === 'distance' ? 'lapDistance' : plan.channel;
 		const published = channelSchema.safeParse(used ? channel : null);
 		const column = plan === timePlan ? seconds : used && channel ? columns.get(channel) : undefined;
-		const [min, max] = column ? [quantile(column, 0), quantile(column, 1)] : [NaN, NaN];
+		const { min, max } = column ? range(column) : { min: NaN, max: NaN };
 		return {
 			header: plan.header,
 			channel: published.success ? published.data : null,

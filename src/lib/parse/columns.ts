@@ -50,6 +50,17 @@ export function quantile(column: ArrayLike<number>, share: number): number {
 	return sorted[Math.min(count - 1, Math.max(0, Math.round(share * (count - 1))))];
 }
 
+/** Least and largest finite value; both NaN where there is none. */
+export function range(column: Column): { min: number; max: number } {
+	let [min, max] = [Infinity, -Infinity];
+	for (let i = 0; i < column.length; i++) {
+		const value = column[i];
+		if (value < min && value !== -Infinity) min = value;
+		if (value > max && value !== Infinity) max = value;
+	}
+	return min <= max ? { min, max } : { min: NaN, max: NaN };
+}
+
 /** Median of the positive steps of a column. */
 export function typicalStep(column: ArrayLike<number>): number {
 	const stride = Math.max(1, Math.ceil(column.length / MAX_SAMPLES));

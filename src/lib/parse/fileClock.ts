@@ -37,14 +37,14 @@ export function readClockColumn(column: Column, plan: ColumnPlan): FileClock {
 	if (plan.timeForm === 'date') {
 		const zoned = plan.samples.some((sample) => readDate(sample)?.zoned);
 		return {
-			seconds: Float64Array.from(column, (value) => value - first),
+			seconds: scaled(column, first, 1),
 			epochMs: zoned ? Math.round(first * 1000) : null,
 			label: 'ISO 8601',
 			warning: null
 		};
 	}
 	if (plan.timeForm === 'clock')
-		return { seconds: Float64Array.from(column), epochMs: null, label: 'h:mm:ss.sss', warning: null };
+		return { seconds: new Float64Array(column), epochMs: null, label: 'h:mm:ss.sss', warning: null };
 	const middle = quantile(column, 0.5);
 	for (const { perSecond, label } of EPOCHS) {
 		if (middle / perSecond < EPOCH_FROM_S || middle / perSecond > EPOCH_TO_S) continue;

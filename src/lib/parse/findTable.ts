@@ -20,15 +20,17 @@ export interface Table {
 	metadata: Record<string, string>;
 	/** cells of the first rows, for samples and value checks */
 	firstRows: string[][];
-	/** does any line of the head begin a quoted cell in the data? */
-	quoted: boolean;
 }
 
 const DELIMITERS: readonly Delimiter[] = [',', ';', '\t', '|'];
 /** Lines that are looked at: enough to see past a long preamble, few enough to take no time. */
-const MAX_LINES = 600;
+const MAX_LINES = 400;
+/** Lines that are read cell by cell for one question. */
+const MAX_PROBES = 60;
+/** Lines above the numbers among which the header is looked for. */
+const MAX_HEADER_ROWS = 6;
 export const MAX_COLUMNS = 2000;
-const MAX_SAMPLE_ROWS = 200;
+const MAX_SAMPLE_ROWS = 100;
 const MAX_METADATA = 60;
 
 /**
@@ -81,7 +83,7 @@ function findBody(lines: readonly string[], delimiter: Delimiter): Body | null {
 	const rows = lines.map((line) => splitLine(line, delimiter));
 	const filled = rows.flatMap((row, i) => (lines[i].trim() === '' ? [] : [i]));
 	const widths = new Map<number, number>();
-	for (const i of filled) {
+	for (const i of spread(filled)) {
 		if (rows[i].length > 1 && isDataRow(rows[i])) widths.set(rows[i].length, (widths.get(rows[i].length) ?? 0) + 1);
 	}
 	let width = 0;
@@ -94,13 +96,30 @@ function findBody(lines: readonly string[], delimiter: Delimiter): Body | null {
 	for (let at = 0; at < filled.length; at++) {
 		const following = filled.slice(at, at + 4);
 		if (!following.every(fits)) continue;
-		const body = filled.slice(at);
+		const body = spread(filled.slice(at));
 		const share = body.filter(fits).length / body.length;
-		const above = filled[at - 1];
-		const headerFits = at > 0 && Math.abs(rows[above].length - width) <= 1 ? 1 : 0.5;
-		return { delimiter, rows, firstRow: filled[at], width, score: share * headerFits * Math.min(width, 8) };
+		// Names that are understood outweigh everything: a wrong delimiter leaves none.
+		const above = filled.slice(Math.max(0, at - MAX_HEADER_ROWS), at);
+		const names = Math.max(
+			0,
+			...above.map((i) => rows[i].filter((cell) => recogniseColumn(cell).channel !== null).length)
+		);
+		const headerFits = above.some((i) => Math.abs(rows[i].length - width) <= 1) ? 1 : 0.5;
+		return {
+			delimiter,
+			rows,
+			firstRow: filled[at],
+			width,
+			score: share * headerFits * (Math.min(width, 8) + 10 * names)
+		};
 	}
 	return null;
+}
+
+/** At most MAX_PROBES of these, evenly spread. */
+function spread<T>(items: readonly T[]): T[] {
+	const stride = Math.ceil(items.length / MAX_PROBES);
+	return items.filter((_, i) => i % stride === 0);
 }
 
 /** At least half of the filled cells are numbers, times or positions. */
@@ -123,14 +142,14 @@ function isValue(cell: string): boolean {
 		readNumber(cell, ',') !== undefined ||
 		readClock(cell) !== undefined ||
 		readDate(cell) !== undefined ||
-		(/[°'NSEWO]/.test(cell) && readAngle(cell) !== undefined)
+		(/[°'NSEWO]/i.test(cell) && readAngle(cell) !== undefined)
 	);
 }
 
 function describe(lines: readonly string[], body: Body): Table {
 	const { rows, firstRow, width, delimiter } = body;
 	const above = [];
-	for (let i = firstRow - 1; i >= 0 && above.length < 6; i--) if (lines[i].trim() !== '') above.push(i);
+	for (let i = firstRow - 1; i >= 0 && above.length < MAX_HEADER_ROWS; i--) if (lines[i].trim() !== '') above.push(i);
 	let header = -1;
 	let recognised = -1;
 	for (const i of above) {
@@ -155,14 +174,13 @@ function describe(lines: readonly string[], body: Body): Table {
 	const data = rows.slice(firstRow).filter((row, i) => lines[firstRow + i].trim() !== '' && row.length > 1);
 	return {
 		delimiter,
-		decimal: decimalSign(data, delimiter),
+		decimal: decimalSign(spread(data), delimiter),
 		headerLine: header + 1,
 		firstDataLine: firstRow + 1,
 		headers,
 		units,
 		metadata: readMetadata(lines.slice(0, header), rows.slice(0, header)),
-		firstRows: data.slice(0, MAX_SAMPLE_ROWS),
-		quoted: lines.slice(firstRow).some((line) => line.includes('"'))
+		firstRows: data.slice(0, MAX_SAMPLE_ROWS)
 	};
 }
 

@@ -1,11 +1,13 @@
+import { readUnit } from './columnUnits.ts';
+
 /** Ways to write "no value" that are not a fault of the file. */
 const MISSING =
 	/^(?:nan|na|n\/a|n\.a\.|#n\/a|#div\/0!|#value!|null|nil|none|undefined|inf|-inf|infinity|-infinity|-|--|---|\?|\*|\.|_)?$/i;
 const PLAIN = /^[+-]?(?:\d+\.?\d*|\.\d+)(?:[e][+-]?\d+)?$/i;
 /** Spaces between digits, of any width (U+00A0, U+2009, U+202F …), and the apostrophe of Swiss figures. */
-const GROUP_SPACE = /(?<=\d)[\s'’](?=\d{3}(?:\D|$))/g;
+const GROUP_SPACE = /(?<=\d)[ \u00a0\u2000-\u200a\u202f'’](?=\d{3}(?:\D|$))/g;
 const MINUS = /[\u2212\u2012\u2013\ufe63\uff0d]/g;
-const TRAILING_UNIT = /(?<=\d)\s*(?:%|°|[a-zµ][a-zµ²0-9/.·]*)$/i;
+const TRAILING_UNIT = /(?<=\d) *(%|°|[a-zµ][a-zµ²0-9/.·]*)$/i;
 
 const WORDS = new Map<string, number>([
 	['on', 1],
@@ -41,7 +43,8 @@ export function readNumber(text: string, decimal: '.' | ','): number | undefined
 		.replace(GROUP_SPACE, '');
 	cell = withPoint(cell, decimal);
 	if (PLAIN.test(cell)) return Number(cell);
-	const bare = cell.replace(TRAILING_UNIT, '');
+	const unit = TRAILING_UNIT.exec(cell);
+	const bare = unit && readUnit(unit[1]).length > 0 ? cell.slice(0, unit.index) : cell;
 	if (PLAIN.test(bare)) return Number(bare);
 	const grouped = withPoint(bare, decimal);
 	if (PLAIN.test(grouped)) return Number(grouped);

@@ -3,7 +3,7 @@ import type { Warning } from '../schemas/analysisDocument.ts';
 import { unitById } from './columnUnits.ts';
 import type { Unit } from './columnUnits.ts';
 import type { Column, Columns } from './columns.ts';
-import { quantile } from './columns.ts';
+import { quantile, range } from './columns.ts';
 import type { ColumnPlan } from './planColumns.ts';
 import { speedEvidence, speedKmhPerUnit } from './speedEvidence.ts';
 
@@ -85,7 +85,8 @@ class Resolver {
 			const column = this.#columns.get(channel);
 			if (!column) continue;
 			const unit = this.#declared(channel);
-			const largest = Math.max(Math.abs(quantile(column, 0)), Math.abs(quantile(column, 1)));
+			const { min, max } = range(column);
+			const largest = Math.max(Math.abs(min), Math.abs(max));
 			let label = 'deg';
 			if (unit?.id === 'rad') this.#use(channel, unit);
 			else if (largest > 1e6) {
@@ -133,7 +134,7 @@ class Resolver {
 		if (!column) return null;
 		const plan = this.#plans.get(channel);
 		const unit = plan?.unit ?? null;
-		const [low, high] = [quantile(column, 0), quantile(column, 1)];
+		const { min: low, max: high } = range(column);
 		if (unit?.id === 'switch' || (unit === null && isSwitch(column))) {
 			for (let i = 0; i < column.length; i++)
 				column[i] = Number.isNaN(column[i]) ? NaN : column[i] > (low + high) / 2 ? 1 : 0;
@@ -181,7 +182,7 @@ class Resolver {
 		const column = this.#columns.get('throttle');
 		if (!column) return;
 		const unit = this.#declared('throttle');
-		const [low, high] = [quantile(column, 0), quantile(column, 1)];
+		const { min: low, max: high } = range(column);
 		const share = low > -0.1 && high <= 1.05 && high - low > 0.2;
 		if (unit?.dimension === 'ratio') return this.#use('throttle', unit.id === '%' && share ? unitById('0..1') : unit);
 		if (unit === null && share) return this.#use('throttle', unitById('0..1'));

@@ -258,7 +258,7 @@ class TimelineBuilder {
 		let repeated = 0;
 		for (let i = 1; i < length; i++) if (raw[i] === raw[i - 1] && !this.#sameRow(i - 1, i)) repeated++;
 		if (repeated < COARSE_SHARE * length) return null;
-		const spread = Float64Array.from(raw);
+		const spread = new Float64Array(raw);
 		let lastStep = NaN;
 		for (let start = 0; start < length;) {
 			let end = start + 1;

@@ -19,6 +19,25 @@ export function percentile(values: ArrayLike<number>, share: number, where?: (in
 	return sorted[Math.round(share * (count - 1))];
 }
 
+/**
+ * Percentile of the ratio of two columns where `where` holds, from at most 20 000 evenly spread samples.
+ *
+ * @param share 0–1
+ * @returns NaN where no sample qualifies
+ */
+export function ratioPercentile(
+	numerator: Float64Array,
+	denominator: Float64Array,
+	share: number,
+	where: (index: number) => boolean
+): number {
+	const stride = Math.max(1, Math.floor(numerator.length / MAX_VALUES));
+	const ratios = new Float64Array(Math.ceil(numerator.length / stride));
+	for (let k = 0, i = 0; i < numerator.length; k++, i += stride)
+		ratios[k] = where(i) ? numerator[i] / denominator[i] : NaN;
+	return percentile(ratios, share);
+}
+
 /** Share of the finite values for which `test` holds; 0 where there are none. */
 export function shareOf(values: ArrayLike<number>, test: (value: number, index: number) => boolean): number {
 	const stride = Math.max(1, Math.floor(values.length / MAX_VALUES));

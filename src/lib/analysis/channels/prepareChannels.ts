@@ -43,7 +43,7 @@ export function prepareChannels(raw: RawRun, options: PrepareOptions = {}): Chan
 		...inertial.warnings
 	];
 	return {
-		timeS: Float64Array.from(timeS),
+		timeS: new Float64Array(timeS),
 		speedKmh: motion.speedKmh,
 		distanceM: motion.distanceM,
 		distanceMeasured: motion.distanceMeasured,
@@ -117,7 +117,7 @@ function timeWarnings(raw: RawRun, stepS: number): Warning[] {
 }
 
 function copy(column: ArrayLike<number> | undefined): Float64Array | null {
-	return column ? Float64Array.from(column) : null;
+	return column ? new Float64Array(column) : null;
 }
 
 function held(column: ArrayLike<number> | undefined): Float64Array | null {

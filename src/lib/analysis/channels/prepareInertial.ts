@@ -27,7 +27,7 @@ export function prepareInertial(raw: RawRun, speedKmh: Float64Array, positions: 
 	const { timeS, columns } = raw;
 	const take = (column: ArrayLike<number> | undefined) => {
 		if (!column) return null;
-		const values = Float64Array.from(column);
+		const values = new Float64Array(column);
 		fillGaps(values, timeS, MAX_BRIDGE_S);
 		return values;
 	};

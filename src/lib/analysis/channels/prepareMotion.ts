@@ -3,7 +3,7 @@ import type { RawRun } from '../../parse/rawRun.ts';
 import { KMH_PER_MPS } from '../../units.ts';
 import { speedFromDistance, speedFromPositions } from './derivatives.ts';
 import { fillGaps } from './fillGaps.ts';
-import { percentile } from './percentile.ts';
+import { percentile, ratioPercentile } from './percentile.ts';
 import type { Positions } from './preparePositions.ts';
 
 export interface Motion {
@@ -35,7 +35,7 @@ const FROZEN_SHARE = 0.06;
 export function prepareMotion(raw: RawRun, positions: Positions | null, stepS: number): Motion {
 	const { timeS, columns } = raw;
 	const warnings: Warning[] = [];
-	const measured = columns.speed ? withoutSign(Float64Array.from(columns.speed), raw, warnings) : null;
+	const measured = columns.speed ? withoutSign(new Float64Array(columns.speed), raw, warnings) : null;
 	const along = measuredDistance(raw, measured);
 	let speedKmh = measured;
 	if (!speedKmh && along) {
@@ -239,9 +239,8 @@ function checkScale(
 /** On positions: the median ratio where the car is fast, since noise adds to slow ones. */
 function checkPositionScale(speedKmh: Float64Array, fromPositions: Float64Array, warnings: Warning[]): void {
 	const fast = 0.6 * percentile(speedKmh, 0.95);
-	const ratios = Float64Array.from(speedKmh, (speed, i) => fromPositions[i] / speed);
 	warnScale(
-		percentile(ratios, 0.5, (i) => speedKmh[i] > fast),
+		ratioPercentile(fromPositions, speedKmh, 0.5, (i) => speedKmh[i] > fast),
 		'positions',
 		warnings
 	);

@@ -1,8 +1,8 @@
 import type { Warning } from '../../schemas/analysisDocument.ts';
 import type { BrakeUnit } from '../../schemas/channels.ts';
 import type { RawRun } from '../../parse/rawRun.ts';
-import { KMH_PER_MPS } from '../../units.ts';
 import { fillGaps } from './fillGaps.ts';
+import { gainsMps2 } from './gains.ts';
 import { percentile, shareOf } from './percentile.ts';
 
 export interface Pedals {
@@ -15,6 +15,8 @@ export interface Pedals {
 }
 
 const MAX_BRIDGE_S = 0.5;
+/** Half the span over which a gain of speed is taken, s. */
+const GAIN_HALF_SPAN_S = 0.2;
 /** A rest level closer to zero than this (%) is noise. */
 const REST_TOLERANCE_PCT = 0.5;
 /** A pedal whose range stays under this (%) was not used or is not connected. */
@@ -35,7 +37,7 @@ const PLATEAU_SHARE = 0.03;
  */
 export function preparePedals(raw: RawRun, speedKmh: Float64Array, brakeFull: number | null): Pedals {
 	const warnings: Warning[] = [];
-	const gainMps2 = gains(speedKmh, raw.timeS);
+	const gainMps2 = gainsMps2(speedKmh, raw.timeS, GAIN_HALF_SPAN_S);
 	const brake = raw.columns.brake ?? raw.columns.brakeRear;
 	const throttle = prepareThrottle(raw, gainMps2, warnings);
 	const pedals: Pedals = {
@@ -47,7 +49,7 @@ export function preparePedals(raw: RawRun, speedKmh: Float64Array, brakeFull: nu
 		warnings
 	};
 	if (!brake || !raw.brakeUnit) return pedals;
-	const values = Float64Array.from(brake);
+	const values = new Float64Array(brake);
 	fillGaps(values, raw.timeS, MAX_BRIDGE_S);
 	pedals.brakeUnit = raw.brakeUnit;
 	if (raw.brakeUnit === 'switch') {
@@ -122,7 +124,7 @@ function turnWhereInverted(values: Float64Array, gainMps2: Float64Array): void {
 
 function prepareThrottle(raw: RawRun, gainMps2: Float64Array, warnings: Warning[]): Float64Array | null {
 	if (!raw.columns.throttle) return null;
-	const throttle = Float64Array.from(raw.columns.throttle);
+	const throttle = new Float64Array(raw.columns.throttle);
 	fillGaps(throttle, raw.timeS, MAX_BRIDGE_S);
 	const [low, high] = [percentile(throttle, 0.001), percentile(throttle, 0.999)];
 	if (!(high - low > DEAD_RANGE_PCT)) {
@@ -165,17 +167,6 @@ function scaleThrottle(throttle: Float64Array, gainMps2: Float64Array, warnings:
 	for (let i = 0; i < throttle.length; i++)
 		throttle[i] = Math.min(100, Math.max(0, ((throttle[i] - rest) / (full - rest)) * 100));
 	return throttle;
-}
-
-/** Change of speed over about 0.4 s, m/s², one value per sample. */
-function gains(speedKmh: Float64Array, timeS: Float64Array): Float64Array {
-	const length = speedKmh.length;
-	const rate = (length - 1) / (timeS[length - 1] - timeS[0]);
-	const half = Math.max(1, Math.round(0.2 * rate));
-	return Float64Array.from(speedKmh, (_, i) => {
-		const [from, to] = [Math.max(0, i - half), Math.min(length - 1, i + half)];
-		return (speedKmh[to] - speedKmh[from]) / KMH_PER_MPS / (timeS[to] - timeS[from]);
-	});
 }
 
 function round(value: number): string {

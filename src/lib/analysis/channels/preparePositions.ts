@@ -31,7 +31,7 @@ export function preparePositions(raw: RawRun): Positions | null {
 	const geographic = latitude !== undefined && longitude !== undefined;
 	const [first, second] = geographic ? [latitude, longitude] : [positionX, positionY];
 	if (!first || !second) return null;
-	const [a, b] = [Float64Array.from(first), Float64Array.from(second)];
+	const [a, b] = [new Float64Array(first), new Float64Array(second)];
 	let missing = 0;
 	let firstMissing = -1;
 	let [heldA, heldB] = [NaN, NaN];
@@ -64,7 +64,8 @@ export function preparePositions(raw: RawRun): Positions | null {
 	}
 	fillSmooth(xM, timeS, MAX_BRIDGE_S);
 	fillSmooth(yM, timeS, MAX_BRIDGE_S);
-	const open = xM.reduce((count, value) => count + (Number.isNaN(value) ? 1 : 0), 0);
+	let open = 0;
+	for (const value of xM) if (Number.isNaN(value)) open++;
 	if (open > 0 && firstMissing >= 0) {
 		warnings.push({
 			code: 'positions_missing',

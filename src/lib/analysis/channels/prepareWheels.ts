@@ -1,12 +1,14 @@
 import type { Wheel } from '../../schemas/analysisDocument.ts';
 import type { RawRun } from '../../parse/rawRun.ts';
 import { KMH_PER_MPS } from '../../units.ts';
-import { percentile } from './percentile.ts';
+import { gainsMps2 } from './gains.ts';
+import { ratioPercentile } from './percentile.ts';
 
 const WHEELS = { fl: 'wheelSpeedFl', fr: 'wheelSpeedFr', rl: 'wheelSpeedRl', rr: 'wheelSpeedRr' } as const;
 /** The radius is fitted where tyres roll: fast, hardly any longitudinal force. */
 const MIN_KMH = 40;
 const MAX_GAIN_MPS2 = 1.5;
+const GAIN_HALF_SPAN_S = 0.06;
 /** A lag under this (s) is not worth moving a channel for. */
 const LEAST_LAG_S = 0.015;
 const LARGEST_LAG_S = 0.5;
@@ -21,12 +23,12 @@ export function prepareWheels(raw: RawRun, speedKmh: Float64Array): Record<Wheel
 	const present = Object.values(WHEELS).filter((channel) => raw.columns[channel]);
 	if (present.length === 0) return null;
 	const { timeS } = raw;
-	const gain = gains(speedKmh, timeS);
+	const gain = gainsMps2(speedKmh, timeS, GAIN_HALF_SPAN_S);
 	const prepared = {} as Partial<Record<Wheel, Float64Array>>;
 	for (const [wheel, channel] of wheelEntries()) {
 		const column = raw.columns[channel];
 		prepared[wheel] = column
-			? fitted(Float64Array.from(column), speedKmh, gain, timeS)
+			? fitted(new Float64Array(column), speedKmh, gain, timeS)
 			: new Float64Array(timeS.length).fill(NaN);
 	}
 	const { fl, fr, rl, rr } = prepared;
@@ -43,10 +45,10 @@ function wheelEntries(): [Wheel, (typeof WHEELS)[Wheel]][] {
 }
 
 function fitted(values: Float64Array, speedKmh: Float64Array, gain: Float64Array, timeS: Float64Array): Float64Array {
-	const ratios = Float64Array.from(values, (value, i) => speedKmh[i] / value);
 	const rolling = (i: number) => speedKmh[i] > MIN_KMH && Math.abs(gain[i]) < MAX_GAIN_MPS2 && values[i] > 0;
-	let scale = percentile(ratios, 0.5, rolling);
-	if (!Number.isFinite(scale)) scale = percentile(ratios, 0.5, (i) => speedKmh[i] > MIN_KMH / 2 && values[i] > 0);
+	let scale = ratioPercentile(speedKmh, values, 0.5, rolling);
+	if (!Number.isFinite(scale))
+		scale = ratioPercentile(speedKmh, values, 0.5, (i) => speedKmh[i] > MIN_KMH / 2 && values[i] > 0);
 	if (!Number.isFinite(scale)) scale = 1;
 	for (let i = 0; i < values.length; i++) values[i] *= scale;
 	const lag = lagOf(values, speedKmh, gain);
@@ -87,12 +89,4 @@ function shifted(values: Float64Array, timeS: Float64Array, lagS: number): Float
 				: values[k] + share * (values[k + 1] - values[k]);
 	}
 	return out;
-}
-
-function gains(speedKmh: Float64Array, timeS: Float64Array): Float64Array {
-	const last = timeS.length - 1;
-	return Float64Array.from(speedKmh, (_, i) => {
-		const [from, to] = [Math.max(0, i - 3), Math.min(last, i + 3)];
-		return (speedKmh[to] - speedKmh[from]) / KMH_PER_MPS / (timeS[to] - timeS[from]);
-	});
 }
