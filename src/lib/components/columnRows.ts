@@ -3,7 +3,7 @@ import { formatNumber } from '../format/number.ts';
 import { MINUS, NO_BREAK_SPACE } from '../format/signs.ts';
 import { formatUnit } from '../format/unit.ts';
 import type { SourceColumn } from '../schemas/analysisDocument.ts';
-import { channelSchema, type Channel } from '../schemas/channels.ts';
+import type { Channel } from '../schemas/channels.ts';
 import { CHANNEL_ORDER, CHANNEL_TEXT } from '../texts/channels.ts';
 import { unitAfterReading, unitText } from '../texts/columnUnit.ts';
 
@@ -74,6 +74,6 @@ export function columnRows(
 
 /** Absent things may be wider than one channel ("positions"): those are called as they come. */
 function absentName(channel: string) {
-	const known = channelSchema.safeParse(channel);
-	return known.success ? CHANNEL_TEXT[known.data satisfies Channel] : capitalise(channel);
+	const known = CHANNEL_ORDER.find((one) => one === channel);
+	return known ? CHANNEL_TEXT[known] : capitalise(channel);
 }
