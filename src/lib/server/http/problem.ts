@@ -1,6 +1,6 @@
 import { isHttpError } from '@sveltejs/kit';
 import { KerbnoteError } from '../../schemas/kerbnoteError.ts';
-import type { Problem, ProblemCode } from '../../schemas/api.ts';
+import { problemCodeSchema, type Problem, type ProblemCode } from '../../schemas/api.ts';
 
 /** What can stop a request, other than a bug: thrown by the doors of the API, answered as `application/problem+json`. */
 export class RequestProblem extends Error {
@@ -52,8 +52,14 @@ export function problemOf(thrown: unknown): Response | null {
 		const { code, message, row, column, remedy } = thrown;
 		return problemResponse({ status: code === 'internal' ? 500 : 422, code, detail: message, row, column, remedy });
 	}
-	if (isHttpError(thrown) && thrown.status === 404) {
-		return problemResponse({ status: 404, code: 'not_found', detail: thrown.body.message });
+	if (isHttpError(thrown) && thrown.status < 500) {
+		const { code, message } = thrown.body;
+		const known = problemCodeSchema.safeParse(code);
+		return problemResponse({
+			status: thrown.status,
+			code: known.success ? known.data : 'invalid_input',
+			detail: message
+		});
 	}
 	return null;
 }

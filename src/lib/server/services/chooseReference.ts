@@ -7,14 +7,13 @@ import { listFoundLaps, seenLaps, toLapHead, type FoundLap } from '../db/lapRepo
 /** More than anybody scrolls through; the rest is found through the runs. */
 const MOST_CANDIDATES = 24;
 
-/** What the laps are to be laid on: a layout's path as it was when they were analysed. */
+/** What the laps are to be laid on: a layout's path and corners as they were when the laps were analysed. */
 export interface ReferencePlace {
 	layoutId: number;
 	pathVersion: number;
+	mapVersion: number;
 	/** laps of this car come first */
 	carId: number | null;
-	/** whose lap is to be improved */
-	driverId: number;
 }
 
 /**
@@ -26,6 +25,7 @@ export async function listReferences(db: Knex, viewer: Viewer, place: ReferenceP
 		seenLaps(db, viewer)
 			.where('runs.layout_id', place.layoutId)
 			.where('analyses.path_version', place.pathVersion)
+			.where('analyses.map_version', place.mapVersion)
 			.where('laps.kind', 'timed')
 			.whereNotNull('laps.grid_length_m')
 			.orderByRaw('runs.car_id <=> ? DESC', [place.carId])

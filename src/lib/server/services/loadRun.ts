@@ -50,7 +50,7 @@ export async function loadRun(viewer: Viewer, runId: string): Promise<RunView> {
 	};
 	const [map, references] = await Promise.all([
 		getCornerMap(db, version),
-		listReferences(db, viewer, { ...version, carId: run.car_id, driverId: run.owner_id })
+		listReferences(db, viewer, { ...version, carId: run.car_id })
 	]);
 	const laps = lapRows.get(run.run_id) ?? [];
 	const mayEdit = kept.includes(run.owner_id);

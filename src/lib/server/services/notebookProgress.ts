@@ -36,7 +36,7 @@ export async function loadPageDetail(
 	const [map, points, references] = await Promise.all([
 		getCornerMap(db, version),
 		listCellTimes(db, viewer, page, version.mapVersion),
-		listReferences(db, viewer, { ...version, carId: page.car_id, driverId: page.driverId })
+		listReferences(db, viewer, { ...version, carId: page.car_id })
 	]);
 	const suggestion = suggestPair(viewer, lastLaps, references);
 	const reference = suggestion ? await findCells(db, suggestion.reference.id) : null;

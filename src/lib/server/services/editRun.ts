@@ -1,0 +1,62 @@
+import type { Knex } from 'knex';
+import type { RunDescription } from '../../schemas/api.ts';
+import { keptPeople } from '../access/seenRuns.ts';
+import type { Viewer } from '../access/viewer.ts';
+import { recordAudit } from '../db/auditRepository.ts';
+import { findOrMakeCar } from '../db/carRepository.ts';
+import { database } from '../db/database.ts';
+import { retryOnDeadlock } from '../db/retryOnDeadlock.ts';
+import type { FoundRun } from '../db/runRepository.ts';
+import { notFound } from '../http/notFound.ts';
+import { findRun } from './loadRun.ts';
+
+/**
+ * Writes down what a person says of a run.
+ *
+ * @throws 404 when there is no such run, or it is not in the viewer's care: seeing a run is not enough
+ */
+export async function describeRun(viewer: Viewer, runId: string, said: RunDescription): Promise<void> {
+	const db = database();
+	const run = await getKeptRun(db, viewer, runId);
+	await retryOnDeadlock(db, async (trx) => {
+		const row: Record<string, string | number | Date | null> = {};
+		for (const [column, value] of [
+			['place', said.place],
+			['conditions', said.conditions],
+			['intent', said.intent],
+			['tyre_set', said.tyreSet],
+			['fuel_kg', said.fuelKg]
+		] as const) {
+			if (value !== undefined) row[column] = value;
+		}
+		if (said.car !== undefined)
+			row.car_id = said.car === null ? null : await findOrMakeCar(trx, run.owner_id, said.car);
+		if (said.startedAt !== undefined) {
+			row.started_at = said.startedAt === null ? null : new Date(said.startedAt);
+			row.sort_at = row.started_at ?? run.created_at;
+		}
+		if (Object.keys(row).length > 0) await trx('runs').where({ id: run.run_id }).update(row);
+	});
+}
+
+/**
+ * Takes a run out of sight; its file stays, and so does the row, so that it can be brought back.
+ *
+ * @throws 404 as `describeRun`
+ */
+export async function deleteRun(viewer: Viewer, runId: string): Promise<void> {
+	const db = database();
+	const run = await getKeptRun(db, viewer, runId);
+	await retryOnDeadlock(db, async (trx) => {
+		await trx('runs')
+			.where({ id: run.run_id })
+			.update({ deleted_at: trx.raw('CURRENT_TIMESTAMP(3)') });
+		await recordAudit(trx, { actorId: viewer.personId, action: 'run_deleted', subject: { kind: 'run', id: runId } });
+	});
+}
+
+async function getKeptRun(db: Knex, viewer: Viewer, runId: string): Promise<FoundRun> {
+	const run = (await findRun(db, viewer, runId)) ?? notFound();
+	const kept = await keptPeople(db, viewer);
+	return kept.includes(run.owner_id) ? run : notFound();
+}
