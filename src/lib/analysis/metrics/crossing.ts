@@ -30,7 +30,7 @@ const CLEAR_OF_NOISE = 6;
  * @param i      index before the crossing
  * @param level  in the signal's unit
  * @param quickest  slope of the quickest strokes seen elsewhere, unit per s, null where unknown
- * @example at 10 Hz 0, 0, 30, 80, 95 crosses 5 at 0.15 s: the ramp of 500 per s, drawn back from 30
+ * @example at 10 Hz 0, 0, 25, 60, 95 crosses 5 at 0.143 s: the ramp of 350 per s, drawn back from 25
  */
 export function crossing(signal: Signal, i: number, level: number, quickest: number | null = null): Moment {
 	const { timeS, values, noise } = signal;
@@ -64,11 +64,14 @@ export function crossing(signal: Signal, i: number, level: number, quickest: num
 	const whole = Math.sign(farther) === Math.sign(ramp) && Math.abs(farther) > 0.5 * Math.abs(ramp);
 	const resolved = sameWay && Math.abs(ramp) >= 0.98 * least;
 	const lowest = sameWay ? Math.max(least, Math.abs(ramp)) : least;
-	const slope = resolved && whole ? Math.abs(ramp) : Math.max(quickest ?? (resolved ? lowest : 2 * lowest), lowest);
-	const fromRampS = Math.abs(flatBefore ? values[i + 1] - level : level - values[i]) / slope;
-	const at = flatBefore ? Math.max(start, end - fromRampS) : Math.min(end, start + fromRampS);
-	const openS = resolved && whole ? 0.1 * lengthS : Math.abs(at - (flatBefore ? end : start)) * 0.5;
-	return { timeS: at, plusMinusS: openS + noise / slope };
+	const slope = resolved && whole ? Math.abs(ramp) : Math.max(quickest ?? (resolved ? 1.4 : 2) * lowest, lowest);
+	const reach = Math.abs(flatBefore ? values[i + 1] - level : level - values[i]);
+	const fromRampS = Math.min(reach / slope, lengthS);
+	const at = flatBefore ? end - fromRampS : start + fromRampS;
+	// unresolved, the crossing lies anywhere from the ramp's sample to where the flattest ramp that fits puts it
+	const flattestS = Math.min(reach / lowest, lengthS);
+	const openS = resolved && whole ? 0.1 * lengthS : Math.max(flattestS - fromRampS, fromRampS);
+	return { timeS: at, plusMinusS: openS + (2 * noise) / slope };
 }
 
 /** Slope of the step that begins at sample i; 0 outside the signal and next to a gap. */

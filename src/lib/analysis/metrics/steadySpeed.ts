@@ -19,7 +19,7 @@ const LONGEST_WINDOW_S = 0.4;
 /** Windows tried for the minimum, in samples on either side. */
 const HALF_WINDOWS = [0, 1, 2, 3, 4, 6, 8, 11, 15, 20, 27, 36];
 /** A wider average is taken while it agrees with every narrower one to this many s.d. */
-const AGREE_SD = 1.5;
+const AGREE_SD = 3;
 /** The place of a flat minimum is the middle of what lies this close to it. */
 const SAME_KMH = 0.05;
 
@@ -126,8 +126,8 @@ function widestAverage({ speedKmh, sampleS }: SpeedTrace, at: number, noiseKmh: 
 		const sd = noiseKmh / Math.sqrt(2 * half + 1);
 		if (value < low || value > high) break;
 		best = value;
-		low = Math.max(low, value - 2 * AGREE_SD * sd);
-		high = Math.min(high, value + 2 * AGREE_SD * sd);
+		low = Math.max(low, value - AGREE_SD * sd);
+		high = Math.min(high, value + AGREE_SD * sd);
 	}
 	return best;
 }
