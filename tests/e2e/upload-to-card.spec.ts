@@ -44,7 +44,7 @@ test('a driver hands over a file and reads where the time went', async ({ page, 
 
 	await test.step('open the run', async () => {
 		await page.getByRole('link', { name: 'Open this run' }).click();
-		await expect(page.getByRole('heading', { name: 'Laps' })).toBeVisible();
+		await expect(page.getByRole('heading', { name: 'Laps', exact: true })).toBeVisible();
 		await hydrated(page);
 		await expectSound();
 	});

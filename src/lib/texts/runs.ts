@@ -32,9 +32,19 @@ export function runName(run: Pick<RunListItem, 'startedAt' | 'uploadedAt' | 'run
 	return `${formatDay(run.startedAt ?? run.uploadedAt, format)}, run${NO_BREAK_SPACE}${run.runOfDay}`;
 }
 
+/** What a circuit and a layout are called until somebody names them. */
+const UNNAMED_CIRCUIT = 'unnamed circuit';
+const UNNAMED_LAYOUT = 'full layout';
+
+type Named = Pick<LayoutHead, 'name' | 'circuit'>;
+
 /** "Vallmere Park, grand prix": the circuit, and its layout where it has a name of its own. */
-export function layoutName(layout: Pick<LayoutHead, 'name' | 'circuit'>) {
-	return layout.name === '' || layout.name === layout.circuit.name
-		? layout.circuit.name
-		: `${layout.circuit.name}, ${layout.name}`;
+export function layoutName({ name, circuit }: Named) {
+	const isOwn = name !== '' && name !== circuit.name && name.toLowerCase() !== UNNAMED_LAYOUT;
+	return isOwn ? `${circuit.name}, ${name}` : circuit.name;
+}
+
+/** As `layoutName`, for the middle of a sentence: what nobody has named yet is said to be that. */
+export function layoutInSentence(layout: Named) {
+	return layout.circuit.name.toLowerCase() === UNNAMED_CIRCUIT ? 'a circuit without a name yet' : layoutName(layout);
 }

@@ -2,7 +2,7 @@ import { describe, expect, it } from 'vitest';
 import { channelSchema } from '../schemas/channels.ts';
 import { CHANNEL_ORDER } from './channels.ts';
 import { describeLap } from './laps.ts';
-import { layoutName, runName } from './runs.ts';
+import { layoutInSentence, layoutName, runName } from './runs.ts';
 import { describeSource } from './source.ts';
 import { describeUpload, isSettled } from './uploads.ts';
 import { warningText } from './warnings.ts';
@@ -44,9 +44,20 @@ describe('names of runs and layouts', () => {
 	it.each([
 		{ name: 'grand prix', circuit: 'Vallmere Park', expected: 'Vallmere Park, grand prix' },
 		{ name: '', circuit: 'Tern Hollow', expected: 'Tern Hollow' },
-		{ name: 'Tern Hollow', circuit: 'Tern Hollow', expected: 'Tern Hollow' }
+		{ name: 'Tern Hollow', circuit: 'Tern Hollow', expected: 'Tern Hollow' },
+		{ name: 'Full layout', circuit: 'Unnamed circuit', expected: 'Unnamed circuit' }
 	])('calls a layout $expected', ({ name, circuit, expected }) => {
 		expect(layoutName({ name, circuit: { id: 'x', name: circuit } })).toBe(expected);
+	});
+});
+
+describe('layoutInSentence', () => {
+	it('does not set a stand-in as if it were a name', () => {
+		const circuit = { id: 'x', name: 'Unnamed circuit' };
+		expect(layoutInSentence({ name: 'Full layout', circuit })).toBe('a circuit without a name yet');
+		expect(layoutInSentence({ name: 'short', circuit: { id: 'x', name: 'Vallmere Park' } })).toBe(
+			'Vallmere Park, short'
+		);
 	});
 });
 

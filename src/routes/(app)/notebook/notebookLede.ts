@@ -1,7 +1,7 @@
 import { formatLapTime } from '../../../lib/format/lapTime.ts';
 import { formatUnit } from '../../../lib/format/unit.ts';
 import type { NotebookView } from '../../../lib/schemas/views.ts';
-import { layoutName } from '../../../lib/texts/runs.ts';
+import { layoutInSentence } from '../../../lib/texts/runs.ts';
 
 type Told = Pick<NotebookView, 'pages' | 'latestRuns'>;
 
@@ -15,7 +15,7 @@ const LEVEL_S = 0.05;
 export function notebookLede({ pages, latestRuns }: Told) {
 	const last = latestRuns[0];
 	if (last === undefined) return 'No run yet. Add a session, and the first page opens by itself.';
-	const where = layoutName(last.layout);
+	const where = layoutInSentence(last.layout);
 	if (last.bestLap === null) return `Your last run at ${where} holds no timed lap.`;
 	const page = pages.find((candidate) => candidate.layout.id === last.layout.id && candidate.car?.id === last.car?.id);
 	const time = formatLapTime(last.bestLap.timeS);
