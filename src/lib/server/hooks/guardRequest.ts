@@ -5,6 +5,9 @@ const SAFE_METHODS = new Set(['GET', 'HEAD', 'OPTIONS']);
 /** Forms and JSON; raw files have a limit of their own and one route. */
 const LARGEST_BODY_BYTES = 512 * 1024;
 const RAW_UPLOAD_PATH = '/api/v1/uploads';
+/** The form by which a browser without script hands over a file. It is read into memory, so it stays far below the raw limit. */
+const FORM_UPLOAD_PATH = '/upload';
+const LARGEST_FORM_UPLOAD_BYTES = 64 * 1024 * 1024;
 
 /**
  * Stops what no route needs to see: a change asked for by a page of another site, and bodies that nobody would read.
@@ -40,11 +43,12 @@ function refuseBody(event: RequestEvent): Response | null {
 	if (stated === null) {
 		return problemResponse({ status: 411, code: 'length_required', detail: 'the request requires a Content-Length' });
 	}
-	if (!(Number(stated) <= LARGEST_BODY_BYTES)) {
+	const largest = event.url.pathname === FORM_UPLOAD_PATH ? LARGEST_FORM_UPLOAD_BYTES : LARGEST_BODY_BYTES;
+	if (!(Number(stated) <= largest)) {
 		return problemResponse({
 			status: 413,
 			code: 'body_too_large',
-			detail: `the request requires at most ${LARGEST_BODY_BYTES} bytes, got ${stated}`
+			detail: `the request requires at most ${largest} bytes, got ${stated}`
 		});
 	}
 	return null;
