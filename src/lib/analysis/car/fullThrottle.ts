@@ -95,15 +95,15 @@ function readAccelerations(channels: Channels): { speedMps: number; acceleration
 	const half = Math.max(1, Math.round(HALF_WINDOW_S * sampleRateHz));
 	const step = Math.max(1, Math.round(STEP_S * sampleRateHz));
 	const longestS = 2 * half * (1.5 / sampleRateHz);
-	const counts = (i: number) =>
-		speedKmh[i] > LOWEST_KMH &&
-		(!throttlePct || throttlePct[i] >= FULL_THROTTLE_PCT) &&
-		(!brakePct || !(brakePct[i] > BRAKE_OFF_PCT)) &&
-		(!gear || gear[i] === gear[i - 1]);
 	const readings: { speedMps: number; accelerationMps2: number }[] = [];
 	let since = 1;
 	for (let i = 1, next = 0; i < timeS.length; i++) {
-		if (!counts(i)) {
+		const counts =
+			speedKmh[i] > LOWEST_KMH &&
+			(!throttlePct || throttlePct[i] >= FULL_THROTTLE_PCT) &&
+			(!brakePct || !(brakePct[i] > BRAKE_OFF_PCT)) &&
+			(!gear || gear[i] === gear[i - 1]);
+		if (!counts) {
 			since = i + 1;
 			continue;
 		}
