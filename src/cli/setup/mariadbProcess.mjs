@@ -66,7 +66,13 @@ const durableSettings = (folder) => [
 	'--max-binlog-size=64M'
 ];
 
-const relaxedSettings = ['--skip-log-bin', '--innodb-flush-log-at-trx-commit=0', '--innodb-doublewrite=0'];
+const relaxedSettings = [
+	'--skip-log-bin',
+	'--innodb-flush-log-at-trx-commit=0',
+	'--innodb-doublewrite=0',
+	'--innodb-flush-method=nosync',
+	'--sync-frm=0'
+];
 
 /**
  * Reads in MariaDB's log why it did not start.

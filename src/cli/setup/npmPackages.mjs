@@ -45,7 +45,7 @@ export async function installNpmPackages(root, say) {
 }
 
 /**
- * @typedef {{ packages?: Record<string, { version?: string, integrity?: string, optional?: boolean, extraneous?: boolean }> }} Lock
+ * @typedef {{ packages?: Partial<Record<string, { version?: string, integrity?: string, optional?: boolean, extraneous?: boolean }>> }} Lock
  */
 
 /**
@@ -62,7 +62,7 @@ export async function installNpmPackages(root, say) {
 export function packagesMatch(wanted, installed) {
 	if (!wanted?.packages || !installed?.packages) return false;
 	for (const [name, entry] of Object.entries(wanted.packages)) {
-		if (name === '' || entry.extraneous) continue;
+		if (name === '' || !entry || entry.extraneous) continue;
 		const present = installed.packages[name];
 		if (!present) {
 			if (entry.optional) continue;
