@@ -1,6 +1,8 @@
 import { describe, expect, it } from 'vitest';
 import { centreLine } from './centreLine.ts';
 import { DEMO_RUNS } from './demoRuns.ts';
+import { analyseRun } from '../analysis/analyseRun.ts';
+import { readRun } from '../parse/index.ts';
 import { driveRun, type DrivenRun } from './driveRun.ts';
 import { writeRun } from './writeRun.ts';
 
@@ -66,5 +68,14 @@ describe('the laps of the demo', () => {
 			longest = Math.max(longest, both);
 		}
 		expect(longest).toBeLessThanOrEqual(2);
+	});
+
+	it.each(['reference', 'short', 'kart'])('show the corners that the circuit has: %s', async (key) => {
+		const demo = byKey(key);
+		const raws = await readRun(new TextEncoder().encode(writeRun(demo)), { fileName: demo.fileName });
+		const { document } = analyseRun(raws);
+		const numbered = document.corners.filter((corner) => corner.number !== null);
+		expect(numbered).toHaveLength(demo.circuit.vertices.length);
+		expect(document.laps.filter((lap) => lap.clean)).toHaveLength(demo.laps);
 	});
 });

@@ -1,4 +1,5 @@
 import { KMH_PER_MPS } from '../units.ts';
+import { calmestLine } from './calmestLine.ts';
 import type { CentreLine } from './centreLine.ts';
 import { drivenLine, type DrivenLine } from './drivenLine.ts';
 import type { DemoDriver } from './driver.ts';
@@ -48,11 +49,12 @@ export function driveRun(road: CentreLine, options: DriveOptions): DrivenRun {
 	const { driver, vehicle } = options;
 	const random = seededRandom(driver.seed * 7919 + options.run * 104_729);
 	const total = road.lengthM;
+	const base = calmestLine(road, total < 1200 ? driver.widthM * 0.6 : driver.widthM);
 	const lines = Array.from({ length: options.laps + 2 }, (): DrivenLine =>
 		drivenLine(road, {
-			widthM: driver.widthM,
-			apexAt: driver.apexAt,
-			wanderM: road.corners.map(() => 0.3 * driver.spread * random.normal())
+			base,
+			lateM: driver.lateM * (total < 1200 ? 0.3 : 1),
+			wanderM: road.corners.map(() => 0.22 * driver.spread * random.normal())
 		})
 	);
 	const lineAt = (place: number): DrivenLine => lines[Math.min(lines.length - 1, Math.floor(place / total) + 1)];

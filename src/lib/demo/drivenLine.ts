@@ -10,52 +10,39 @@ export interface DrivenLine {
 }
 
 export interface LineHabits {
-	/** half of the width used, m */
-	widthM: number;
-	/** how late the apex is, 0–1 of the arc; 0.5 is its middle */
-	apexAt: number;
+	/** offsets of the line that the driver has in mind, by `calmestLine` */
+	base: Float64Array;
+	/** turns in this much later than that line, m */
+	lateM: number;
 	/** per corner: a wander of this lap, m, added at the apex */
 	wanderM: number[];
 }
 
+/** How far before and after its middle a corner's wander is felt, in lengths of the corner. */
+const WANDER_REACH = 0.9;
+
 /**
- * Draws a driver's line: outside, apex, outside, with cosine passages between and the lap's own wander on top.
+ * Draws a driver's line of one lap: the line in mind, a little late or early, with the lap's own wander in each corner.
  *
  * @param road   centre line
- * @param habits how wide, how late, and this lap's wander per corner
+ * @param habits line in mind and this lap's wander
  */
 export function drivenLine(road: CentreLine, habits: LineHabits): DrivenLine {
 	const n = road.lengthM;
-	const nodes: { s: number; offset: number }[] = [];
-	road.corners.forEach((corner, i) => {
-		const length = corner.endM - corner.startM;
-		const wander = habits.wanderM[i] ?? 0;
-		nodes.push(
-			{ s: corner.startM - 14, offset: -corner.sign * habits.widthM },
-			{ s: corner.startM + length * habits.apexAt, offset: corner.sign * (habits.widthM + 0.3) + wander },
-			{ s: corner.endM + 14, offset: -corner.sign * habits.widthM * 0.95 }
-		);
-	});
-	nodes.sort((a, b) => a.s - b.s);
-	const merged: { s: number; offset: number }[] = [];
-	for (const node of nodes) {
-		const last = merged[merged.length - 1];
-		if (last && node.s - last.s < 16) {
-			last.s = (last.s + node.s) / 2;
-			last.offset = (last.offset + node.offset) / 2;
-		} else merged.push({ ...node });
-	}
-	const raw = new Float64Array(n);
+	const offset = new Float64Array(n);
 	for (let s = 0; s < n; s++) {
-		let k = merged.findIndex((node) => node.s > s);
-		const next = k === -1 ? { s: merged[0].s + n, offset: merged[0].offset } : merged[k];
-		if (k === -1) k = merged.length;
-		const last = merged[merged.length - 1];
-		const from = k === 0 ? { s: last.s - n, offset: last.offset } : merged[k - 1];
-		const f = (s - from.s) / (next.s - from.s);
-		raw[s] = from.offset + ((next.offset - from.offset) * (1 - Math.cos(Math.PI * f))) / 2;
+		const from = s - habits.lateM + n;
+		const i = Math.floor(from);
+		const [before, after] = [habits.base[i % n], habits.base[(i + 1) % n]];
+		offset[s] = before + (after - before) * (from - i);
 	}
-	const offset = smoothClosed(raw, n < 1200 ? 4 : 7);
+	road.corners.forEach((corner, i) => {
+		const sigma = (corner.endM - corner.startM) * WANDER_REACH;
+		for (let s = Math.ceil(corner.apexM - 3 * sigma); s <= corner.apexM + 3 * sigma; s++) {
+			if (s < 0 || s >= n) continue;
+			offset[s] += (habits.wanderM[i] ?? 0) * Math.exp(-(((s - corner.apexM) / sigma) ** 2) / 2);
+		}
+	});
 	const xM = road.xM.map((x, i) => x + road.normalX[i] * offset[i]);
 	const yM = road.yM.map((y, i) => y + road.normalY[i] * offset[i]);
 	const stretch = new Float64Array(n);

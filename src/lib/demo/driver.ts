@@ -20,7 +20,8 @@ export interface DemoDriver {
 	/** shape of the release: 1 is straight, above 1 lets go early and trails */
 	releaseShape: number;
 	widthM: number;
-	apexAt: number;
+	/** turns in this much later than the calmest line, m */
+	lateM: number;
 	/** how much the person varies from lap to lap; 1 is a steady amateur */
 	spread: number;
 	habits: Record<string, Habit>;
@@ -33,7 +34,7 @@ export const RHEA: DemoDriver = {
 	releaseShare: 0.44,
 	releaseShape: 1,
 	widthM: 3.6,
-	apexAt: 0.56,
+	lateM: 2,
 	spread: 0.45,
 	habits: {}
 };
@@ -46,7 +47,7 @@ export const MIRA: DemoDriver = {
 	releaseShare: 0.5,
 	releaseShape: 1,
 	widthM: 3.2,
-	apexAt: 0.5,
+	lateM: -2,
 	spread: 1,
 	habits: {
 		'Tern Hairpin': { brakesEarlierM: 12, peakPct: 96 },
@@ -67,7 +68,7 @@ export const JONAS: DemoDriver = {
 	releaseShare: 0.46,
 	releaseShape: 0.95,
 	widthM: 3.4,
-	apexAt: 0.5,
+	lateM: -1,
 	spread: 0.8,
 	habits: { Fernside: { brakesEarlierM: 7 }, Weir: { picksUpLaterM: 6 }, Heron: { slowerKmh: 2.5 } }
 };
@@ -79,7 +80,7 @@ export const TOMAS: DemoDriver = {
 	releaseShare: 0.52,
 	releaseShape: 1.1,
 	widthM: 3,
-	apexAt: 0.53,
+	lateM: 0.5,
 	spread: 1.3,
 	habits: { 'Lime Kiln': { brakesEarlierM: 10 }, Orchard: { slowerKmh: 3 }, Gatehouse: { picksUpLaterM: 7 } }
 };
