@@ -1,5 +1,5 @@
 import type { Handle } from '@sveltejs/kit';
-import { readTheme, THEME_COOKIE, THEME_PLACEHOLDER } from '$lib/state/theme';
+import { readTheme, THEME_COOKIE, THEME_PLACEHOLDER } from '../../state/theme.ts';
 
 /** Writes the reader's theme on <html>, so that the first paint is right: the person's choice, before sign-in the browser's cookie. */
 export const setTheme: Handle = async ({ event, resolve }) => {
