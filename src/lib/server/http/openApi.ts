@@ -1,0 +1,187 @@
+import { z } from 'zod';
+import {
+	layoutNamesSchema,
+	mappingInputSchema,
+	problemSchema,
+	runDescriptionSchema,
+	runsQuerySchema,
+	tokenScopeSchema,
+	traceQuerySchema,
+	uploadQuerySchema,
+	type TokenScope
+} from '../../schemas/api.ts';
+import {
+	comparisonDocumentSchema,
+	runListSchema,
+	runViewSchema,
+	uploadHeadSchema,
+	uploadViewSchema
+} from '../../schemas/views.ts';
+
+interface Operation {
+	summary: string;
+	scope: TokenScope;
+	query?: z.ZodType;
+	body?: z.ZodType | 'file';
+	/** status and what it carries; null for an answer without a body */
+	answer: readonly [status: number, schema: z.ZodType | 'file' | 'frame' | null];
+}
+
+type Method = 'get' | 'put' | 'patch' | 'delete';
+
+/** Every operation of the API, by path; a test holds this list against the routes. */
+export const OPERATIONS: Readonly<Record<string, Partial<Record<Method, Operation>>>> = {
+	'/api/v1/uploads': {
+		get: {
+			summary: 'The last uploads',
+			scope: 'laps:read',
+			answer: [200, z.object({ uploads: z.array(uploadHeadSchema) })]
+		},
+		put: {
+			summary: 'Hand over one raw file (CSV or TXT, may be gzip); it is kept and read as soon as a worker is free',
+			scope: 'uploads:write',
+			query: uploadQuerySchema,
+			body: 'file',
+			answer: [202, uploadHeadSchema]
+		}
+	},
+	'/api/v1/uploads/{upload}': {
+		get: {
+			summary: 'How far an upload is, what was understood, and its runs',
+			scope: 'laps:read',
+			answer: [200, uploadViewSchema]
+		}
+	},
+	'/api/v1/uploads/{upload}/mapping': {
+		put: {
+			summary: 'Say how the file is to be read; it is read again',
+			scope: 'uploads:write',
+			body: mappingInputSchema,
+			answer: [202, uploadHeadSchema]
+		}
+	},
+	'/api/v1/uploads/{upload}/file': {
+		get: { summary: 'The raw file, byte for byte', scope: 'laps:read', answer: [200, 'file'] }
+	},
+	'/api/v1/runs': {
+		get: { summary: 'Runs, newest first', scope: 'laps:read', query: runsQuerySchema, answer: [200, runListSchema] }
+	},
+	'/api/v1/runs/{run}': {
+		get: { summary: 'One run with its laps and corners', scope: 'laps:read', answer: [200, runViewSchema] },
+		patch: { summary: 'Describe a run', scope: 'runs:write', body: runDescriptionSchema, answer: [200, runViewSchema] },
+		delete: { summary: 'Take a run out of sight; its file stays', scope: 'runs:write', answer: [204, null] }
+	},
+	'/api/v1/laps/{lap}/trace': {
+		get: {
+			summary: 'Columns of one lap on the 1 m grid of the path, binary',
+			scope: 'laps:read',
+			query: traceQuerySchema,
+			answer: [200, 'frame']
+		}
+	},
+	'/api/v1/compare/{lap}/{reference}': {
+		get: { summary: 'Two laps laid on each other', scope: 'laps:read', answer: [200, comparisonDocumentSchema] }
+	},
+	'/api/v1/layouts/{layout}/names': {
+		patch: {
+			summary: 'Name a circuit, its layout and its corners',
+			scope: 'runs:write',
+			body: layoutNamesSchema,
+			answer: [204, null]
+		}
+	}
+};
+
+const FRAME = `Four bytes "KNT1"; the length of the header, 32 bits, little end first; the header, JSON padded with spaces:
+lap, lengthM, fromM (s of the first entry), stepM 1, lapTimeS, columns (channel, unit, encoding, perUnit, count, byteOffset, byteLength).
+Columns begin at multiples of eight bytes. float32 and float64 (time): little end first, NaN is a gap.
+packed: varint count; varint 2 · gaps + (1 where numbers need more than 31 bits); for each gap varint entries since the last gap's
+end, varint length; then for each entry outside gaps the zigzag varint of the second difference of value · perUnit.`;
+
+/** The OpenAPI 3.1 document, out of the same schemas that check requests and type answers. */
+export function openApiDocument(): Record<string, unknown> {
+	const paths = Object.fromEntries(
+		Object.entries(OPERATIONS).map(([path, methods]) => [
+			path,
+			Object.fromEntries(Object.entries(methods).map(([method, operation]) => [method, describe(path, operation)]))
+		])
+	);
+	return {
+		openapi: '3.1.0',
+		info: {
+			title: 'Kerbnote',
+			version: '1',
+			description:
+				'Laps, corners and comparisons. Distances in m on the path, times in s, speeds in km/h; a positive difference is time lost.'
+		},
+		paths,
+		components: {
+			securitySchemes: {
+				token: { type: 'http', scheme: 'bearer', description: `Scopes: ${tokenScopeSchema.options.join(', ')}` },
+				signIn: { type: 'apiKey', in: 'cookie', name: 'kerbnote-session' }
+			},
+			schemas: { Problem: jsonSchema(problemSchema, 'output') },
+			responses: {
+				Problem: {
+					description: 'What stopped the request (RFC 9457)',
+					content: { 'application/problem+json': { schema: { $ref: '#/components/schemas/Problem' } } }
+				}
+			}
+		}
+	};
+}
+
+function describe(
+	path: string,
+	{ summary, scope, query, body, answer: [status, schema] }: Operation
+): Record<string, unknown> {
+	return {
+		summary,
+		security: [{ token: [scope] }, { signIn: [] }],
+		parameters: [...pathParameters(path), ...queryParameters(query)],
+		...(body && { requestBody: { required: true, content: contentOf(body, 'input') } }),
+		responses: {
+			[status]: {
+				description: schema === 'frame' ? FRAME : summary,
+				...(schema && { content: contentOf(schema, 'output') })
+			},
+			default: { $ref: '#/components/responses/Problem' }
+		}
+	};
+}
+
+function contentOf(schema: z.ZodType | 'file' | 'frame', side: 'input' | 'output'): Record<string, unknown> {
+	if (schema === 'file') return { 'application/octet-stream': {} };
+	if (schema === 'frame') return { 'application/vnd.kerbnote.trace': {} };
+	return { 'application/json': { schema: jsonSchema(schema, side) } };
+}
+
+function pathParameters(path: string): Record<string, unknown>[] {
+	return [...path.matchAll(/\{(\w+)\}/g)].map(([, name]) => ({
+		name,
+		in: 'path',
+		required: true,
+		schema: { type: 'string', minLength: 26, maxLength: 26 }
+	}));
+}
+
+function queryParameters(query: z.ZodType | undefined): Record<string, unknown>[] {
+	if (!query) return [];
+	const described = z.object({
+		properties: z.record(z.string(), z.unknown()),
+		required: z.array(z.string()).default([])
+	});
+	const { properties, required } = described.parse(jsonSchema(query, 'input'));
+	return Object.entries(properties).map(([name, schema]) => ({
+		name,
+		in: 'query',
+		required: required.includes(name),
+		schema
+	}));
+}
+
+function jsonSchema(schema: z.ZodType, io: 'input' | 'output'): unknown {
+	const described = Object.entries(z.toJSONSchema(schema, { io, unrepresentable: 'any' }));
+	// OpenAPI 3.1 names the dialect once for the whole document.
+	return Object.fromEntries(described.filter(([name]) => name !== '$schema'));
+}
