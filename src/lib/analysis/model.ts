@@ -83,6 +83,11 @@ export interface ReferencePath {
 	line: 'mark' | 'layout' | 'chosen';
 	/** speed of the lap that the path stands on, by place: used to match laps without positions */
 	speedKmh: Float64Array;
+	/**
+	 * the file's own distance along the track at each whole metre, where it has one (simulators count along the centre line): another
+	 * run that counts the same way is laid by it. Absent or null: by projection
+	 */
+	trackDistanceM?: Float64Array | null;
 	/** local frame, as in Channels */
 	frame: { latitudeDeg: number; longitudeDeg: number } | null;
 }

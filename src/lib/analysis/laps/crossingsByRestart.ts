@@ -10,10 +10,13 @@ export interface CrossingTimes {
 	plusMinusS: number;
 }
 
-/** Up to this noise of a lap distance its first value behind the line is taken as it is; above, a line through more values. */
-const DIRECT_NOISE_M = 0.02;
-const FIT_REACH_M = 40;
-const FIT_REACH_S = 1;
+/** Way and time behind the line over which its lap distance is fitted: rounding and noise average out, the track does not bend yet. */
+const FIT_REACH_M = 12;
+const FIT_REACH_S = 0.12;
+/** With a lap distance noisier than this more of it is fitted. */
+const FINE_NOISE_M = 0.02;
+const NOISY_REACH_M = 40;
+const NOISY_REACH_S = 1;
 /** A running lap time may restart up to this many sample steps late. */
 const LATE_STEPS = 1.5;
 
@@ -30,8 +33,7 @@ export function crossingsByLapDistance(channels: Channels, restarts: number[]): 
 	if (restarts.length > 1 && 2 * snapped > restarts.length) return null;
 	const noiseM = distanceNoise(channels, restarts);
 	const atS = Float64Array.from(restarts, (i) => {
-		let wayM = lapDistanceM[i] / scaleAround(channels, i);
-		if (noiseM > DIRECT_NOISE_M) wayM = fittedWay(channels, i) ?? wayM;
+		const wayM = fittedWay(channels, i, noiseM > FINE_NOISE_M) ?? lapDistanceM[i] / scaleAround(channels, i);
 		return timeS[i] - timeBack(channels, i, wayM);
 	});
 	const speed = median(restarts.map((i) => speedMps(channels, i)));
@@ -50,8 +52,10 @@ function scaleAround(channels: Channels, i: number): number {
 	return scale > 0.8 && scale < 1.25 ? scale : 1;
 }
 
-/** Way behind the line at a restart, from a straight line through the next values over the driven way. */
-function fittedWay(channels: Channels, i: number): number | null {
+/** Way behind the line at a restart, from a straight line through the next values over the driven way; null with fewer than four. */
+function fittedWay(channels: Channels, i: number, noisy: boolean): number | null {
+	const reachM = noisy ? NOISY_REACH_M : FIT_REACH_M;
+	const reachS = noisy ? NOISY_REACH_S : FIT_REACH_S;
 	const { lapDistanceM, timeS } = channels;
 	if (!lapDistanceM) return null;
 	let n = 0;
@@ -62,7 +66,7 @@ function fittedWay(channels: Channels, i: number): number | null {
 	let way = 0;
 	for (let j = i; j < timeS.length; j++) {
 		if (j > i) way += wayBetween(channels, j - 1, j);
-		if (way > FIT_REACH_M || timeS[j] - timeS[i] > FIT_REACH_S || !(lapDistanceM[j] >= 0)) break;
+		if (way > reachM || timeS[j] - timeS[i] > reachS || !(lapDistanceM[j] >= 0)) break;
 		n++;
 		sx += way;
 		sy += lapDistanceM[j];

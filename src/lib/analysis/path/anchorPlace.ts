@@ -1,25 +1,26 @@
 import type { LapMarks } from '../laps/lapMarks.ts';
 import { median } from '../stats/quantile.ts';
-import { robustSpread } from '../stats/robustSpread.ts';
 import { sampleBefore, wayShare } from '../trace/placeTime.ts';
 import type { Channels } from '../model.ts';
 
 /** Marks known better than this know the line better than the projection on the path does. */
 const FINE_S = 0.0015;
-/** The file's line and the path's are the same when all marks lie this near to it, and this near to each other. */
-const LARGEST_SHIFT_M = 3;
-const LARGEST_SPREAD_M = 1.5;
+/** The file's line and the path's are the same when its marks lie this near to it: a line is not quite square to every path. */
+const LARGEST_SHIFT_M = 4;
+/** What a mark moves fades over this way before and behind the line. */
+const FADE_M = 80;
 
 /**
  * Pins places to the file's own crossings of the line, where these are finely known and are crossings of this path's line: each
- * crossing is put at exactly a whole turn, and what that moves fades in place from crossing to crossing.
+ * crossing is put at exactly a whole turn. What that moves is due to the line's own direction, which need not be square to the path,
+ * and to the receiver; both belong to the place where the line is, so the move fades away from it.
  *
  * @param placeM unwrapped places by sample
  * @returns new places; the input itself where the marks are coarse or belong to another line
  */
 export function anchorPlace(placeM: Float64Array, channels: Channels, lengthM: number, marks: LapMarks): Float64Array {
 	const own = marks.source !== 'chosenLine' && marks.source !== 'lapLength' && marks.source !== 'none';
-	if (!own || !(marks.plusMinusS <= FINE_S) || marks.crossingS.length === 0) return placeM;
+	if (!own || !(marks.plusMinusS <= FINE_S)) return placeM;
 	const { timeS, speedKmh } = channels;
 	const at: number[] = [];
 	const off: number[] = [];
@@ -32,21 +33,18 @@ export function anchorPlace(placeM: Float64Array, channels: Channels, lengthM: n
 		at.push(place);
 		off.push(place - Math.round(place / lengthM) * lengthM);
 	}
-	if (at.length === 0) return placeM;
-	const middle = median(off);
-	const spread = at.length > 2 ? robustSpread(off) : Math.max(...off) - Math.min(...off);
-	if (!(Math.abs(middle) <= LARGEST_SHIFT_M && spread <= LARGEST_SPREAD_M)) return placeM;
-	// one wild mark is left to the projection
-	const kept = at.map((_, k) => k).filter((k) => Math.abs(off[k] - middle) <= LARGEST_SHIFT_M);
-	const anchored = new Float64Array(placeM.length);
+	if (at.length === 0 || Math.abs(median(off)) > LARGEST_SHIFT_M) return placeM;
+	const fade = Math.min(FADE_M, lengthM / 4);
+	const anchored = placeM.slice();
 	let k = 0;
 	for (let i = 0; i < placeM.length; i++) {
 		const place = placeM[i];
-		while (k + 1 < kept.length && place >= at[kept[k + 1]]) k++;
-		const from = kept[k];
-		const to = kept[Math.min(k + 1, kept.length - 1)];
-		const share = to === from ? 0 : Math.min(Math.max((place - at[from]) / (at[to] - at[from]), 0), 1);
-		anchored[i] = place - (off[from] + share * (off[to] - off[from]));
+		while (k + 1 < at.length && place - at[k] > at[k + 1] - place) k++;
+		const away = Math.abs(place - at[k]);
+		// one wild mark is left to the projection
+		if (!(away < fade) || Math.abs(off[k]) > LARGEST_SHIFT_M) continue;
+		const share = away / fade;
+		anchored[i] = place - off[k] * (1 - share * share * (3 - 2 * share));
 	}
 	return anchored;
 }

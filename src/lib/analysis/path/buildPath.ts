@@ -16,6 +16,7 @@ import { measureLap, pathFromMotion } from './pathFromMotion.ts';
 import { geometryOfLine } from './pathGeometry.ts';
 import { placeRun } from './placeRun.ts';
 import { distanceAt } from './stretchPlace.ts';
+import { trackDistanceByPlace, trackLength } from './trackDistance.ts';
 import { trackOnPath } from './trackOnPath.ts';
 import { wayAlong } from './wayAlong.ts';
 
@@ -92,8 +93,11 @@ function fromPositions(channels: Channels, positions: Positions, marks: LapMarks
 	const curvature = curvatureOf(line);
 	const own = onlyLap(positions, channels, chosen[0]);
 	const tracked = trackOnPath(own, channels, geometryOfLine(line, curvature));
+	const trackM = chosen.length > 0 && positions.noiseM <= SHARP_NOISE_M ? trackLength(channels, marks) : null;
 	return {
 		...atWholeMetres(line, curvature),
+		trackDistanceM:
+			trackM === null ? null : trackDistanceByPlace(channels, own.sample, tracked.placeM, line.lengthM, trackM),
 		origin: 'positions',
 		line: lineKind(marks),
 		speedKmh: speedByPlace(channels, own.sample, tracked.placeM, line.lengthM, line.closed),

@@ -16,6 +16,7 @@ import { fusePlace } from './fusePlace.ts';
 import { bendReader, curvatureFromMotion, curvatureFromPositions, steeringScaleFor } from './ownCurvature.ts';
 import { geometryOfPath } from './pathGeometry.ts';
 import { distanceAt, stretchPlace } from './stretchPlace.ts';
+import { placeByTrackDistance } from './trackDistance.ts';
 import { trackOnPath } from './trackOnPath.ts';
 
 /** A run is on a path when it is found near it over this share of its way. */
@@ -69,8 +70,9 @@ function byPositions(channels: Channels, positions: Positions, path: ReferencePa
 		tracked = trackOnPath(moved, channels, geometry);
 	}
 	const dense = fusePlace(moved, channels, tracked, geometry);
+	const placeM = placeByTrackDistance(dense.placeM, channels, path, marks);
 	return {
-		placeM: anchorPlace(dense.placeM, channels, path.lengthM, marks),
+		placeM: anchorPlace(placeM, channels, path.lengthM, marks),
 		offsetM: dense.offsetM,
 		curvaturePerM: curvatureFromPositions(positions, channels)
 	};
@@ -80,7 +82,7 @@ function byDistance(channels: Channels, path: ReferencePath, marks: LapMarks): L
 	const ways = Array.from(marks.crossingS, (t) => distanceAt(channels, t));
 	const usual = median(ways.slice(1).map((way, k) => way - ways[k]));
 	if (Math.abs(usual / path.lengthM - 1) > LARGEST_LENGTH_DIFFERENCE) throw notHere();
-	const placeM = stretchPlace(channels, marks, path);
+	const placeM = placeByTrackDistance(stretchPlace(channels, marks, path), channels, path, marks);
 	const reader = bendReader(channels, path.origin, steeringScaleFor(channels, placeM, path));
 	return { placeM, offsetM: null, curvaturePerM: reader && curvatureFromMotion(channels, reader) };
 }
