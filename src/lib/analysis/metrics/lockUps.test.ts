@@ -5,7 +5,9 @@ import { describe, expect, it } from 'vitest';
 import type { Wheel } from '../../schemas/analysisDocument.ts';
 import type { Channels } from '../model.ts';
 import { lockUps } from './lockUps.ts';
+import { measureRun } from './measureRun.ts';
 import { channelsOf } from './testing/channelsOf.ts';
+import { cornerAt, placedOf, placeOnCourse } from './testing/placedOf.ts';
 
 interface LockCase {
 	file: string;
@@ -116,5 +118,44 @@ describe('lockUps', () => {
 
 	it('says nothing without wheel speeds', () => {
 		expect(lockUps({ ...readCase('one_front_50hz.csv').channels, wheelKmh: null })).toEqual([]);
+	});
+});
+
+describe('the corner of a lock-up', () => {
+	it('is the first that ends behind it, and two wheels that lock together count once', () => {
+		const speedKmh: [number, number][] = [
+			[0, 180],
+			[3, 180],
+			[6, 72],
+			[12, 72]
+		];
+		const at = (timeS: number) => placeOnCourse(speedKmh, timeS);
+		const placed = placedOf({
+			lengthS: 12,
+			rateHz: 100,
+			speedKmh,
+			brakePct: [
+				[0, 0],
+				[3, 0],
+				[3.1, 90],
+				[5.5, 90],
+				[6, 0]
+			]
+		});
+		const rolling = placed.channels.speedKmh;
+		const locked = (fromS: number, toS: number) =>
+			rolling.map((speed, i) =>
+				placed.channels.timeS[i] > fromS && placed.channels.timeS[i] < toS ? 0.3 * speed : speed
+			);
+		const wheelKmh = { fl: locked(4, 4.4), fr: locked(4.1, 4.5), rl: locked(5, 5.2), rr: rolling };
+		const corners = [cornerAt(at(0.5), at(1), at(1.5)), cornerAt(at(5), at(7), at(9), { number: 2 })];
+		const run = { ...placed, channels: { ...placed.channels, wheelKmh } };
+		const { metrics, lockUps: found } = measureRun(run, corners);
+		expect(found.map(({ wheel, lap, corner }) => ({ wheel, lap, corner }))).toEqual([
+			{ wheel: 'fl', lap: 1, corner: 2 },
+			{ wheel: 'fr', lap: 1, corner: 2 },
+			{ wheel: 'rl', lap: 1, corner: 2 }
+		]);
+		expect(metrics.map((m) => m.lockUps)).toEqual([0, 2]);
 	});
 });

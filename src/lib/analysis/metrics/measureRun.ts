@@ -9,8 +9,8 @@ import { prepareRun, type MeasuredRun } from './measuredRun.ts';
 /**
  * Every metric of every timed lap and numbered corner of a run, and its lock-ups.
  *
- * A lock-up belongs to the corner whose braking it lies in, else to the first corner that ends behind it; `lockUps` of a corner counts
- * moments, so that two wheels which lock together count once.
+ * A lock-up belongs to the first corner that ends behind the place where it begins: the one that is braked for, or being driven. `lockUps`
+ * of a corner counts moments, so that two wheels which lock together count once.
  *
  * @param placed  the run on its path
  * @param corners the corner map
@@ -37,14 +37,6 @@ export function measureRun(placed: PlacedRun, corners: Corner[]): { metrics: Cor
 }
 
 function passageOf({ passages, placed }: MeasuredRun, { startS }: WheelLock): CornerPassage | undefined {
-	const { timeS } = placed.channels;
-	const braked = passages.find(({ brakings }) =>
-		brakings.some(
-			({ onsetIndex, offIndex }) =>
-				startS >= timeS[Math.max(onsetIndex, 0)] && startS <= timeS[Math.min(offIndex + 1, timeS.length - 1)]
-		)
-	);
-	if (braked) return braked;
 	const placeM = placeAtTime(placed, startS);
 	return passages.find(({ endM }) => endM > placeM);
 }
