@@ -8,6 +8,7 @@ import { readClockColumn } from './fileClock.ts';
 import type { FileClock } from './fileClock.ts';
 import type { ColumnPlan } from './planColumns.ts';
 import type { RawRun } from './rawRun.ts';
+import type { RowNotes } from './rowNotes.ts';
 import { resolveUnits } from './resolveUnits.ts';
 import type { ResolvedUnits } from './resolveUnits.ts';
 import { buildTimeline } from './timeline.ts';
@@ -21,11 +22,15 @@ export interface ReadTable {
 	plans: readonly ColumnPlan[];
 	/** what is known of the file already */
 	source: Pick<SourceSummary, 'encoding' | 'delimiter' | 'decimal' | 'headerRow' | 'metadata'>;
+	/** what was odd in the rows, and the names of the columns by slot */
+	notes: RowNotes;
+	noteHeaders: readonly string[];
 	warnings: Warning[];
 }
 
 const MIN_SAMPLES = 10;
 const MOTION: readonly Channel[] = ['speed', 'distance', 'lapDistance', 'latitude', 'positionX'];
+const WHEELS: readonly Channel[] = ['wheelSpeedFl', 'wheelSpeedFr', 'wheelSpeedRl', 'wheelSpeedRr'];
 
 /**
  * Turns the columns as read into runs: one clock that runs forward, house units, one run per outing.
@@ -65,10 +70,7 @@ export function buildRuns(table: ReadTable): RawRun[] {
 	const isLapTime = timePlan.channel === 'lapTime';
 	columns.delete('time');
 	if (isLapTime) columns.delete('lapTime');
-	const timeline = buildTimeline(clock.seconds, table.lines, columns, {
-		isLapTime,
-		isClock: timePlan.timeForm === 'clock'
-	});
+	const timeline = buildTimeline(clock.seconds, table.lines, columns, { isLapTime });
 	if (timeline.lapTimeS && !columns.has('lapTime')) columns.set('lapTime', timeline.lapTimeS);
 	const lines = keepRows(columns, table.lines, timeline);
 	if (timeline.seconds.length < MIN_SAMPLES) {
@@ -82,13 +84,20 @@ export function buildRuns(table: ReadTable): RawRun[] {
 	const otherTimes = convertLapTimes(columns, byChannel);
 	const relabelled = relabelRestartingDistance(columns, byChannel);
 	const resolved = resolveUnits(columns, timeline.seconds, byChannel);
+	const speedWarnings = speedFromWheels(columns, byChannel, resolved);
 	for (const [channel, label] of otherTimes) resolved.units.set(channel, label);
 	resolved.units.set(timePlan.channel ?? 'time', clock.label);
 	const warnings = [
 		...table.warnings,
+		...table.notes.toWarnings(
+			table.noteHeaders,
+			timeline.footerRows > 0 ? table.lines[table.lines.length - timeline.footerRows] : Infinity,
+			timePlan.header
+		),
 		...timeWarnings(timeline, lines, table.lines, clock),
 		...duplicateWarnings(plans),
-		...resolved.warnings
+		...resolved.warnings,
+		...speedWarnings
 	];
 	const described = describeColumns(table, byChannel, columns, resolved, relabelled, clock.seconds, timePlan);
 	return splitRuns(table, { timeline, lines, clock, warnings, described, resolved });
@@ -138,6 +147,38 @@ function relabelRestartingDistance(columns: Columns, plans: Map<string, ColumnPl
 	const plan = plans.get('distance');
 	if (plan) plans.set('lapDistance', plan);
 	return true;
+}
+
+/** Without any speed the wheels' own stands in: the middle of them, which a single locked or spinning one does not move. */
+function speedFromWheels(columns: Columns, plans: ReadonlyMap<string, ColumnPlan>, resolved: ResolvedUnits): Warning[] {
+	const named = plans.get('speed')?.header;
+	if (named && /wheel|rad|roue|rueda|ruota|roda|wiel|車輪/i.test(named)) {
+		return [
+			{
+				code: 'speed_from_wheel',
+				message: `speed is a wheel's ("${named}"): it is wrong where the wheel slips`,
+				row: null
+			}
+		];
+	}
+	const wheels = WHEELS.flatMap((channel) => columns.get(channel) ?? []);
+	if (MOTION.some((channel) => columns.has(channel)) || wheels.length === 0) return [];
+	if (resolved.wheelUnit !== 'kmh') throw missing('missing_speed', 'speed, distance or position', [...plans.values()]);
+	const speed = new Float32Array(wheels[0].length);
+	const values = new Float64Array(wheels.length);
+	for (let i = 0; i < speed.length; i++) {
+		for (let wheel = 0; wheel < wheels.length; wheel++) values[wheel] = wheels[wheel][i];
+		values.sort();
+		speed[i] = (values[(values.length - 1) >> 1] + values[values.length >> 1]) / 2;
+	}
+	columns.set('speed', speed);
+	return [
+		{
+			code: 'speed_from_wheel',
+			message: 'the file has no speed; the middle of the wheel speeds stands in, which is wrong where they slip',
+			row: null
+		}
+	];
 }
 
 function timeWarnings(timeline: Timeline, lines: Int32Array, allLines: Int32Array, clock: FileClock): Warning[] {

@@ -1,8 +1,8 @@
-import { KerbnoteError } from '../schemas/kerbnoteError.ts';
 import { BLOCK_ROWS } from './columnStore.ts';
 import type { ColumnStore } from './columnStore.ts';
 import type { RowNotes } from './rowNotes.ts';
 import { MAX_ROW_BYTES } from './rowPlan.ts';
+import { tooLong, unclosedQuote } from './rowErrors.ts';
 import type { RowPlan } from './rowPlan.ts';
 
 const LF = 10;
@@ -78,7 +78,8 @@ export class ByteScanner {
 			this.#carry = new Uint8Array(0);
 			return bytes.subarray(stop);
 		}
-		if (bytes.length - end > MAX_ROW_BYTES) throw tooLong(this.line);
+		if (bytes.length - end > MAX_ROW_BYTES)
+			throw bytes.includes(QUOTE, end) ? unclosedQuote(this.line) : tooLong(this.line);
 		this.#carry = bytes.slice(end);
 		return null;
 	}
@@ -287,13 +288,4 @@ function joined(first: Uint8Array, second: Uint8Array): Uint8Array<ArrayBuffer> 
 	both.set(first);
 	both.set(second, first.length);
 	return both;
-}
-
-function tooLong(line: number): KerbnoteError {
-	return new KerbnoteError(
-		'too_large',
-		`row ${line} is longer than ${MAX_ROW_BYTES} bytes`,
-		'Check that the file has line ends and is a CSV of one run',
-		{ row: line }
-	);
 }

@@ -2,6 +2,8 @@
 export const BLOCK_ROWS = 1024;
 /** Rows per page: pages are joined once at the end, so nothing is copied while the file grows and the slack is one page a column. */
 const PAGE_ROWS = 65_536;
+/** Room for a wrongly announced size is bounded: a full day at 100 Hz. */
+const MAX_PAGE_ROWS = 8_640_000;
 
 type Column = Float64Array | Float32Array;
 
@@ -21,11 +23,17 @@ export class ColumnStore {
 	rows = 0;
 	readonly #wide: readonly boolean[];
 	readonly #pages: Column[][];
-	readonly #linePages: Int32Array[] = [];
+	#linePages: Int32Array[] = [];
 
-	/** @param wide one entry per slot: true keeps 64 bits (time, distances, positions, lap), false 32 */
-	constructor(wide: readonly boolean[]) {
+	readonly #pageRows: number;
+
+	/**
+	 * @param wide one entry per slot: true keeps 64 bits (time, distances, positions, lap), false 32
+	 * @param expectedRows rows to make room for at once; 0: not known
+	 */
+	constructor(wide: readonly boolean[], expectedRows = 0) {
 		this.#wide = wide;
+		this.#pageRows = Math.min(MAX_PAGE_ROWS, Math.max(PAGE_ROWS, expectedRows));
 		this.#pages = wide.map(() => []);
 		this.block = new Float64Array(BLOCK_ROWS * Math.max(1, wide.length));
 	}
@@ -34,9 +42,9 @@ export class ColumnStore {
 	flush(count: number): void {
 		let done = 0;
 		while (done < count) {
-			const at = this.rows % PAGE_ROWS;
+			const at = this.rows % this.#pageRows;
 			if (at === 0) this.#addPage();
-			const take = Math.min(count - done, PAGE_ROWS - at);
+			const take = Math.min(count - done, this.#pageRows - at);
 			const page = this.#linePages.length - 1;
 			for (let slot = 0; slot < this.#wide.length; slot++) {
 				const column = this.#pages[slot][page];
@@ -49,27 +57,30 @@ export class ColumnStore {
 		}
 	}
 
-	/** Joins the pages; the store is empty afterwards. */
+	/** Joins the pages, or hands the only one over; the store is empty afterwards. */
 	finish(): { columns: Column[]; lines: Int32Array; rows: number } {
 		const rows = this.rows;
-		const columns = this.#wide.map((wide, slot) => {
-			const joined = wide ? new Float64Array(rows) : new Float32Array(rows);
-			joinPages(this.#pages[slot], joined, rows);
+		const columns = this.#wide.map((wide, slot): Column => {
+			const pages = this.#pages[slot];
 			this.#pages[slot] = [];
-			return joined;
+			return pages.length === 1
+				? pages[0].subarray(0, rows)
+				: joinPages(pages, wide ? new Float64Array(rows) : new Float32Array(rows), this.#pageRows);
 		});
-		const lines = new Int32Array(rows);
-		joinPages(this.#linePages, lines, rows);
-		this.#linePages.length = 0;
+		const lines =
+			this.#linePages.length === 1
+				? this.#linePages[0].subarray(0, rows)
+				: joinPages(this.#linePages, new Int32Array(rows), this.#pageRows);
+		this.#linePages = [];
 		this.rows = 0;
 		return { columns, lines, rows };
 	}
 
 	#addPage(): void {
 		for (let slot = 0; slot < this.#wide.length; slot++) {
-			this.#pages[slot].push(this.#wide[slot] ? new Float64Array(PAGE_ROWS) : new Float32Array(PAGE_ROWS));
+			this.#pages[slot].push(this.#wide[slot] ? new Float64Array(this.#pageRows) : new Float32Array(this.#pageRows));
 		}
-		this.#linePages.push(new Int32Array(PAGE_ROWS));
+		this.#linePages.push(new Int32Array(this.#pageRows));
 	}
 }
 
@@ -98,8 +109,9 @@ function copyNarrow(
 	for (let i = 0, source = from * slots + slot; i < count; i++, source += slots) out[at + i] = block[source];
 }
 
-function joinPages<T extends Column | Int32Array>(pages: T[], out: T, rows: number): void {
-	for (let page = 0, at = 0; at < rows; page++, at += PAGE_ROWS) {
-		out.set(pages[page].subarray(0, Math.min(PAGE_ROWS, rows - at)), at);
+function joinPages<T extends Column | Int32Array>(pages: readonly T[], out: T, pageRows: number): T {
+	for (let page = 0, at = 0; at < out.length; page++, at += pageRows) {
+		out.set(pages[page].subarray(0, Math.min(pageRows, out.length - at)), at);
 	}
+	return out;
 }

@@ -1,3 +1,5 @@
+import { KerbnoteError } from '../schemas/kerbnoteError.ts';
+
 export type Encoding = 'utf-8' | 'utf-16le' | 'utf-16be' | 'shift_jis' | 'windows-1252' | 'latin-1';
 
 export interface DetectedEncoding {
@@ -17,8 +19,18 @@ export function decoderLabel(encoding: Encoding): string {
  * Tells the encoding from the first bytes: byte order mark, the null pattern of UTF-16, valid UTF-8, then Shift-JIS against
  * Western single bytes. In Shift-JIS most bytes beyond ASCII are lead bytes 0x81–0x9F followed by a valid trail byte, a range
  * that Western text leaves nearly empty.
+ *
+ * @throws {KerbnoteError} `unknown_encoding` for UTF-32
  */
 export function detectEncoding(head: Uint8Array): DetectedEncoding {
+	const first = (head[0] << 24) | (head[1] << 16) | (head[2] << 8) | head[3];
+	if (head.length >= 4 && (first === 0xfffe0000 >> 0 || first === 0x0000feff)) {
+		throw new KerbnoteError(
+			'unknown_encoding',
+			'the text is in UTF-32, which cannot be read',
+			'Save the file as UTF-8 and upload it again'
+		);
+	}
 	if (head[0] === 0xef && head[1] === 0xbb && head[2] === 0xbf)
 		return { encoding: 'utf-8', markBytes: 3, assumed: false };
 	if (head[0] === 0xff && head[1] === 0xfe) return { encoding: 'utf-16le', markBytes: 2, assumed: false };

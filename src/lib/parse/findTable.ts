@@ -4,6 +4,7 @@ import { readAngle } from './readAngle.ts';
 import { readNumber } from './readNumber.ts';
 import { readClock, readDate } from './readTime.ts';
 import { recogniseColumn } from './recogniseColumns.ts';
+import { MAX_COLUMNS } from './rowPlan.ts';
 import { splitLine } from './splitLine.ts';
 
 export type Delimiter = ',' | ';' | '\t' | '|';
@@ -29,7 +30,6 @@ const MAX_LINES = 400;
 const MAX_PROBES = 60;
 /** Lines above the numbers among which the header is looked for. */
 const MAX_HEADER_ROWS = 6;
-export const MAX_COLUMNS = 2000;
 const MAX_SAMPLE_ROWS = 100;
 const MAX_METADATA = 60;
 
@@ -168,7 +168,8 @@ function describe(lines: readonly string[], body: Body): Table {
 			}
 		);
 	}
-	const unitRow = above.filter((i) => i > header).find((i) => isUnitRow(rows[i]));
+	// Below the names as a rule, above them now and then.
+	const unitRow = above.filter((i) => i !== header).find((i) => isUnitRow(rows[i]));
 	const headers = rows[header].map(clean);
 	const units = unitRow === undefined ? [] : headers.map((_, column) => clean(rows[unitRow][column] ?? ''));
 	const data = rows.slice(firstRow).filter((row, i) => lines[firstRow + i].trim() !== '' && row.length > 1);
@@ -186,7 +187,7 @@ function describe(lines: readonly string[], body: Body): Table {
 
 function isUnitRow(cells: readonly string[]): boolean {
 	const filled = cells.filter((cell) => cell.trim() !== '');
-	return filled.length > 0 && filled.filter((cell) => readUnit(clean(cell)).length > 0).length >= 0.6 * filled.length;
+	return filled.length > 1 && filled.filter((cell) => readUnit(clean(cell)).length > 0).length >= 0.6 * filled.length;
 }
 
 function clean(cell: string): string {

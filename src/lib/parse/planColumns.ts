@@ -21,6 +21,8 @@ export interface ColumnPlan {
 	timeForm: TimeForm | null;
 	/** latitude, longitude with letters or degree signs */
 	angle: boolean;
+	/** cells are words that only this column's reader understands ("Lap 3", "Out", "N") */
+	words: boolean;
 	samples: string[];
 	/** the header of an earlier column of the same meaning, which is used instead */
 	duplicateOf: string | null;
@@ -32,6 +34,9 @@ const MAX_SAMPLES = 3;
 const MAX_SAMPLE_LENGTH = 40;
 const TIMES: ReadonlySet<string> = new Set(['time', 'lapTime', 'lastLapTime']);
 const ANGLES: ReadonlySet<string> = new Set(['latitude', 'longitude']);
+
+/** Channels whose cells may be words. */
+const WORDS_WELCOME: ReadonlySet<string> = new Set(['gear', 'lap', 'latitudeHemisphere', 'longitudeHemisphere']);
 
 /**
  * Decides what each column of a table is: by mapping where a person set it, else by name and unit; of several columns for one channel
@@ -55,6 +60,7 @@ export function planColumns(table: Table, mapping?: ColumnMapping): ColumnPlan[]
 			confidence,
 			timeForm: null,
 			angle: false,
+			words: false,
 			samples,
 			duplicateOf: null,
 			mapped: false
@@ -79,10 +85,11 @@ function readForm(plan: ColumnPlan, cells: readonly string[], decimal: '.' | ','
 	}
 	if (ANGLES.has(channel)) plan.angle = filled.length > 0 && filled.filter(isNumber).length * 2 < filled.length;
 	// A name alone makes no channel of a column of words.
-	else if (!plan.mapped && !plan.timeForm && channel !== '' && !channel.endsWith('Hemisphere') && channel !== 'gear') {
+	else if (!plan.mapped && !plan.timeForm && channel !== '' && !WORDS_WELCOME.has(channel)) {
 		if (filled.length > 0 && filled.filter(isNumber).length * 2 < filled.length)
 			Object.assign(plan, { channel: null, confidence: 0 });
 	}
+	plan.words = WORDS_WELCOME.has(plan.channel ?? '') && filled.some((cell) => /\p{L}/u.test(cell));
 	return plan;
 }
 
@@ -121,20 +128,43 @@ const GEARS = new Map([
 
 /** How the text of a cell becomes a number for this column: times in their own form, angles in degrees, else as written. */
 export function cellReader(plan: ColumnPlan, decimal: '.' | ','): (text: string) => number | undefined {
+	const reader = readerOf(plan, decimal);
+	// A header row that comes again (two exports in one file) holds no values, and is no fault either.
+	return (text) => reader(text) ?? (text.trim() === plan.header ? NaN : undefined);
+}
+
+function readerOf(plan: ColumnPlan, decimal: '.' | ','): (text: string) => number | undefined {
 	if (plan.timeForm === 'clock') return (text) => (text.trim() === '' ? NaN : readClock(text));
 	if (plan.timeForm === 'date') return (text) => (text.trim() === '' ? NaN : readDate(text)?.epochS);
 	if (plan.angle) return readAngle;
-	if (plan.channel === 'gear') {
-		return (text) =>
-			GEARS.get(text.trim().toLowerCase()) ?? readNumber(text.replace(/^\s*[a-z]+\s*(?=\d)/i, ''), decimal);
-	}
+	if (plan.channel === 'gear')
+		return (text) => GEARS.get(text.trim().toLowerCase()) ?? readNumber(withoutWord(text), decimal);
+	if (plan.channel === 'lap') return lapReader(plan.header, decimal);
 	if (plan.channel === 'latitudeHemisphere' || plan.channel === 'longitudeHemisphere') {
 		return (text) => (/^\s*[SW]/i.test(text) ? -1 : 1);
 	}
 	return (text) => readNumber(text, decimal);
 }
 
+/** "Lap 3" is 3; a word without a number ("Out", "In") counts as the lap before the first number, or the one after the last. */
+function lapReader(header: string, decimal: '.' | ','): (text: string) => number | undefined {
+	let last = NaN;
+	return (text) => {
+		if (text.trim() === header) return NaN;
+		const number = readNumber(withoutWord(text), decimal);
+		if (number !== undefined) {
+			if (!Number.isNaN(number)) last = number;
+			return number;
+		}
+		return Number.isNaN(last) ? 0 : last + 1;
+	};
+}
+
+function withoutWord(text: string): string {
+	return text.replace(/^\s*\p{L}+[\s._#-]*(?=\d)/u, '');
+}
+
 /** May plain numbers of this column be read straight from the bytes? */
 export function isPlain(plan: ColumnPlan): boolean {
-	return (plan.timeForm === null || plan.timeForm === 'number') && !plan.angle && !plan.channel?.endsWith('Hemisphere');
+	return (plan.timeForm === null || plan.timeForm === 'number') && !plan.angle && !plan.words;
 }

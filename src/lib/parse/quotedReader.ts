@@ -1,7 +1,7 @@
 import Papa from 'papaparse';
-import { KerbnoteError } from '../schemas/kerbnoteError.ts';
 import { BLOCK_ROWS } from './columnStore.ts';
 import type { ColumnStore } from './columnStore.ts';
+import { tooLong, unclosedQuote } from './rowErrors.ts';
 import type { RowNotes } from './rowNotes.ts';
 import { MAX_ROW_BYTES } from './rowPlan.ts';
 import type { RowPlan } from './rowPlan.ts';
@@ -46,7 +46,8 @@ export class QuotedReader {
 		for (let at = 0; at < chunk.length; at += SLICE_BYTES) {
 			this.#append(this.#decoder.decode(chunk.subarray(at, at + SLICE_BYTES), { stream: true }));
 			this.#parse(false);
-			if (this.#text.length > MAX_ROW_BYTES) throw this.#tooLong();
+			if (this.#text.length > MAX_ROW_BYTES)
+				throw this.#text.includes('"') ? unclosedQuote(this.line) : tooLong(this.line);
 		}
 	}
 
@@ -77,8 +78,8 @@ export class QuotedReader {
 		const unclosed = result.errors.find(({ code }) => code === 'MissingQuotes');
 		result.data.forEach((cells, i) => {
 			const lines = uniform ? 1 : 1 + cells.reduce((sum, cell) => sum + countLines(cell), 0);
-			if (lines > 1 && cells.some((cell) => this.#swallowsRows(cell))) throw this.#unclosed();
-			if (last && unclosed?.row === i) throw this.#unclosed();
+			if (lines > 1 && cells.some((cell) => this.#swallowsRows(cell))) throw unclosedQuote(this.line);
+			if (last && unclosed?.row === i) throw unclosedQuote(this.line);
 			if (this.line >= this.#plan.firstDataLine && !(cells.length === 1 && cells[0].trim() === '')) this.#addRow(cells);
 			this.line += lines;
 		});
@@ -116,28 +117,6 @@ export class QuotedReader {
 		return cell
 			.split('\n')
 			.some((line, i) => i > 0 && line.split(this.#plan.delimiter).length >= Math.max(2, this.#plan.width - 1));
-	}
-
-	#unclosed(): KerbnoteError {
-		return new KerbnoteError(
-			'unclosed_quote',
-			`row ${this.line} opens a quote that is never closed`,
-			'Add the missing double quote in that row, or remove the one that opens it',
-			{
-				row: this.line
-			}
-		);
-	}
-
-	#tooLong(): KerbnoteError {
-		return this.#text.includes('"')
-			? this.#unclosed()
-			: new KerbnoteError(
-					'too_large',
-					`row ${this.line} is longer than ${MAX_ROW_BYTES} characters`,
-					'Check that the file has line ends and is a CSV of one run',
-					{ row: this.line }
-				);
 	}
 }
 

@@ -269,6 +269,15 @@ const RULES: readonly Rule[] = [
 		dimensions: ['speed'],
 		confidence: 0.6
 	},
+	// One wheel's or the wheels' speed stands in for the car's where there is no other.
+	{
+		channel: 'speed',
+		needs: [['wheel'], ['speed']],
+		without: ['fl', 'fr', 'rl', 'rr', 'left', 'right', 'steering', 'lateral', 'force'],
+		fits: ['front', 'rear'],
+		dimensions: ['speed'],
+		confidence: 0.55
+	},
 	{
 		channel: 'distance',
 		needs: [['distance']],
@@ -299,7 +308,7 @@ const LEAST_CONFIDENCE = 0.45;
 export function recogniseColumn(header: string, unitRowText = ''): Recognition {
 	const { words, units: inHeader } = readHeaderText(header);
 	const declared = [...inHeader, ...readUnit(unitRowText)];
-	const hemisphere = hemisphereColumn(words);
+	const hemisphere = hemisphereColumn(header);
 	if (hemisphere) return { channel: hemisphere, unit: null, confidence: 0.9 };
 	const { parts, unknown } = readHeaderWords(words);
 	const nothing: Recognition = { channel: null, unit: declared[0] ?? null, confidence: 0 };
@@ -337,16 +346,21 @@ function confidenceOf(rule: Rule, parts: readonly ReadonlySet<Concept>[], unknow
 	return ((rule.confidence ?? 1) * parts.length) / (parts.length + foreign);
 }
 
-function hemisphereColumn(words: string): HelperColumn | null {
+function hemisphereColumn(header: string): HelperColumn | null {
+	const name = header
+		.trim()
+		.toLowerCase()
+		.replace(/[\s_/()-]+/g, ' ')
+		.trim();
 	if (
 		/^(?:lat(?:itude)? )?(?:n s|ns)(?: indicator| hemisphere)?$|^lat(?:itude)? (?:hemisphere|dir|direction|ref)$/.test(
-			words
+			name
 		)
 	)
 		return 'latitudeHemisphere';
 	if (
 		/^(?:lon(?:gitude)?g? )?(?:e w|ew)(?: indicator| hemisphere)?$|^lon(?:gitude)?g? (?:hemisphere|dir|direction|ref)$/.test(
-			words
+			name
 		)
 	)
 		return 'longitudeHemisphere';

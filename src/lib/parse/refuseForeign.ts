@@ -1,4 +1,5 @@
 import { KerbnoteError } from '../schemas/kerbnoteError.ts';
+import { MAX_COLUMNS } from './rowPlan.ts';
 
 interface Signature {
 	bytes: readonly number[];
@@ -98,5 +99,37 @@ export function refuseForeignText(head: string): void {
 		{
 			row: 1
 		}
+	);
+}
+
+/**
+ * Refuses a file whose first line does not end within what is looked at.
+ *
+ * @throws {KerbnoteError} `too_many_columns`, `unclosed_quote`, `not_csv`
+ */
+export function refuseEndlessLine(head: string): never {
+	for (const delimiter of [',', ';', '\t', '|']) {
+		if (head.split(delimiter, MAX_COLUMNS + 2).length > MAX_COLUMNS + 1) {
+			throw new KerbnoteError(
+				'too_many_columns',
+				`row 1 has more than ${MAX_COLUMNS} columns`,
+				'Export only the channels of the run, one row per sample',
+				{ row: 1 }
+			);
+		}
+	}
+	if (head.trimStart().startsWith('"')) {
+		throw new KerbnoteError(
+			'unclosed_quote',
+			'row 1 opens a quote that is never closed',
+			'Add the missing double quote in that row, or remove the one that opens it',
+			{ row: 1 }
+		);
+	}
+	throw new KerbnoteError(
+		'not_csv',
+		`row 1 has no end within ${head.length} characters, so this is no table`,
+		'Export the run as CSV with one row per sample',
+		{ row: 1 }
 	);
 }

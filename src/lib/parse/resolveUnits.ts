@@ -5,7 +5,7 @@ import type { Unit } from './columnUnits.ts';
 import type { Column, Columns } from './columns.ts';
 import { quantile, range } from './columns.ts';
 import type { ColumnPlan } from './planColumns.ts';
-import { speedEvidence, speedKmhPerUnit } from './speedEvidence.ts';
+import { speedEvidence, speedUnitNear } from './speedEvidence.ts';
 
 export interface ResolvedUnits {
 	/** by channel: the unit in the file as understood */
@@ -117,12 +117,26 @@ class Resolver {
 		const speed = this.#columns.get('speed');
 		if (!speed) return;
 		const declared = this.#declared('speed');
-		if (declared) return this.#use('speed', declared);
 		const evidence = speedEvidence(this.#columns, this.#seconds, speed, this.#declared('accLong'));
-		const proven = evidence && speedKmhPerUnit(evidence.kmhPerUnit);
-		if (evidence && proven) {
-			return this.#use('speed', proven, { assumed: `${evidence.source} says ${proven.id}` });
+		const proven = evidence && speedUnitNear(evidence.kmhPerUnit);
+		if (declared) {
+			// A name that the way driven contradicts by a whole unit was the wrong name; a smaller difference is the sensor's.
+			const wrong =
+				proven &&
+				!this.#plans.get('speed')?.mapped &&
+				evidence.way &&
+				Math.abs(Math.log(evidence.kmhPerUnit / declared.factor)) > 0.25;
+			this.#use('speed', wrong ? proven : declared);
+			if (!wrong) return;
+			const header = this.#plans.get('speed')?.header ?? 'speed';
+			this.#warnings.push({
+				code: 'speed_scale_differs',
+				message: `column "${header}" says ${declared.id}, but ${evidence.source} says ${proven.id}, which was used`,
+				row: null
+			});
+			return;
 		}
+		if (evidence && proven) return this.#use('speed', proven, { assumed: `${evidence.source} says ${proven.id}` });
 		const top = quantile(speed, 0.99);
 		const guess = unitById(top > 75 ? 'km/h' : 'm/s');
 		this.#use('speed', guess);

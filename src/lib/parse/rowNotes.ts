@@ -36,17 +36,21 @@ export class RowNotes {
 		else this.badCells[slot] = { count: 1, line, text: text.slice(0, 40) };
 	}
 
-	/** @param headers names of the columns by slot */
-	toWarnings(headers: readonly string[]): Warning[] {
+	/**
+	 * @param headers names of the columns by slot
+	 * @param endLine line where a footer begins, whose oddities are not the table's; Infinity where there is none
+	 * @param timeHeader the time column, whose unreadable cells are told with the rows that they cost
+	 */
+	toWarnings(headers: readonly string[], endLine: number, timeHeader: string): Warning[] {
 		const warnings: Warning[] = [];
-		if (this.short.count > 0) {
+		if (this.short.count > 0 && this.short.line < endLine) {
 			warnings.push({
 				code: 'short_row',
 				message: `${rows(this.short.count)} with cells missing at the end, read as no value`,
 				row: this.short.line
 			});
 		}
-		if (this.long.count > 0) {
+		if (this.long.count > 0 && this.long.line < endLine) {
 			warnings.push({
 				code: 'long_row',
 				message: `${rows(this.long.count)} with more cells than the header, the surplus left out`,
@@ -61,7 +65,7 @@ export class RowNotes {
 			});
 		}
 		this.badCells.forEach((note, slot) => {
-			if (!note) return;
+			if (!note || note.line >= endLine || headers[slot] === timeHeader) return;
 			const cells = note.count === 1 ? '1 cell' : `${note.count} cells`;
 			warnings.push({
 				code: 'bad_cell',

@@ -18,3 +18,6 @@ export interface RowPlan {
 
 /** A row longer than this is no row of a run; it bounds what is ever held back. */
 export const MAX_ROW_BYTES = 1 << 20;
+
+/** More columns than any run has channels. */
+export const MAX_COLUMNS = 2000;

@@ -14,7 +14,7 @@ import { cellReader, isPlain, planColumns } from './planColumns.ts';
 import type { ColumnPlan } from './planColumns.ts';
 import { QuotedReader } from './quotedReader.ts';
 import type { RawRun } from './rawRun.ts';
-import { refuseForeignBytes, refuseForeignText } from './refuseForeign.ts';
+import { refuseEndlessLine, refuseForeignBytes, refuseForeignText } from './refuseForeign.ts';
 import { RowNotes } from './rowNotes.ts';
 import type { RowPlan } from './rowPlan.ts';
 
@@ -23,6 +23,8 @@ export interface ReadOptions {
 	fileName: string;
 	/** what a person said about the columns */
 	mapping?: ColumnMapping;
+	/** size of the whole file, where it is known: spares a copy of what was read */
+	sizeBytes?: number;
 }
 
 /** Bytes that are looked at before a decision: past any usual preamble, and hundreds of rows. */
@@ -53,6 +55,8 @@ export class RunReader {
 	readonly #options: ReadOptions;
 	#head: Uint8Array[] = [];
 	#headBytes = 0;
+	/** size of the head at which it is looked at next */
+	#nextLookBytes = HEAD_BYTES;
 	#encoding: DetectedEncoding | null = null;
 	#transcoder: TextDecoder | null = null;
 	readonly #encoder = new TextEncoder();
@@ -62,15 +66,21 @@ export class RunReader {
 		this.#options = options;
 	}
 
-	/** @throws {KerbnoteError} where the file is no table of a run; nothing may be pushed after that */
+	/**
+	 * Takes the next bytes; the chunk may be used again afterwards.
+	 *
+	 * @throws {KerbnoteError} where the file is no table of a run; nothing may be pushed after that
+	 */
 	push(chunk: Uint8Array): void {
 		if (this.#reading) {
 			this.#feed(this.#reading, this.#toScan(chunk));
 			return;
 		}
-		this.#head.push(chunk);
+		this.#head.push(new Uint8Array(chunk));
 		this.#headBytes += chunk.length;
-		if (this.#headBytes >= HEAD_BYTES) this.#begin(false);
+		if (this.#headBytes < this.#nextLookBytes) return;
+		// Each look reads the head again, so that the next one waits until there is twice as much.
+		if (!this.#begin(false)) this.#nextLookBytes = 2 * this.#headBytes;
 	}
 
 	/**
@@ -105,27 +115,29 @@ export class RunReader {
 		head = head.subarray(markBytes);
 		const decoder = new TextDecoder(decoderLabel(encoding));
 		const text = decoder.decode(head, { stream: true }).replaceAll('\0', '');
-		if (!wholeFile && !/[\r\n]/.test(text) && this.#headBytes < MAX_HEAD_BYTES) return null;
-		refuseForeignText(text);
-		let table: Table;
-		try {
-			table = findTable(text, wholeFile);
-		} catch (error) {
-			// A preamble may be longer than the first look: look again with more before giving up.
-			if (
-				!wholeFile &&
-				this.#headBytes < MAX_HEAD_BYTES &&
-				error instanceof KerbnoteError &&
-				error.code !== 'too_many_columns'
-			)
-				return null;
-			throw error;
+		if (!wholeFile && !/[\r\n]/.test(text)) {
+			if (this.#headBytes < MAX_HEAD_BYTES) return null;
+			refuseEndlessLine(text);
 		}
+		refuseForeignText(text);
+		const table = this.#lookForTable(text, wholeFile);
+		if (!table) return null;
 		this.#reading = this.#plan(table, encoding);
 		this.#head = [];
 		if (wide) this.#transcoder = new TextDecoder(encoding);
 		this.#feed(this.#reading, this.#toScan(head));
 		return this.#reading;
+	}
+
+	/** Null where a longer look may still find one: a preamble can fill the first. */
+	#lookForTable(text: string, wholeFile: boolean): Table | null {
+		try {
+			return findTable(text, wholeFile);
+		} catch (error) {
+			const mayCome = !wholeFile && this.#headBytes < MAX_HEAD_BYTES;
+			if (mayCome && error instanceof KerbnoteError && error.code !== 'too_many_columns') return null;
+			throw error;
+		}
 	}
 
 	#plan(table: Table, encoding: DetectedEncoding['encoding']): Reading {
@@ -143,9 +155,18 @@ export class RunReader {
 			firstDataLine: table.firstDataLine,
 			decoder: wide ? 'utf-8' : decoderLabel(encoding)
 		};
-		const store = new ColumnStore(kept.map(({ channel }) => channel !== null && isWide(channel)));
+		const wideSlots = kept.map(({ channel }) => channel !== null && isWide(channel));
+		const store = new ColumnStore(wideSlots, this.#expectedRows(table));
 		const notes = new RowNotes();
 		return { table, plans, rowPlan, store, notes, kept, scanner: new ByteScanner(rowPlan, store, notes), quoted: null };
+	}
+
+	/** Rows that the file will have by its size and the length of its first ones; 0 where the size is not known. */
+	#expectedRows({ firstRows }: Table): number {
+		const { sizeBytes } = this.#options;
+		if (!sizeBytes || firstRows.length < 20) return 0;
+		const cells = firstRows.reduce((sum, row) => sum + row.reduce((length, cell) => length + cell.length + 1, 0), 0);
+		return Math.ceil((sizeBytes / (cells / firstRows.length)) * 1.1);
 	}
 
 	#toScan(chunk: Uint8Array): Uint8Array {
@@ -175,14 +196,16 @@ export class RunReader {
 			if (plan.channel) byChannel.set(plan.channel, columns[slot]);
 		});
 		const encoding = this.#encoding?.encoding ?? 'utf-8';
-		const warnings: Warning[] = notes.toWarnings(kept.map(({ header }) => header));
+		const warnings: Warning[] = [];
 		if (this.#encoding?.assumed) {
-			warnings.unshift({ code: 'encoding_assumed', message: `the text was read as ${encoding}`, row: null });
+			warnings.push({ code: 'encoding_assumed', message: `the text was read as ${encoding}`, row: null });
 		}
 		return buildRuns({
 			columns: byChannel,
 			lines,
 			plans,
+			notes,
+			noteHeaders: kept.map(({ header }) => header),
 			source: {
 				encoding,
 				delimiter: table.delimiter,

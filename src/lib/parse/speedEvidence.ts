@@ -8,6 +8,8 @@ export interface SpeedEvidence {
 	/** km/h that one unit of the speed column stands for */
 	kmhPerUnit: number;
 	source: string;
+	/** it is the way driven, not a force */
+	way: boolean;
 }
 
 /** Longest step that still counts as one motion. */
@@ -29,33 +31,30 @@ export function speedEvidence(
 	const travelled = columns.get('distance') ?? columns.get('lapDistance');
 	if (travelled) {
 		const ratio = ratioOfSums(seconds, speed, (i) => travelled[i] - travelled[i - 1]);
-		if (ratio > 0) return { kmhPerUnit: ratio * KMH_PER_MPS, source: 'distance over time' };
+		if (ratio > 0) return { kmhPerUnit: ratio * KMH_PER_MPS, source: 'distance over time', way: true };
 	}
 	const [latitude, longitude] = [columns.get('latitude'), columns.get('longitude')];
-	if (latitude && longitude) {
-		const shrink = Math.cos(quantile(latitude, 0.5) * RAD_PER_DEG);
-		const ratio = ratioOfSums(seconds, speed, (i) => {
-			const north = latitude[i] - latitude[i - 1];
-			const east = (longitude[i] - longitude[i - 1]) * shrink;
-			return Math.hypot(north, east) * METRES_PER_DEGREE;
-		});
-		if (ratio > 0) return { kmhPerUnit: ratio * KMH_PER_MPS, source: 'the way between positions' };
-	}
 	const [x, y] = [columns.get('positionX'), columns.get('positionY')];
-	if (x && y) {
-		const ratio = ratioOfSums(seconds, speed, (i) => Math.hypot(x[i] - x[i - 1], y[i] - y[i - 1]));
-		if (ratio > 0) return { kmhPerUnit: ratio * KMH_PER_MPS, source: 'the way between positions' };
+	const chord =
+		latitude && longitude
+			? chordOnEarth(latitude, longitude)
+			: x && y
+				? (from: number, to: number) => Math.hypot(x[to] - x[from], y[to] - y[from])
+				: null;
+	if (chord) {
+		const ratio = chordRatio(seconds, speed, chord);
+		if (ratio > 0) return { kmhPerUnit: ratio * KMH_PER_MPS, source: 'the way between positions', way: true };
 	}
 	const acceleration = columns.get('accLong');
 	if (acceleration && accelerationUnit) {
 		const ratio = accelerationRatio(seconds, speed, acceleration, accelerationUnit.factor);
-		if (ratio > 0) return { kmhPerUnit: ratio * KMH_PER_MPS, source: 'the longitudinal acceleration' };
+		if (ratio > 0) return { kmhPerUnit: ratio * KMH_PER_MPS, source: 'the longitudinal acceleration', way: false };
 	}
 	return null;
 }
 
 /** The unit of speed with this factor, if there is one near. */
-export function speedKmhPerUnit(kmhPerUnit: number): Unit | null {
+export function speedUnitNear(kmhPerUnit: number): Unit | null {
 	const units = ['km/h', 'm/s', 'mph', 'kn', 'ft/s'].map(unitById);
 	return units.find(({ factor }) => Math.abs(Math.log(kmhPerUnit / factor)) < TOLERANCE) ?? null;
 }
@@ -75,6 +74,35 @@ function ratioOfSums(seconds: Float64Array, speed: Column, wayM: (i: number) => 
 		sum += at;
 	}
 	return sum > 0 ? way / sum : NaN;
+}
+
+function chordOnEarth(latitude: Column, longitude: Column): (from: number, to: number) => number {
+	const shrink = Math.cos(quantile(latitude, 0.5) * RAD_PER_DEG);
+	return (from, to) => {
+		const turn = longitude[to] - longitude[from];
+		const east = (turn - 360 * Math.round(turn / 360)) * shrink;
+		return Math.hypot(latitude[to] - latitude[from], east) * METRES_PER_DEGREE;
+	};
+}
+
+/**
+ * Median of chord / (speed · time) over spans of about a second while the car is fast: on straights a chord is the way, and over a
+ * second the noise of positions is small against it.
+ */
+function chordRatio(seconds: Float64Array, speed: Column, chord: (from: number, to: number) => number): number {
+	const span = Math.max(1, Math.round((seconds.length - 1) / (seconds[seconds.length - 1] - seconds[0])));
+	const fast = 0.5 * quantile(speed, 0.95);
+	const ratios: number[] = [];
+	const stride = Math.max(1, Math.floor(seconds.length / 5000));
+	for (let i = span; i < seconds.length; i += stride) {
+		const step = seconds[i] - seconds[i - span];
+		if (!(step > 0 && step < MAX_STEP_S)) continue;
+		let mean = 0;
+		for (let k = i - span + 1; k <= i; k++) mean += (speed[k] + speed[k - 1]) / 2 / span;
+		const ratio = chord(i - span, i) / (mean * step);
+		if (mean > fast && ratio > 0) ratios.push(ratio);
+	}
+	return quantile(ratios, 0.6);
 }
 
 /** Least squares of a · Δt (m/s) on the change of speed (units) over about half a second. */

@@ -32,13 +32,13 @@ const MAX_OVERLAP_ROWS = 5000;
  *
  * @param seconds time of each row on the file's clock
  * @param columns the other columns: equal rows are told by them, and what kind of restart one is
- * @param options `isLapTime`: the header says that the time is one lap's; `isClock`: it is a time of day
+ * @param options `isLapTime`: the header says that the time is one lap's
  */
 export function buildTimeline(
 	seconds: Float64Array,
 	lines: Int32Array,
 	columns: Columns,
-	options: { isLapTime: boolean; isClock: boolean }
+	options: { isLapTime: boolean }
 ): Timeline {
 	const footerRows = trailingWithoutTime(seconds);
 	const length = seconds.length - footerRows;
@@ -72,11 +72,16 @@ function runsForward(seconds: Float64Array, length: number): boolean {
 	return true;
 }
 
+/** A time of day that ends at 24 h and goes on at 0 h, whether written as a clock or in seconds. */
+function isMidnight(before: number, after: number): boolean {
+	return before > SECONDS_PER_DAY - 60 && before < SECONDS_PER_DAY && after >= 0 && after < 60;
+}
+
 class TimelineBuilder {
 	readonly #raw: Float64Array;
 	readonly #lines: Int32Array;
 	readonly #columns: Columns;
-	readonly #options: { isLapTime: boolean; isClock: boolean };
+	readonly #options: { isLapTime: boolean };
 	readonly #step: number;
 	readonly #times: number[] = [];
 	readonly #kept: number[] = [];
@@ -85,12 +90,7 @@ class TimelineBuilder {
 	#offset = 0;
 	#restarts = 0;
 
-	constructor(
-		raw: Float64Array,
-		lines: Int32Array,
-		columns: Columns,
-		options: { isLapTime: boolean; isClock: boolean }
-	) {
+	constructor(raw: Float64Array, lines: Int32Array, columns: Columns, options: { isLapTime: boolean }) {
 		this.#raw = raw;
 		this.#lines = lines;
 		this.#columns = columns;
@@ -143,7 +143,7 @@ class TimelineBuilder {
 			this.#warn('duplicate_rows', row, (count) => `${count} repeated ${count === 1 ? 'row' : 'rows'} left out`);
 			return row;
 		}
-		if (this.#options.isClock && raw[lastRow] > SECONDS_PER_DAY - 3600 && time < 3600) {
+		if (isMidnight(raw[lastRow], time)) {
 			this.#offset += SECONDS_PER_DAY;
 			this.#keep(row, time);
 			return row;

@@ -10,8 +10,13 @@ const POSITION_HALF_SPAN_S = 0.3;
  *
  * @returns km/h, NaN where the distance is missing
  */
-export function speedFromDistance(distanceM: Float64Array, timeS: Float64Array, stepS: number): Float64Array {
-	const half = Math.max(1, Math.round(DISTANCE_HALF_SPAN_S / stepS));
+export function speedFromDistance(
+	distanceM: Float64Array,
+	timeS: Float64Array,
+	stepS: number,
+	halfSpanS = DISTANCE_HALF_SPAN_S
+): Float64Array {
+	const half = Math.max(1, Math.round(halfSpanS / stepS));
 	const last = timeS.length - 1;
 	const speed = new Float64Array(timeS.length);
 	for (let i = 0; i <= last; i++) {

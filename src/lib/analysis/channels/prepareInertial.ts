@@ -1,8 +1,8 @@
 import type { Warning } from '../../schemas/analysisDocument.ts';
 import type { RawRun } from '../../parse/rawRun.ts';
 import { KMH_PER_MPS, MPS2_PER_G, RAD_PER_DEG } from '../../units.ts';
-import { fillGaps } from './fillGaps.ts';
 import type { Positions } from './preparePositions.ts';
+import { takeColumn } from './takeColumn.ts';
 import { relate, turningFromPath } from './turning.ts';
 
 export interface Inertial {
@@ -13,7 +13,6 @@ export interface Inertial {
 	warnings: Warning[];
 }
 
-const MAX_BRIDGE_S = 0.5;
 /** Below this correlation a sign is not read out of two channels. */
 const MIN_CORRELATION = 0.4;
 
@@ -25,12 +24,7 @@ const MIN_CORRELATION = 0.4;
  */
 export function prepareInertial(raw: RawRun, speedKmh: Float64Array, positions: Positions | null): Inertial {
 	const { timeS, columns } = raw;
-	const take = (column: ArrayLike<number> | undefined) => {
-		if (!column) return null;
-		const values = new Float64Array(column);
-		fillGaps(values, timeS, MAX_BRIDGE_S);
-		return values;
-	};
+	const take = (column: Float64Array | Float32Array | undefined) => (column ? takeColumn(column, timeS).values : null);
 	const warnings: Warning[] = [];
 	const accLongMps2 = take(columns.accLong);
 	const accLatMps2 = take(columns.accLat);

@@ -2,9 +2,9 @@ import type { Warning } from '../../schemas/analysisDocument.ts';
 import type { RawRun } from '../../parse/rawRun.ts';
 import { KMH_PER_MPS } from '../../units.ts';
 import { speedFromDistance, speedFromPositions } from './derivatives.ts';
-import { fillGaps } from './fillGaps.ts';
 import { percentile, ratioPercentile } from './percentile.ts';
 import type { Positions } from './preparePositions.ts';
+import { takeColumn } from './takeColumn.ts';
 
 export interface Motion {
 	speedKmh: Float64Array;
@@ -13,8 +13,6 @@ export interface Motion {
 	warnings: Warning[];
 }
 
-/** Missing speeds over a shorter span are bridged; a longer one is a drop-out. */
-const MAX_BRIDGE_S = 0.5;
 /** A share of the column's range by which a lap distance must fall to be a new lap. */
 const RESTART_SHARE = 0.4;
 /** m/s: no car is faster, so a larger step of the distance is a jump of the file. */
@@ -25,6 +23,8 @@ const SCALE_TOLERANCE = 0.03;
 const FROZEN_S = 1;
 const FROZEN_KMH = 5;
 const FROZEN_SHARE = 0.06;
+/** Half the span over which the distance is differentiated for that, s: uneven time stamps even out. */
+const FROZEN_HALF_SPAN_S = 0.4;
 
 /**
  * Speed and distance of a run: measured where the file has them, else one from the other or from positions; a speed that stands still
@@ -35,7 +35,8 @@ const FROZEN_SHARE = 0.06;
 export function prepareMotion(raw: RawRun, positions: Positions | null, stepS: number): Motion {
 	const { timeS, columns } = raw;
 	const warnings: Warning[] = [];
-	const measured = columns.speed ? withoutSign(new Float64Array(columns.speed), raw, warnings) : null;
+	const taken = columns.speed ? takeColumn(columns.speed, timeS) : null;
+	const measured = taken && withoutSign(taken.values, raw, warnings);
 	const along = measuredDistance(raw, measured);
 	let speedKmh = measured;
 	if (!speedKmh && along) {
@@ -55,20 +56,22 @@ export function prepareMotion(raw: RawRun, positions: Positions | null, stepS: n
 		});
 	}
 	if (!speedKmh) throw new RangeError('prepareMotion requires a speed, a distance or positions');
-	const gap = fillGaps(speedKmh, timeS, MAX_BRIDGE_S);
-	if (gap.at >= 0)
+	if (taken && taken.gap.at >= 0) {
 		warnings.push({
 			code: 'gap',
-			message: `speed is missing for ${gap.longestS.toFixed(1)} s`,
-			row: raw.fileRow[gap.at]
+			message: `speed is missing for ${taken.gap.longestS.toFixed(1)} s`,
+			row: raw.fileRow[taken.gap.at]
 		});
-	if (measured && along) {
-		replaceFrozen(measured, speedFromDistance(along, timeS, stepS), raw, 'the distance', warnings);
-		checkScale(measured, along, timeS, 'distance', warnings);
-	} else if (measured && positions) {
-		const fromPositions = speedFromPositions(positions.xM, positions.yM, timeS, stepS);
-		replaceFrozen(measured, fromPositions, raw, 'the positions', warnings);
-		checkPositionScale(measured, fromPositions, warnings);
+	}
+	if (measured) {
+		const source = along ? 'distance' : 'positions';
+		const other = along
+			? speedFromDistance(along, timeS, stepS, FROZEN_HALF_SPAN_S)
+			: positions && speedFromPositions(positions.xM, positions.yM, timeS, stepS);
+		if (other) {
+			const ratio = warnScale(measured, other, source, warnings);
+			replaceFrozen(measured, other, ratio, raw, source, warnings);
+		}
 	}
 	const distanceM = along ?? integrate(speedKmh, timeS);
 	return { speedKmh, distanceM, distanceMeasured: along !== null, warnings };
@@ -191,30 +194,40 @@ export function integrate(speedKmh: Float64Array, timeS: Float64Array): Float64A
 	return distanceM;
 }
 
-/** Stretches of one and the same speed during which the car demonstrably went at others are taken from the other source. */
+/**
+ * Stretches of one and the same speed during which the car demonstrably went at changing ones are taken from the other source.
+ *
+ * @param ratio other / measured over the run: a scale that differs is no freeze
+ */
 function replaceFrozen(
 	speedKmh: Float64Array,
 	otherKmh: Float64Array,
+	ratio: number,
 	raw: RawRun,
 	source: string,
 	warnings: Warning[]
 ): void {
 	const { timeS, fileRow } = raw;
 	for (let start = 0; start < speedKmh.length;) {
+		const level = speedKmh[start];
 		let end = start + 1;
-		while (end < speedKmh.length && speedKmh[end] === speedKmh[start]) end++;
+		while (end < speedKmh.length && speedKmh[end] === level) end++;
 		const lasted = timeS[end - 1] - timeS[start];
-		if (end - start >= 5 && lasted >= FROZEN_S) {
-			const limit = Math.max(FROZEN_KMH, FROZEN_SHARE * speedKmh[start]);
-			let apart = 0;
-			for (let i = start; i < end; i++) if (Math.abs(otherKmh[i] - speedKmh[start]) > limit) apart++;
-			if (apart * 4 >= end - start) {
-				const level = speedKmh[start].toFixed(1);
+		if (end - start >= 5 && lasted >= FROZEN_S && level > 0) {
+			const limit = Math.max(FROZEN_KMH, FROZEN_SHARE * level);
+			let [apart, low, high] = [0, Infinity, -Infinity];
+			for (let i = start; i < end; i++) {
+				const other = otherKmh[i] / ratio;
+				if (Math.abs(other - level) > limit) apart++;
+				if (other < low) low = other;
+				if (other > high) high = other;
+			}
+			if (apart * 4 >= end - start && high - low > limit) {
 				// The freeze begins with the last live value, which stays.
-				for (let i = start + 1; i < end; i++) speedKmh[i] = otherKmh[i];
+				for (let i = start + 1; i < end; i++) speedKmh[i] = otherKmh[i] / ratio;
 				warnings.push({
 					code: 'frozen_channel',
-					message: `speed stands still at ${level} km/h for ${lasted.toFixed(1)} s while the car goes on; it was taken from ${source} there`,
+					message: `speed stands still at ${level.toFixed(1)} km/h for ${lasted.toFixed(1)} s while the car goes on; it was taken from the ${source} there`,
 					row: fileRow[start]
 				});
 			}
@@ -223,32 +236,15 @@ function replaceFrozen(
 	}
 }
 
-function checkScale(
-	speedKmh: Float64Array,
-	along: Float64Array,
-	timeS: Float64Array,
-	against: string,
-	warnings: Warning[]
-): void {
-	const way = integrate(speedKmh, timeS);
-	const driven = along[along.length - 1] - along[0];
-	const ratio = driven / way[way.length - 1];
-	warnScale(ratio, against, warnings);
-}
-
-/** On positions: the median ratio where the car is fast, since noise adds to slow ones. */
-function checkPositionScale(speedKmh: Float64Array, fromPositions: Float64Array, warnings: Warning[]): void {
+/** Median of other / measured where the car is fast, since noise adds to slow speeds; told where it is off. */
+function warnScale(speedKmh: Float64Array, otherKmh: Float64Array, against: string, warnings: Warning[]): number {
 	const fast = 0.6 * percentile(speedKmh, 0.95);
-	warnScale(
-		ratioPercentile(fromPositions, speedKmh, 0.5, (i) => speedKmh[i] > fast),
-		'positions',
-		warnings
-	);
-}
-
-function warnScale(ratio: number, against: string, warnings: Warning[]): void {
-	if (!Number.isFinite(ratio) || Math.abs(ratio - 1) <= SCALE_TOLERANCE) return;
-	const percent = Math.round((1 / ratio - 1) * 100);
-	const sense = percent > 0 ? `${percent} % higher` : `${-percent} % lower`;
-	warnings.push({ code: 'speed_scale_differs', message: `speed is ${sense} than the ${against} say`, row: null });
+	const ratio = ratioPercentile(otherKmh, speedKmh, 0.5, (i) => speedKmh[i] > fast);
+	if (!(ratio > 0)) return 1;
+	if (Math.abs(ratio - 1) > SCALE_TOLERANCE) {
+		const percent = Math.round((1 / ratio - 1) * 100);
+		const sense = percent > 0 ? `${percent} % higher` : `${-percent} % lower`;
+		warnings.push({ code: 'speed_scale_differs', message: `speed is ${sense} than by the ${against}`, row: null });
+	}
+	return ratio;
 }

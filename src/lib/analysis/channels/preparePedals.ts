@@ -1,9 +1,9 @@
 import type { Warning } from '../../schemas/analysisDocument.ts';
 import type { BrakeUnit } from '../../schemas/channels.ts';
 import type { RawRun } from '../../parse/rawRun.ts';
-import { fillGaps } from './fillGaps.ts';
 import { gainsMps2 } from './gains.ts';
 import { percentile, shareOf } from './percentile.ts';
+import { takeColumn } from './takeColumn.ts';
 
 export interface Pedals {
 	brakePct: Float64Array | null;
@@ -14,7 +14,6 @@ export interface Pedals {
 	warnings: Warning[];
 }
 
-const MAX_BRIDGE_S = 0.5;
 /** Half the span over which a gain of speed is taken, s. */
 const GAIN_HALF_SPAN_S = 0.2;
 /** A rest level closer to zero than this (%) is noise. */
@@ -49,8 +48,7 @@ export function preparePedals(raw: RawRun, speedKmh: Float64Array, brakeFull: nu
 		warnings
 	};
 	if (!brake || !raw.brakeUnit) return pedals;
-	const values = new Float64Array(brake);
-	fillGaps(values, raw.timeS, MAX_BRIDGE_S);
+	const values = raw.brakeUnit === 'switch' ? new Float64Array(brake) : takeColumn(brake, raw.timeS).values;
 	pedals.brakeUnit = raw.brakeUnit;
 	if (raw.brakeUnit === 'switch') {
 		for (let i = 0; i < values.length; i++) values[i] *= 100;
@@ -124,8 +122,7 @@ function turnWhereInverted(values: Float64Array, gainMps2: Float64Array): void {
 
 function prepareThrottle(raw: RawRun, gainMps2: Float64Array, warnings: Warning[]): Float64Array | null {
 	if (!raw.columns.throttle) return null;
-	const throttle = new Float64Array(raw.columns.throttle);
-	fillGaps(throttle, raw.timeS, MAX_BRIDGE_S);
+	const throttle = takeColumn(raw.columns.throttle, raw.timeS).values;
 	const [low, high] = [percentile(throttle, 0.001), percentile(throttle, 0.999)];
 	if (!(high - low > DEAD_RANGE_PCT)) {
 		warnings.push({ code: 'frozen_channel', message: 'the throttle never moves; the channel was left out', row: null });

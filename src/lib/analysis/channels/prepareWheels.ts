@@ -3,6 +3,7 @@ import type { RawRun } from '../../parse/rawRun.ts';
 import { KMH_PER_MPS } from '../../units.ts';
 import { gainsMps2 } from './gains.ts';
 import { ratioPercentile } from './percentile.ts';
+import { takeColumn } from './takeColumn.ts';
 
 const WHEELS = { fl: 'wheelSpeedFl', fr: 'wheelSpeedFr', rl: 'wheelSpeedRl', rr: 'wheelSpeedRr' } as const;
 /** The radius is fitted where tyres roll: fast, hardly any longitudinal force. */
@@ -28,7 +29,7 @@ export function prepareWheels(raw: RawRun, speedKmh: Float64Array): Record<Wheel
 	for (const [wheel, channel] of wheelEntries()) {
 		const column = raw.columns[channel];
 		prepared[wheel] = column
-			? fitted(new Float64Array(column), speedKmh, gain, timeS)
+			? fitted(takeColumn(column, timeS).values, speedKmh, gain, timeS)
 			: new Float64Array(timeS.length).fill(NaN);
 	}
 	const { fl, fr, rl, rr } = prepared;
