@@ -38,16 +38,18 @@ export function programArguments(name, way, build) {
  * @param {Way} wish.way
  * @param {string} wish.build
  * @param {string} wish.database  its name in messages
+ * @param {(line: string) => void} wish.say
  * @throws {SetupError} with the program's last words
  */
-export async function migrateAndSeed({ env, demo, way, build, database }) {
+export async function migrateAndSeed({ env, demo, way, build, database, say }) {
 	await runProgram(programArguments('migrate', way, build), env, `${database} could not be brought up to date.`);
-	if (demo)
-		await runProgram(
-			programArguments('seed', way, build),
-			env,
-			`The demo could not be put into ${database.replace(/^The/, 'the')}.`
-		);
+	if (!demo) return;
+	if (!existsSync(env.KERBNOTE_DEMO_ACCOUNTS ?? '')) say('Putting the demo in');
+	await runProgram(
+		programArguments('seed', way, build),
+		env,
+		`The demo could not be put into ${database.replace(/^The/, 'the')}.`
+	);
 }
 
 /**
@@ -58,7 +60,8 @@ export async function migrateAndSeed({ env, demo, way, build, database }) {
 async function runProgram(args, env, failure) {
 	const { code, output } = await run(process.execPath, args, { cwd: ROOT, env });
 	if (code === 0) return;
+	const words = output.replaceAll(/^\s+at .*\n?/gm, ''); // where in the code it was thrown helps nobody here
 	if (/ENOSPC|is full/.test(output))
-		throw new SetupError('The disk is full; free some space and start again.', { details: lastLines(output) });
-	throw new SetupError(failure, { details: lastLines(output, 12) });
+		throw new SetupError('The disk is full; free some space and start again.', { details: lastLines(words) });
+	throw new SetupError(failure, { details: lastLines(words, 12) });
 }

@@ -1,3 +1,4 @@
+import { connect } from 'node:net';
 import { join } from 'node:path';
 import { SetupError } from './SetupError.mjs';
 import { ROOT } from './checkout.mjs';
@@ -57,4 +58,24 @@ export function databaseAddress(text) {
 		throw new SetupError(`${wanted}, and it begins with "${url.protocol}".`);
 	if (!/^\/[^/]+$/.test(url.pathname)) throw new SetupError(`${wanted}, and it names no database.`);
 	return `${url.hostname}:${url.port || 3306}${url.pathname}`;
+}
+
+/**
+ * @param {string} databaseUrl  given by a person
+ * @throws {SetupError} where it is no address, or nothing answers there
+ */
+export async function checkReachable(databaseUrl) {
+	const address = databaseAddress(databaseUrl);
+	const { hostname, port } = new URL(databaseUrl);
+	const socket = connect({ host: hostname.replaceAll(/[[\]]/g, ''), port: Number(port || 3306) });
+	const problem = await new Promise((done) => {
+		socket.setTimeout(10_000, () => done('no answer within 10 s'));
+		socket.once('error', (error) => done('code' in error ? String(error.code) : error.message));
+		socket.once('connect', () => done(''));
+	});
+	socket.destroy();
+	if (problem)
+		throw new SetupError(
+			`The database ${address} of DATABASE_URL cannot be reached (${problem}); start it or correct the address.`
+		);
 }

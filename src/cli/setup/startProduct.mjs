@@ -5,7 +5,7 @@ import { SetupError } from './SetupError.mjs';
 import { ROOT, foldersOf } from './checkout.mjs';
 import { migrateAndSeed, programArguments } from './commands.mjs';
 import { checkRoom } from './diskSpace.mjs';
-import { accountsFile, databaseAddress, productEnvironment } from './environment.mjs';
+import { accountsFile, checkReachable, databaseAddress, productEnvironment } from './environment.mjs';
 import { holderOf, tryLock } from './fileLock.mjs';
 import { startMariadb } from './mariadb.mjs';
 import { choosePort, parsePort } from './ports.mjs';
@@ -77,7 +77,7 @@ async function serve(way, stop, closing) {
 	const env = productEnvironment({ folders, databaseUrl: database.url, demo, port, developing });
 	writeWhole(addressFile, `${env.ORIGIN}\n`);
 	closing.push(() => rmSync(addressFile, { force: true }));
-	await migrateAndSeed({ env, demo, way, build: folders.build, database: databaseName() });
+	await migrateAndSeed({ env, demo, way, build: folders.build, database: databaseName(), say });
 	stop.check();
 
 	/** @param {string} name @param {string[]} args */
@@ -154,7 +154,7 @@ async function watch(parts, stop) {
  */
 async function prepare(way, closing, check) {
 	const external = process.env.DATABASE_URL;
-	if (external) databaseAddress(external);
+	if (external) await checkReachable(external);
 	const startDatabase = async () => {
 		if (external) return { name: 'database', url: external, alive: () => true, lastWords: () => '' };
 		const { database: folder, programs } = folders;
@@ -178,7 +178,7 @@ async function runAdmin(args, closing) {
 	const { database } = await prepare('built', closing);
 	const env = productEnvironment({ folders, databaseUrl: database.url, demo: false });
 	const { build } = folders;
-	await migrateAndSeed({ env, demo: false, way: 'built', build, database: databaseName() });
+	await migrateAndSeed({ env, demo: false, way: 'built', build, database: databaseName(), say });
 	const command = [...programArguments('admin', 'built', build), ...args];
 	const { code } = await run(process.execPath, command, { cwd: ROOT, env, inherit: true });
 	return code === 0 ? 0 : 1;

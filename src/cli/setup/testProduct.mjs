@@ -34,7 +34,14 @@ export async function serveForJourneys(serverUrl) {
 	const given = { ...process.env, ORIGIN: '', HOST: '127.0.0.1', AUTH_SECRET: '', KERBNOTE_STORAGE: '' };
 	const env = productEnvironment({ folders, databaseUrl: database, demo: true, port, given });
 	const { build, logs } = folders;
-	await migrateAndSeed({ env, demo: true, way: 'built', build, database: 'The empty database of the journeys' });
+	await migrateAndSeed({
+		env,
+		demo: true,
+		way: 'built',
+		build,
+		database: 'The empty database of the journeys',
+		say: () => {}
+	});
 
 	/** @param {string} name @param {string[]} args */
 	const service = (name, args) => startService({ name, args, cwd: ROOT, env, logFile: join(logs, `${name}.log`) });
