@@ -2,12 +2,13 @@ import type { Handle, RequestEvent } from '@sveltejs/kit';
 import { problemResponse } from '../http/problem.ts';
 
 const SAFE_METHODS = new Set(['GET', 'HEAD', 'OPTIONS']);
-/** Forms and JSON; raw files have a limit of their own and one route. */
+/** Forms and JSON. */
 const LARGEST_BODY_BYTES = 512 * 1024;
+/** Raw files, which are never held in memory, have a limit of their own in their one route. */
 const RAW_UPLOAD_PATH = '/api/v1/uploads';
-/** The form by which a browser without script hands over a file. It is read into memory, so it stays far below the raw limit. */
+/** A file as a form, from a browser without script, is held in memory. */
 const FORM_UPLOAD_PATH = '/upload';
-const LARGEST_FORM_UPLOAD_BYTES = 64 * 1024 * 1024;
+const LARGEST_FORM_UPLOAD_BYTES = 32 * 1024 * 1024;
 
 /**
  * Stops what no route needs to see: a change asked for by a page of another site, and bodies that nobody would read.
