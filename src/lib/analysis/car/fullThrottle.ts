@@ -41,17 +41,28 @@ interface Point {
 	weight: number;
 }
 
+/** Models by run: corner metrics and comparison ask for the same one. */
+const fitted = new WeakMap<Channels, FullThrottleModel | null>();
+
 /**
  * Fits the car's acceleration at full throttle by speed, for what arrival speed alone explains on a straight and for the idle gap.
  *
  * Readings: least-squares slope of speed over 0.4 s of unbroken full throttle, brake off, one gear. Per 10 km/h of speed their upper
  * envelope (70th percentile), then a quadratic by iteratively reweighted least squares (Tukey's bisquare). Few speeds give a straight
- * line or a constant. O(n).
+ * line or a constant. O(n), once for a run.
  *
  * @param channels the run
  * @returns the model, or null where the run holds under 15 readings
  */
 export function fitFullThrottle(channels: Channels): FullThrottleModel | null {
+	const known = fitted.get(channels);
+	if (known !== undefined) return known;
+	const model = fitModel(channels);
+	fitted.set(channels, model);
+	return model;
+}
+
+function fitModel(channels: Channels): FullThrottleModel | null {
 	const from = channels.throttlePct ? 'throttle' : 'envelope';
 	const readings = readAccelerations(channels);
 	if (readings.length < MIN_READINGS) return null;

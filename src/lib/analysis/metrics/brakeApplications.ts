@@ -10,8 +10,8 @@ const OFF_NOISE_SD = 3;
 const MERGE_UNDER_S = 0.5;
 /** Speed may rise by this much between two pulses without the driver having accelerated: a kerb, a sensor's step. */
 const RISE_KMH = 0.5;
-/** A longer hole between two samples ends an application: what happened in it is not known. */
-const HOLE_S = 0.5;
+/** A longer step between two samples is a hole in the recording: it ends an application, for what happened in it is not known. */
+export const HOLE_S = 0.5;
 
 /** One braking, by samples; its moments are measured from them. */
 export interface BrakeApplication {

@@ -86,7 +86,7 @@ export function fillBrake(
 	} else if (run.placed.channels.brakeUnit === 'switch') {
 		sheet.explain(SHAPE_FIELDS, 'brake_switch');
 	} else {
-		fillShape(sheet, run, passage, brakings, last, span);
+		fillShape(sheet, run, { ...passage, startS: Math.min(passage.startS, turnInS ?? Infinity) }, brakings, last, span);
 	}
 }
 

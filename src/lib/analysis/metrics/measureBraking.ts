@@ -1,4 +1,4 @@
-import { offLevelPct, ONSET_PCT, type BrakeApplication } from './brakeApplications.ts';
+import { HOLE_S, offLevelPct, ONSET_PCT, type BrakeApplication } from './brakeApplications.ts';
 import { crossing, type Moment, type Signal } from './crossing.ts';
 import { fallingCrossing } from './fallingCrossing.ts';
 import { heldLevel } from './heldLevel.ts';
@@ -44,7 +44,6 @@ const DAB_LEAST_PCT = 10;
 const PULSED_DABS = 3;
 /** Pulses this close to each other are one pressure to the wheels. */
 const PULSE_GAP_S = 0.1;
-const HOLE_S = 0.5;
 
 /**
  * Measures one application of the brake.

@@ -274,6 +274,40 @@ describe('measureCorner', () => {
 		expect(second?.reasons).toMatchObject({ timeS: 'not_reached', exitKmh: 'not_reached' });
 	});
 
+	it('says that what a hole in the recording swallowed is not known', () => {
+		const placed = placedOf(base);
+		const without = (fromS: number, toS: number): PlacedRun => {
+			const kept = [...placed.channels.timeS.keys()].filter(
+				(i) => !(placed.channels.timeS[i] > fromS && placed.channels.timeS[i] < toS)
+			);
+			const pick = (values: Float64Array) => Float64Array.from(kept, (i) => values[i]);
+			const { timeS, speedKmh: speed, distanceM, brakePct: brake, throttlePct: throttle } = placed.channels;
+			return {
+				...placed,
+				placeM: pick(placed.placeM),
+				curvaturePerM: placed.curvaturePerM && pick(placed.curvaturePerM),
+				channels: {
+					...placed.channels,
+					timeS: pick(timeS),
+					speedKmh: pick(speed),
+					distanceM: pick(distanceM),
+					brakePct: brake && pick(brake),
+					throttlePct: throttle && pick(throttle)
+				}
+			};
+		};
+		const [middle] = measureRun(without(5.1, 6.2), [corner]).metrics;
+		expect(middle.minKmh).toBeNull();
+		expect(middle.fullThrottleM).toBeNull();
+		expect(middle.reasons).toMatchObject({ minKmh: 'gap', fullThrottleM: 'gap' });
+		expectPlace(middle.onsetM, 2 + 0.1 * (5 / 80));
+		const [early] = measureRun(without(1.5, 2.4), [corner]).metrics;
+		expect(early.onsetM).toBeNull();
+		expect(early.reasons).toMatchObject({ onsetM: 'gap', liftM: 'gap', coastingS: 'gap' });
+		expectPlace(early.pickUpM, 5.025);
+		expect(early.minKmh).toBeCloseTo(80, 6);
+	});
+
 	it('marks peaks whose full pressure was taken from the run itself', () => {
 		const placed = placedOf(base);
 		const [m] = measureRun({ ...placed, channels: { ...placed.channels, brakeScaleAssumed: true } }, [corner]).metrics;

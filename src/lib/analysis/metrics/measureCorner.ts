@@ -4,7 +4,7 @@ import type { CornerPassage } from './cornerPassages.ts';
 import { decelerationBraking } from './decelerationBraking.ts';
 import { idleGap } from './idleGap.ts';
 import type { Braking } from './measureBraking.ts';
-import type { MeasuredRun } from './measuredRun.ts';
+import { touchesHole, type MeasuredRun } from './measuredRun.ts';
 import { MetricsSheet } from './metricsSheet.ts';
 import { minimumSpeed, speedAt } from './steadySpeed.ts';
 import { fillThrottle } from './throttleMetrics.ts';
@@ -39,14 +39,18 @@ function brakingsOf(run: MeasuredRun, passage: CornerPassage): Braking[] {
 	return passage.brakings.flatMap((application) => run.brakingOf.get(application) ?? []);
 }
 
-function fillSpeeds(sheet: MetricsSheet, { speed }: MeasuredRun, { startS, endS }: CornerPassage): void {
+function fillSpeeds(sheet: MetricsSheet, run: MeasuredRun, { startS, endS }: CornerPassage): void {
+	const { speed } = run;
 	const noise = speed.noiseKmh / 2;
-	sheet.set('entryKmh', speedAt(speed, startS), 'not_reached', noise);
-	sheet.set('exitKmh', speedAt(speed, endS), 'not_reached', noise);
-	sheet.set('timeS', endS - startS, 'not_reached');
-	const minimum = minimumSpeed(speed, startS, endS);
-	sheet.set('minKmh', minimum?.kmh ?? null, 'not_reached', minimum?.plusMinusKmh);
-	sheet.setPlace('minSpeedM', minimum && { timeS: minimum.timeS }, 'not_reached');
+	const outside = (atS: number) => (touchesHole(run, atS) ? 'gap' : 'not_reached');
+	const known = (atS: number) => (touchesHole(run, atS) ? NaN : atS);
+	sheet.set('entryKmh', speedAt(speed, known(startS)), outside(startS), noise);
+	sheet.set('exitKmh', speedAt(speed, known(endS)), outside(endS), noise);
+	sheet.set('timeS', known(endS) - known(startS), touchesHole(run, startS, endS) ? 'gap' : 'not_reached');
+	const holed = touchesHole(run, startS, endS);
+	const minimum = holed ? null : minimumSpeed(speed, startS, endS);
+	sheet.set('minKmh', minimum?.kmh ?? null, holed ? 'gap' : 'not_reached', minimum?.plusMinusKmh);
+	sheet.setPlace('minSpeedM', minimum && { timeS: minimum.timeS }, holed ? 'gap' : 'not_reached');
 }
 
 function turnInOf(run: MeasuredRun, before: CornerPassage | undefined, passage: CornerPassage): number | null {

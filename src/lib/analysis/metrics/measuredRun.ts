@@ -1,7 +1,7 @@
 import type { Corner } from '../../schemas/analysisDocument.ts';
 import { fitFullThrottle, type FullThrottleModel } from '../car/fullThrottle.ts';
 import type { PlacedRun } from '../model.ts';
-import { brakeApplications, type BrakeApplication } from './brakeApplications.ts';
+import { brakeApplications, HOLE_S, type BrakeApplication } from './brakeApplications.ts';
 import type { Span } from './coasting.ts';
 import { cornerPassages, type CornerPassage } from './cornerPassages.ts';
 import type { Signal } from './crossing.ts';
@@ -25,6 +25,8 @@ export interface MeasuredRun {
 	/** every braking of the run, measured, in order */
 	brakings: Braking[];
 	brakingOf: Map<BrakeApplication, Braking>;
+	/** holes in the recording, in order: what happened in them is not known */
+	holes: Span[];
 	/** when the brake was not off, in order */
 	brakeSpans: Span[];
 	fullThrottle: FullThrottleModel | null;
@@ -68,7 +70,21 @@ export function prepareRun(placed: PlacedRun, corners: Corner[]): MeasuredRun {
 		passages,
 		brakings,
 		brakingOf,
+		holes: holesOf(timeS),
 		brakeSpans: brakings.map((one) => ({ startS: one.leavesRestS, endS: one.off?.timeS ?? Infinity })),
 		fullThrottle: fitFullThrottle(channels)
 	};
+}
+
+function holesOf(timeS: Float64Array): Span[] {
+	const holes: Span[] = [];
+	for (let i = 1; i < timeS.length; i++) {
+		if (timeS[i] - timeS[i - 1] > HOLE_S) holes.push({ startS: timeS[i - 1], endS: timeS[i] });
+	}
+	return holes;
+}
+
+/** Is a moment, or a part of a stretch, in a hole of the recording. */
+export function touchesHole({ holes }: MeasuredRun, fromS: number, toS: number = fromS): boolean {
+	return holes.some(({ startS, endS }) => startS < toS && endS > fromS);
 }

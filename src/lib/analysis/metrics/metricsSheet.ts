@@ -4,7 +4,7 @@ import { KMH_PER_MPS } from '../../units.ts';
 import { placeAtTime } from '../trace/placeTime.ts';
 import type { CornerPassage } from './cornerPassages.ts';
 import type { Moment } from './crossing.ts';
-import type { MeasuredRun } from './measuredRun.ts';
+import { touchesHole, type MeasuredRun } from './measuredRun.ts';
 import { speedAt } from './steadySpeed.ts';
 
 /** Fields of a corner that are numbers or null. */
@@ -38,6 +38,7 @@ export class MetricsSheet {
 	/** Sets a field to the place of a moment, counted from the line of the lap. */
 	setPlace(field: MetricField, moment: (Pick<Moment, 'timeS'> & Partial<Moment>) | null, reason: MetricReason): void {
 		if (!moment) return this.set(field, null, reason);
+		if (touchesHole(this.#run, moment.timeS)) return this.set(field, null, 'gap');
 		const { timeS, plusMinusS = 0 } = moment;
 		const spreadM = plusMinusS > 0 ? (speedAt(this.#run.speed, timeS) / KMH_PER_MPS) * plusMinusS : 0;
 		this.set(field, placeAtTime(this.#run.placed, timeS) - this.#passage.baseM, reason, spreadM);

@@ -4,7 +4,7 @@ import { coasting, overlap } from './coasting.ts';
 import type { CornerPassage } from './cornerPassages.ts';
 import type { Signal } from './crossing.ts';
 import type { Braking } from './measureBraking.ts';
-import type { MeasuredRun } from './measuredRun.ts';
+import { touchesHole, type MeasuredRun } from './measuredRun.ts';
 import type { MetricsSheet } from './metricsSheet.ts';
 import { throttleEvents, type ThrottleEvents } from './throttleEvents.ts';
 
@@ -42,14 +42,15 @@ export function fillThrottle(
 	const { throttle } = run;
 	if (!throttle) return sheet.explain(THROTTLE_FIELDS, 'no_channel');
 	if (Number.isNaN(passage.startS + passage.endS)) return sheet.explain(THROTTLE_FIELDS, 'not_reached');
-	if (span && Number.isNaN(span.startS + span.endS)) return sheet.explain(THROTTLE_FIELDS, 'gap');
+	if (span && Number.isNaN(span.endS)) return sheet.explain(THROTTLE_FIELDS, 'gap');
+	const onsetS = span && Number.isNaN(span.startS) ? (brakings.at(0)?.leavesRestS ?? null) : (span?.startS ?? null);
 	const endOfRunS = throttle.timeS[throttle.timeS.length - 1];
 	const untilS = nextOnsetS ?? (next?.apexS || endOfRunS);
 	const events = throttleEvents(
 		throttle,
 		{
 			earliestS: before?.apexS || throttle.timeS[0],
-			brakeOnsetS: span?.startS ?? null,
+			brakeOnsetS: onsetS,
 			brakeOffS: span?.endS ?? null,
 			fromS: passage.startS - LIFT_BEFORE_S,
 			toS: Math.min(passage.endS, untilS),
@@ -99,6 +100,7 @@ function fillBoth(
 	else if (events.kind === 'steady' || !lift) sheet.explain(['coastingS'], 'no_lift_here');
 	else if (events.kind === 'partly') sheet.set('coastingS', 0, 'gap');
 	else if (!pickUp) sheet.explain(['coastingS'], sheet.metrics.reasons.pickUpM);
+	else if (touchesHole(run, lift.timeS, pickUp.timeS)) sheet.explain(['coastingS'], 'gap');
 	else {
 		const coasted = coasting(throttle, { startS: lift.timeS, endS: pickUp.timeS }, run.brakeSpans, run.quickestLift);
 		sheet.set('coastingS', coasted.totalS, 'gap', (span?.endPlusMinusS ?? 0) + pickUp.plusMinusS);
