@@ -25,7 +25,7 @@ export function fillGaps(values: Float64Array, timeS: Float64Array, maxGapS: num
 }
 
 /**
- * Fills missing values between known ones by a cubic through the neighbours (Catmull–Rom for uneven steps): for positions of a
+ * Fills missing values between known ones by a cubic through the neighbours (slopes by parabolas, so that uneven steps do no harm): for positions of a
  * receiver that is slower than the rest of the logger, where a straight line would cut the corners.
  *
  * @param values NaN for missing; changed in place
@@ -35,9 +35,13 @@ export function fillSmooth(values: Float64Array, timeS: Float64Array, maxGapS: n
 	const known: number[] = [];
 	for (let i = 0; i < values.length; i++) if (!Number.isNaN(values[i])) known.push(i);
 	if (known.length === values.length || known.length < 2) return;
+	/** Slope of the parabola through a known value and its two known neighbours. */
 	const slopeAt = (k: number): number => {
-		const [before, after] = [known[Math.max(0, k - 1)], known[Math.min(known.length - 1, k + 1)]];
-		return (values[after] - values[before]) / (timeS[after] - timeS[before]);
+		const [before, at, after] = [known[Math.max(0, k - 1)], known[k], known[Math.min(known.length - 1, k + 1)]];
+		if (before === at || after === at) return (values[after] - values[before]) / (timeS[after] - timeS[before]);
+		const [behind, ahead] = [timeS[at] - timeS[before], timeS[after] - timeS[at]];
+		const [rise, climb] = [(values[at] - values[before]) / behind, (values[after] - values[at]) / ahead];
+		return (rise * ahead + climb * behind) / (behind + ahead);
 	};
 	for (let k = 0; k + 1 < known.length; k++) {
 		const [a, b] = [known[k], known[k + 1]];

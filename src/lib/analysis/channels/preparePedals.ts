@@ -22,6 +22,8 @@ const REST_TOLERANCE_PCT = 0.5;
 const DEAD_RANGE_PCT = 1;
 /** Deceleration (m/s²) that no car reaches without its brakes for long. */
 const BRAKING_MPS2 = 4;
+/** A level below this is a driver who never opened fully, however long he stayed there. */
+const LEAST_FULL_PCT = 90;
 /** Share of samples at one level that makes it a stop of the pedal and not a driver's choice. */
 const PLATEAU_SHARE = 0.03;
 
@@ -151,7 +153,7 @@ function scaleThrottle(throttle: Float64Array, gainMps2: Float64Array, warnings:
 	const low = percentile(throttle, 0.005);
 	if (rest > low + 5 || rest > 25) rest = low;
 	let full = percentile(throttle, 0.998);
-	const isStop = full >= 70 && shareOf(throttle, (value) => Math.abs(value - full) <= 1) >= PLATEAU_SHARE;
+	const isStop = full >= LEAST_FULL_PCT && shareOf(throttle, (value) => Math.abs(value - full) <= 1) >= PLATEAU_SHARE;
 	if (!isStop) full = 100;
 	const needed = Math.abs(rest) > REST_TOLERANCE_PCT || Math.abs(full - 100) > REST_TOLERANCE_PCT;
 	if (needed) {

@@ -1,6 +1,6 @@
 import type { Wheel } from '../../schemas/analysisDocument.ts';
 import type { RawRun } from '../../parse/rawRun.ts';
-import { KMH_PER_MPS } from '../../units.ts';
+import { clockLag } from './clockLag.ts';
 import { gainsMps2 } from './gains.ts';
 import { ratioPercentile } from './percentile.ts';
 import { takeColumn } from './takeColumn.ts';
@@ -10,84 +10,63 @@ const WHEELS = { fl: 'wheelSpeedFl', fr: 'wheelSpeedFr', rl: 'wheelSpeedRl', rr:
 const MIN_KMH = 40;
 const MAX_GAIN_MPS2 = 1.5;
 const GAIN_HALF_SPAN_S = 0.06;
-/** A lag under this (s) is not worth moving a channel for. */
-const LEAST_LAG_S = 0.015;
-const LARGEST_LAG_S = 0.5;
 
 /**
- * Wheel speeds at the tread, km/h: rotation times a rolling radius fitted per wheel while the tyre rolls freely, rolling speeds brought to the car's
- * by the same fit, and the wheels' clock moved where it demonstrably lags the speed's.
+ * Wheel speeds at the tread, km/h: rotation times a rolling radius fitted per wheel while the tyre rolls freely, rolling speeds brought to the
+ * car's by the same fit, and the wheels' common clock moved where it demonstrably lags the speed's.
  *
  * @returns null where the file has no wheel speed; NaN for a wheel that is missing
  */
 export function prepareWheels(raw: RawRun, speedKmh: Float64Array): Record<Wheel, Float64Array> | null {
-	const present = Object.values(WHEELS).filter((channel) => raw.columns[channel]);
-	if (present.length === 0) return null;
 	const { timeS } = raw;
+	const take = (wheel: Wheel) => {
+		const column = raw.columns[WHEELS[wheel]];
+		return column ? takeColumn(column, timeS).values : new Float64Array(timeS.length).fill(NaN);
+	};
+	if (!Object.values(WHEELS).some((channel) => raw.columns[channel])) return null;
+	const wheels = { fl: take('fl'), fr: take('fr'), rl: take('rl'), rr: take('rr') };
 	const gain = gainsMps2(speedKmh, timeS, GAIN_HALF_SPAN_S);
-	const prepared = {} as Partial<Record<Wheel, Float64Array>>;
-	for (const [wheel, channel] of wheelEntries()) {
-		const column = raw.columns[channel];
-		prepared[wheel] = column
-			? fitted(takeColumn(column, timeS).values, speedKmh, gain, timeS)
-			: new Float64Array(timeS.length).fill(NaN);
+	const all = Object.values(wheels);
+	for (const values of all) fitRadius(values, speedKmh, gain);
+	const lag = clockLag(middleOf(all), speedKmh, timeS);
+	if (lag === 0) return wheels;
+	for (const values of all) {
+		shift(values, timeS, lag);
+		fitRadius(values, speedKmh, gain);
 	}
-	const { fl, fr, rl, rr } = prepared;
-	return fl && fr && rl && rr ? { fl, fr, rl, rr } : null;
+	return wheels;
 }
 
-function wheelEntries(): [Wheel, (typeof WHEELS)[Wheel]][] {
-	return [
-		['fl', WHEELS.fl],
-		['fr', WHEELS.fr],
-		['rl', WHEELS.rl],
-		['rr', WHEELS.rr]
-	];
-}
-
-function fitted(values: Float64Array, speedKmh: Float64Array, gain: Float64Array, timeS: Float64Array): Float64Array {
+function fitRadius(values: Float64Array, speedKmh: Float64Array, gain: Float64Array): void {
 	const rolling = (i: number) => speedKmh[i] > MIN_KMH && Math.abs(gain[i]) < MAX_GAIN_MPS2 && values[i] > 0;
 	let scale = ratioPercentile(speedKmh, values, 0.5, rolling);
 	if (!Number.isFinite(scale))
 		scale = ratioPercentile(speedKmh, values, 0.5, (i) => speedKmh[i] > MIN_KMH / 2 && values[i] > 0);
-	if (!Number.isFinite(scale)) scale = 1;
+	if (!Number.isFinite(scale)) return;
 	for (let i = 0; i < values.length; i++) values[i] *= scale;
-	const lag = lagOf(values, speedKmh, gain);
-	return Math.abs(lag) >= LEAST_LAG_S && Math.abs(lag) <= LARGEST_LAG_S ? shifted(values, timeS, lag) : values;
 }
 
-/**
- * By how much a wheel's clock lags, s: w(t) = v(t − lag) differs from v by −lag · dv/dt, and the slope of one on the other over samples without
- * hard braking or wheelspin gives it.
- */
-function lagOf(values: Float64Array, speedKmh: Float64Array, gain: Float64Array): number {
-	let [squares, products, count] = [0, 0, 0];
-	for (let i = 0; i < values.length; i++) {
-		const differenceMps = (values[i] - speedKmh[i]) / KMH_PER_MPS;
-		if (!(speedKmh[i] > MIN_KMH) || !(Math.abs(gain[i]) < 5) || !(Math.abs(differenceMps) < 0.1 * speedKmh[i]))
-			continue;
-		squares += gain[i] * gain[i];
-		products += gain[i] * differenceMps;
-		count++;
+/** Mean of the middle two wheels at each sample: one that locks or spins does not move it. */
+function middleOf(wheels: readonly Float64Array[]): Float64Array {
+	const middle = new Float64Array(wheels[0].length);
+	const [a, b, c, d] = wheels;
+	for (let i = 0; i < middle.length; i++) {
+		const sum = a[i] + b[i] + c[i] + d[i];
+		middle[i] = (sum - Math.max(a[i], b[i], c[i], d[i]) - Math.min(a[i], b[i], c[i], d[i])) / 2;
 	}
-	if (count < 200 || squares === 0) return 0;
-	const slope = products / squares;
-	// Slip under force looks alike (w grows with the driving force): only a lag well beyond it counts.
-	return Math.abs(slope) > 0.06 ? -slope : 0;
+	return middle;
 }
 
-function shifted(values: Float64Array, timeS: Float64Array, lagS: number): Float64Array {
-	const out = new Float64Array(values.length);
+/** Moves a channel forward in time by `lagS`, by lines between samples; ends are held. */
+function shift(values: Float64Array, timeS: Float64Array, lagS: number): void {
+	const source = values.slice();
+	const last = values.length - 1;
 	let k = 0;
-	for (let i = 0; i < values.length; i++) {
+	for (let i = 0; i <= last; i++) {
 		const target = timeS[i] + lagS;
-		while (k + 1 < values.length - 1 && timeS[k + 1] < target) k++;
+		while (k < last - 1 && timeS[k + 1] < target) k++;
 		while (k > 0 && timeS[k] > target) k--;
-		const share = (target - timeS[k]) / (timeS[k + 1] - timeS[k]);
-		out[i] =
-			share < 0 || share > 1
-				? values[Math.min(values.length - 1, Math.max(0, share < 0 ? k : k + 1))]
-				: values[k] + share * (values[k + 1] - values[k]);
+		const share = Math.min(1, Math.max(0, (target - timeS[k]) / (timeS[k + 1] - timeS[k])));
+		values[i] = source[k] + share * (source[k + 1] - source[k]);
 	}
-	return out;
 }
