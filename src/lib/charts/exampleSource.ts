@@ -29,6 +29,8 @@ function gridTraces(view: ComparisonView, { window, speedUnit, delta }: CornerCa
 		fromM: window.fromM,
 		driver: side(driverGrid),
 		reference: side(referenceGrid),
-		deltaS: Float64Array.from(places, (placeM) => deltaAt(driverGrid, referenceGrid, placeM) - zero)
+		deltaS: Float64Array.from(places, (placeM) =>
+			placeM < delta.fromM ? NaN : deltaAt(driverGrid, referenceGrid, placeM) - zero
+		)
 	};
 }

@@ -301,6 +301,8 @@ export interface ComparisonView {
 	runMetrics: z.infer<typeof metricsSchema>[];
 	driverGrid: LapGrid;
 	referenceGrid: LapGrid;
+	/** what each lap's own brake column was multiplied by, so that both stand on one scale; 1 where nothing was guessed */
+	brakeScale: { driver: number; reference: number };
 	/** the driver's run, for switching the lap in place */
 	runLaps: LapHead[];
 	/** laps that may stand as reference here, best candidates first */

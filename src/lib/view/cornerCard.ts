@@ -3,7 +3,7 @@ import type { DateFormat } from '../format/date.ts';
 import { deltaWord, formatDelta, formatSignedSeconds, type DeltaWord } from '../format/delta.ts';
 import { formatSpeed, type SpeedUnit } from '../format/speed.ts';
 import type { ComparisonView, CornerView, Fairness } from '../schemas/views.ts';
-import { cornerCall, cornerFacts, cornerName } from './cornerTitle.ts';
+import { cornerCall, cornerFacts, cornerInWords, cornerName } from './cornerTitle.ts';
 import { cornerWindow, type CornerWindow } from './cornerWindow.ts';
 import { deltaDomain, deltaRow, type DeltaRow } from './deltaRow.ts';
 import {
@@ -71,7 +71,7 @@ export interface Neighbour {
 	call: string;
 }
 
-/** Values under the cursor; null is a gap or an absent channel. Speeds in the reader's unit. */
+/** Values under the cursor; null is a gap, an absent channel, or for Δ a place before the span. Speeds in the reader's unit. */
 export interface CursorReading {
 	placeM: number;
 	driver: Record<TraceRow['key'], number | null>;
@@ -248,8 +248,11 @@ function readingAt({ view, rows, speedUnit }: Chart, placeM: number, zeroM: numb
 		for (const row of rows) values[row.key] = known(valueOf({ row, speedUnit }, grid, placeM));
 		return values;
 	};
+	// Before the span begins there is nothing to count from.
 	const delta =
-		deltaAt(view.driverGrid, view.referenceGrid, placeM) - deltaAt(view.driverGrid, view.referenceGrid, zeroM);
+		placeM < zeroM
+			? NaN
+			: deltaAt(view.driverGrid, view.referenceGrid, placeM) - deltaAt(view.driverGrid, view.referenceGrid, zeroM);
 	return { placeM, driver: read(view.driverGrid), reference: read(view.referenceGrid), deltaS: known(delta) };
 }
 
@@ -270,7 +273,7 @@ function altText(corner: CornerView, places: PlacedCorner, { lines }: FindingLin
 	const { entryS, midS, exitS, totalS } = places.ledger;
 	const parts = `entry ${formatSignedSeconds(entryS)}, mid ${formatSignedSeconds(midS)}, exit ${formatSignedSeconds(exitS)}`;
 	const cause = lines[0]?.segments.map((segment) => segment.text).join('') ?? '';
-	return `${cornerName(corner)}: ${formatDelta(totalS)}; ${parts}.${cause ? ` ${cause}` : ''}`;
+	return `${cornerInWords(corner)}: ${formatDelta(totalS)}; ${parts}.${cause ? ` ${cause}` : ''}`;
 }
 
 /** Is there anything to read of a lap within a window: false where the recording has a hole as wide as it. */

@@ -1,9 +1,15 @@
 import { formatUnit } from '../format/unit.ts';
 import type { CornerView } from '../schemas/views.ts';
 
-/** "Tern Hairpin", or "Corner 4" where nobody has named it. */
-export function cornerName(corner: Pick<CornerView, 'number' | 'name'>): string {
-	return corner.name ?? `Corner ${corner.number ?? ''}`.trim();
+/** What stands beside a corner's large number: its name, else what kind of corner it is. */
+export function cornerName({ name, direction }: Pick<CornerView, 'name' | 'direction'>): string {
+	if (name !== null) return name;
+	return direction === null ? 'Corner' : direction === 'right' ? 'Right-hander' : 'Left-hander';
+}
+
+/** "Tern Hairpin", or "corner 4": a corner within a sentence. */
+export function cornerInWords({ number, name }: Pick<CornerView, 'number' | 'name'>): string {
+	return name ?? `corner\u00a0${number ?? ''}`;
 }
 
 /** "4 Tern Hairpin", or "corner 4": how a corner is called in a line of text or a link. */
@@ -17,7 +23,7 @@ export function cornerCall(corner: Pick<CornerView, 'number' | 'name'>): string 
 export function cornerFacts(corner: CornerView, corners: readonly CornerView[]): string {
 	const next = corner.linkedTo === null ? undefined : corners.find((other) => other.number === corner.linkedTo);
 	return [
-		corner.direction,
+		corner.name === null ? null : corner.direction,
 		corner.angleDeg === null ? null : formatUnit(corner.angleDeg, '°'),
 		corner.minRadiusM === null ? null : `R\u00a0${formatUnit(corner.minRadiusM, 'm')}`,
 		corner.apex2M === null ? null : 'double apex',

@@ -35,7 +35,10 @@ export function cornerWindow(
 	const highest = Math.floor(lengthM) + marginM - 1;
 	const fromM = Math.max(lowest, Math.floor(places.beginM - leadM));
 	const spanEndM = places.spans.endM;
-	const natural = Math.max(Math.ceil(spanEndM + tailM), Math.ceil(places.endM));
+	// A corner that the line cuts ends after its own span.
+	const natural = Math.ceil(
+		Math.max(spanEndM + tailM, places.endM > spanEndM ? places.endM + AFTER_END_M : places.endM)
+	);
 	const widest = Math.max(fromM + widestM, Math.ceil(places.endM + AFTER_END_M));
 	const toM = Math.min(highest, natural, widest);
 	return { fromM, toM, exitGoesOnToM: spanEndM > toM ? Math.round(spanEndM) : null };

@@ -133,7 +133,9 @@ export function evidencePlace(
 	lengthM: number,
 	closed: boolean
 ): { row: TraceRow; atM: number } | null {
-	const row = ROW_OF[code].map((key) => rows.find((r) => r.key === key && r.driver !== '')).find(Boolean);
+	// Braking that begins with a lift alone is seen at the throttle.
+	const rowKeys: readonly RowKey[] = evidence[0]?.quantity === 'lift' ? ['throttle', 'speed'] : ROW_OF[code];
+	const row = rowKeys.map((key) => rows.find((r) => r.key === key && r.driver !== '')).find(Boolean);
 	const field = POINTS_AT[code];
 	const measured = field ? driver?.[field] : null;
 	const raw = measured ?? evidence.find((item) => item.atM !== null)?.atM ?? (code === 'exit_speed_low' ? endM : null);
@@ -175,7 +177,7 @@ export function placeTag(
 				};
 			})
 		);
-		const frame = { x: 0, y: -8, width: canvas.plotPx, height: row.heightPx + 14 };
+		const frame = { x: 0, y: -8, width: canvas.plotPx, height: row.heightPx + 32 };
 		const { chosen } = placeLabel(candidates, { points: canvas.points, boxes: canvas.boxes, frame });
 		canvas.boxes.push(chosen);
 		return chosen.shift;

@@ -1,4 +1,5 @@
 import { deltaWord, type DeltaWord } from '../format/delta.ts';
+import { formatNumber } from '../format/number.ts';
 import { formatUnit } from '../format/unit.ts';
 import { figureOf } from '../format/count.ts';
 import type { Comparison, Finding } from '../schemas/analysisDocument.ts';
@@ -72,7 +73,7 @@ export function findingLines(comparison: Comparison, corner: number): FindingLin
 			return {
 				number,
 				code: finding.code,
-				segments: findingParts(finding),
+				segments: findingParts(finding).map((part) => ({ ...part, text: groupDigits(part.text) })),
 				cost: Math.abs(shareS ?? 0) < SAYABLE_S ? null : costText(shareS ?? 0),
 				carriedOn:
 					Math.abs(carriedS) < SAYABLE_S
@@ -93,4 +94,9 @@ export function habitText({ habit, habitLaps }: Pick<Finding, 'habit' | 'habitLa
 	const { shown, of } = habitLaps;
 	const laps = `${shown} of ${figureOf(of, 'lap')}`;
 	return { shown, of, isHabit: habit, text: habit ? `habit, ${laps}` : shown <= 1 ? `one-off, ${laps}` : laps };
+}
+
+/** Whole numbers from four digits on in groups of three, as everywhere on a page. */
+export function groupDigits(text: string): string {
+	return text.replace(/(?<![\d.,])\d{4,}/g, (digits) => formatNumber(Number(digits)));
 }

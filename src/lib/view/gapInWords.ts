@@ -5,7 +5,7 @@ import { formatUnit } from '../format/unit.ts';
 import type { Finding } from '../schemas/analysisDocument.ts';
 import type { FindingCode } from '../schemas/codes.ts';
 import type { ComparisonView } from '../schemas/views.ts';
-import { cornerName } from './cornerTitle.ts';
+import { cornerInWords } from './cornerTitle.ts';
 import { orderedFindings } from './findingLines.ts';
 
 /** The conclusion that opens the compare page: sentences in order, and the corner to begin with. */
@@ -53,7 +53,7 @@ export function gapInWords(view: ComparisonView, speedUnit: SpeedUnit = 'kmh'): 
 	const worst = lost.find((row) => row.totalS >= CLEAR_S);
 	if (worst) {
 		const corner = view.corners.find((c) => c.number === worst.corner);
-		const where = corner?.name ?? `corner ${worst.corner}`;
+		const where = cornerInWords(corner ?? { number: worst.corner, name: null });
 		const costly = orderedFindings(comparison, worst.corner).filter(
 			({ number, shareS }) => number !== null && (shareS ?? 0) >= SAID_FROM_S
 		);
@@ -74,7 +74,7 @@ export function gapInWords(view: ComparisonView, speedUnit: SpeedUnit = 'kmh'): 
 		const who = you ? 'you are' : `${view.driver.driver.name.split(' ')[0]} is`;
 		const places =
 			quicker.length === 1
-				? `At ${cornerName(view.corners.find((c) => c.number === quicker[0].corner) ?? { number: quicker[0].corner, name: null })}`
+				? `At ${cornerInWords(view.corners.find((c) => c.number === quicker[0].corner) ?? { number: quicker[0].corner, name: null })}`
 				: `In ${countInWords(quicker.length)} corners`;
 		sentences.push(`${places} ${who} quicker than the reference.`);
 	}

@@ -91,7 +91,7 @@ export function ledgerView(comparison: Comparison, corners: readonly CornerView[
 			return {
 				topPx: round(Math.min(from, to)),
 				heightPx: round(heightPx),
-				word: part > 0 ? 'lost' : 'found',
+				word: deltaWord(part),
 				endPx: round(to),
 				from: round(left, 4),
 				to: round(left + width, 4)

@@ -42,7 +42,7 @@ export interface PlanView {
 	note: string | null;
 }
 
-const SIZE = { widthPx: 372, heightPx: [300, 500] as [number, number] };
+const SIZE = { widthPx: 372, heightPx: [300, 470] as [number, number] };
 const PADDING: [number, number, number, number] = [26, 30, 22, 62];
 /** px per character of 12 px Public Sans, generous */
 const CHARACTER_PX = 6.6;
@@ -94,7 +94,7 @@ export function planView(
 		apex: pencil.apex.toString(),
 		leaders: pencil.leaders.toString(),
 		labels: pencil.labels,
-		scale: scaleBar(frame),
+		scale: scaleBar(frame, hand),
 		track: { fromM, stepM: driver.stepM, driver: steps(driver.points), reference: steps(reference.points) },
 		note:
 			driverGrid.offsetM === null && referenceGrid.offsetM === null
@@ -124,7 +124,7 @@ class PlanPencil {
 		this.#hand = hand;
 		this.#points = points.filter(([x, y]) => Number.isFinite(x) && Number.isFinite(y));
 		this.#clearPx = Math.min(34, 12 + 4 * frame.pxPerM);
-		const scale = scaleBar(frame);
+		const scale = scaleBar(frame, hand);
 		this.#boxes.push({ x: scale.x - 6, y: scale.y - 24, width: scale.lengthPx + 12, height: 34 });
 	}
 
@@ -240,11 +240,11 @@ class PlanPencil {
 	}
 }
 
-/** A round length that is a sensible piece of the drawing. */
-function scaleBar({ pxPerM, widthPx, heightPx }: PlanFrame): PlanView['scale'] {
+/** A round length that is a sensible piece of the drawing, at its foot on the inside of the turn. */
+function scaleBar({ pxPerM, widthPx, heightPx }: PlanFrame, hand: 1 | -1): PlanView['scale'] {
 	const lengthM = [5, 10, 20, 50, 100, 200].find((m) => m * pxPerM >= 42) ?? 500;
 	const lengthPx = Math.round(lengthM * pxPerM * 10) / 10;
-	return { x: widthPx - 12 - lengthPx, y: heightPx - 8, lengthPx, text: formatDistance(lengthM) };
+	return { x: hand < 0 ? widthPx - 12 - lengthPx : 12, y: heightPx - 8, lengthPx, text: formatDistance(lengthM) };
 }
 
 /** Points as first place and steps in tenths of a pixel: small numbers compress. A gap is null and starts anew after it. */

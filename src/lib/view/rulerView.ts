@@ -6,20 +6,26 @@ import { formatNumber } from '../format/number.ts';
 
 /** The ruler under the rows, in m on the path. */
 export interface RulerView {
-	/** path data of the ticks in tenths of a pixel, WIDTH_UNITS wide, hanging from 0: every 5 m, longer at 10 and 50 */
+	/** path data of the ticks in tenths of a pixel, WIDTH_UNITS wide, hanging from 0: every 5 m, longer at 10 and at numbers */
 	ticks: string;
-	/** at whole fifties of the lap; the last one carries the unit */
+	/** round places of the lap; the last one carries the unit */
 	labels: { atM: number; text: string }[];
 	/** named places, on a second line */
 	marks: RulerMark[];
 }
 
-/** A tick: its unwrapped place, its place on the lap, and how strong it is: 1 every 5 m, 2 every 10, 3 every 50. */
+/** A tick: its unwrapped place, its place on the lap, and how strong it is: 1 every 5 m, 2 every 10, 3 where a number stands. */
 export interface RulerTick {
 	atM: number;
 	onLapM: number;
 	size: 1 | 2 | 3;
 }
+
+/** Numbers stand every 50 m; a short window, as in a kart, needs them closer. */
+const NUMBERED = [
+	{ fromWindowM: 130, everyM: 50 },
+	{ fromWindowM: 60, everyM: 20 }
+];
 
 const TICK_PX = { 1: 3.5, 2: 6, 3: 9 };
 
@@ -28,6 +34,7 @@ const TICK_PX = { 1: 3.5, 2: 6, 3: 9 };
  */
 export function rulerTicks({ fromM, toM, lengthM, closed }: RulerSpan): RulerTick[] {
 	const ticks: RulerTick[] = [];
+	const numberedM = NUMBERED.find(({ fromWindowM }) => toM - fromM >= fromWindowM)?.everyM ?? 10;
 	const turns = closed ? [Math.floor(fromM / lengthM), Math.floor(toM / lengthM)] : [0, 0];
 	for (let turn = turns[0]; turn <= turns[1]; turn++) {
 		const origin = turn * lengthM;
@@ -37,7 +44,7 @@ export function rulerTicks({ fromM, toM, lengthM, closed }: RulerSpan): RulerTic
 			origin + onLapM <= toM && onLapM <= last;
 			onLapM += 5
 		) {
-			ticks.push({ atM: origin + onLapM, onLapM, size: onLapM % 50 === 0 ? 3 : onLapM % 10 === 0 ? 2 : 1 });
+			ticks.push({ atM: origin + onLapM, onLapM, size: onLapM % numberedM === 0 ? 3 : onLapM % 10 === 0 ? 2 : 1 });
 		}
 	}
 	return ticks;
@@ -79,10 +86,10 @@ export function rulerView(input: RulerInput): RulerView {
 		path.moveTo(x(atM), 0);
 		path.lineTo(x(atM), TICK_PX[size] * UNITS_PER_PX);
 	}
-	const fifties = ticks.filter((tick) => tick.size === 3);
-	const labels = fifties.map(({ atM, onLapM }, i) => ({
+	const numbered = ticks.filter((tick) => tick.size === 3);
+	const labels = numbered.map(({ atM, onLapM }, i) => ({
 		atM,
-		text: i === fifties.length - 1 ? formatDistance(onLapM) : formatNumber(onLapM)
+		text: i === numbered.length - 1 ? formatDistance(onLapM) : formatNumber(onLapM)
 	}));
 	const named = [...marks];
 	for (let turn = Math.ceil(fromM / lengthM); closed && turn * lengthM < toM; turn++) {

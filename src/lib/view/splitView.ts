@@ -12,7 +12,7 @@ export interface SplitPart {
 	deltaS: number;
 	text: string;
 	word: DeltaWord;
-	/** where the exit really ends, when the window cuts it */
+	/** "on to 898 m": where the exit really ends, when the window cuts it */
 	goesOn: string | null;
 }
 
@@ -29,7 +29,7 @@ export function splitView(
 		deltaS,
 		text: formatSignedSeconds(deltaS),
 		word: deltaWord(deltaS),
-		goesOn: name === 'exit' && goesOnToM !== null ? `exit goes on to ${formatDistance(goesOnToM)}` : null
+		goesOn: name === 'exit' && goesOnToM !== null ? `on to ${formatDistance(goesOnToM)}` : null
 	});
 	return [
 		part('entry', spans.entryM, spans.midM, ledger.entryS),

@@ -66,7 +66,12 @@ function traceRow(key: RowKey, input: TraceInput): TraceRow {
 	return {
 		key,
 		name,
-		unit: { brake: '% of full pedal', speed: SPEED_UNIT_TEXT[input.speedUnit], throttle: '%', steering: '° left' }[key],
+		unit: {
+			brake: '% of full pedal',
+			speed: SPEED_UNIT_TEXT[input.speedUnit],
+			throttle: '%',
+			steering: '°, left up'
+		}[key],
 		valueUnit: { brake: '%', speed: SPEED_UNIT_TEXT[input.speedUnit], throttle: '%', steering: '°' }[key],
 		heightPx,
 		domain,

@@ -22,6 +22,7 @@ export interface StoredComparison {
 	runMetrics: CornerMetrics[];
 	driverGrid: LapGrid;
 	referenceGrid: LapGrid;
+	brakeScale: { driver: number; reference: number };
 }
 
 /** A pair is about 1 MB. */
@@ -95,7 +96,8 @@ export async function compareStored(
 		referenceMetrics,
 		runMetrics,
 		driverGrid,
-		referenceGrid
+		referenceGrid,
+		brakeScale: scale
 	};
 	cache.set(hash, stored);
 	return { hash, stored };

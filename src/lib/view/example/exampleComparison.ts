@@ -2,9 +2,9 @@ import { compareLaps } from '../../analysis/compare/compareLaps.ts';
 import type { LapGrid, ReferencePath } from '../../analysis/model.ts';
 import { centreLine, type CentreLine } from '../../demo/centreLine.ts';
 import { TERN_HOLLOW, VALLMERE_GRAND_PRIX } from '../../demo/circuits.ts';
-import { drivenLine } from '../../demo/drivenLine.ts';
 import type { CornerMetrics } from '../../schemas/analysisDocument.ts';
 import type { ComparisonView, CornerView, LapHead } from '../../schemas/views.ts';
+import { exampleLine } from './exampleLine.ts';
 import { exampleLap, REFERENCE_STYLE, type CornerStyle, type ExampleLap } from './exampleLap.ts';
 
 export interface ExampleOptions {
@@ -46,9 +46,8 @@ export function exampleComparison(options: ExampleOptions = {}): ComparisonView 
 	const circuit = options.dense ? TERN_HOLLOW : VALLMERE_GRAND_PRIX;
 	const vertices = circuit.vertices.map((vertex) => (options.mirrored ? { ...vertex, yM: -vertex.yM } : vertex));
 	const road = moveLine(centreLine({ ...circuit, vertices }), options.lineAtM ?? 0);
-	const wanderM = road.corners.map(() => 0);
-	const referenceLine = drivenLine(road, { widthM: 3.8, apexAt: 0.6, wanderM });
-	const driverLine = drivenLine(road, { widthM: 3.3, apexAt: 0.46, wanderM });
+	const referenceLine = exampleLine(road, 3.8, 0.6);
+	const driverLine = exampleLine(road, 3.3, 0.46);
 	const styles = road.corners.map((corner) => ({ ...REFERENCE_STYLE, ...MIRA_STYLES[corner.name] }));
 	const plain = road.corners.map(() => REFERENCE_STYLE);
 	const reference = strip(exampleLap(road, referenceLine, 3, options.quicker ? styles : plain), options, false);
@@ -110,6 +109,7 @@ export function exampleComparison(options: ExampleOptions = {}): ComparisonView 
 		runMetrics: exampleRun(driver.metrics, reference.metrics).metrics,
 		driverGrid: driver.grid,
 		referenceGrid: reference.grid,
+		brakeScale: { driver: 1, reference: 1 },
 		runLaps: [driverHead],
 		otherReferences: [referenceHead],
 		fairness: [],

@@ -1,7 +1,7 @@
 import type { CentreLine } from '../../demo/centreLine.ts';
-import type { DrivenLine } from '../../demo/drivenLine.ts';
 import type { LapGrid } from '../../analysis/model.ts';
 import { metricsSchema, type CornerMetrics } from '../../schemas/analysisDocument.ts';
+import type { ExampleLine } from './exampleLine.ts';
 import { KMH_PER_MPS } from '../../units.ts';
 
 /** How one corner is driven in an example lap; zeros and ones are the reference's way. */
@@ -33,7 +33,7 @@ const LATERAL_MPS2 = 13;
  *
  * @param styles one per corner of the road
  */
-export function exampleLap(road: CentreLine, line: DrivenLine, lapNumber: number, styles: CornerStyle[]): ExampleLap {
+export function exampleLap(road: CentreLine, line: ExampleLine, lapNumber: number, styles: CornerStyle[]): ExampleLap {
 	const n = road.lengthM;
 	const wrap = (s: number): number => ((Math.round(s) % n) + n) % n;
 	const speed = new Float64Array(n);
@@ -109,9 +109,6 @@ export function exampleLap(road: CentreLine, line: DrivenLine, lapNumber: number
 	const brakePct = smooth(brake, 1.6).map((value) => (value < 0.4 ? 0 : value));
 	const throttlePct = smooth(throttle, 1.6);
 	const steeringDeg = smooth(line.curvaturePerM, 3).map((curvature) => curvature * 1900);
-	const offsetM = line.xM.map(
-		(x, i) => (x - road.xM[i]) * road.normalX[i] + (line.yM[i] - road.yM[i]) * road.normalY[i]
-	);
 
 	const size = n + 1 + 2 * MARGIN_M;
 	const onGrid = (values: Float64Array): Float64Array =>
@@ -132,7 +129,7 @@ export function exampleLap(road: CentreLine, line: DrivenLine, lapNumber: number
 		brakePct: onGrid(brakePct),
 		throttlePct: onGrid(throttlePct),
 		steeringDeg: onGrid(steeringDeg),
-		offsetM: onGrid(offsetM),
+		offsetM: onGrid(line.offsetM),
 		curvaturePerM: onGrid(line.curvaturePerM),
 		accLongMps2: null,
 		gear: null,
@@ -165,26 +162,29 @@ function measure(grid: LapGrid, lap: number, number: number, corner: CentreLine[
 	const off = onset === null ? null : first(onset + 5, corner.endM + 60, (s) => at(grid.brakePct, s) < 2);
 	const lifted = onset !== null || at(grid.throttlePct, slowest) < 95;
 	const pickUp = lifted ? first(slowest - 5, corner.endM + 80, (s) => at(grid.throttlePct, s) >= 5) : null;
+	const onLap = (placeM: number | null): number | null =>
+		placeM === null ? null : ((placeM % grid.lengthM) + grid.lengthM) % grid.lengthM;
 	// Every other field of a metric is "not known here".
 	const unknown = Object.fromEntries(Object.keys(metricsSchema.shape).map((key) => [key, null]));
 	return metricsSchema.parse({
 		...unknown,
 		lap,
 		corner: number,
-		onsetM: onset,
+		onsetM: onLap(onset),
 		onsetS: onset === null ? null : at(grid.timeS, onset),
 		peakPct: onset === null ? null : peak,
 		peakRawPct: onset === null ? null : peak,
-		peakM,
-		releaseStartM: off === null ? null : off - 50,
-		releaseEndM: off,
-		turnInM: Math.max(0, corner.startM - 5),
+		peakM: onLap(peakM),
+		releaseStartM: off === null ? null : onLap(off - 50),
+		releaseEndM: onLap(off),
+		turnInM: onLap(corner.startM - 5),
 		entryKmh: at(grid.speedKmh, corner.startM),
 		minKmh: at(grid.speedKmh, slowest),
-		minSpeedM: slowest,
-		liftM: onset === null ? null : onset - 5,
-		pickUpM: pickUp,
-		fullThrottleM: pickUp === null ? null : first(pickUp, corner.endM + 140, (s) => at(grid.throttlePct, s) >= 95),
+		minSpeedM: onLap(slowest),
+		liftM: onset === null ? null : onLap(onset - 5),
+		pickUpM: onLap(pickUp),
+		fullThrottleM:
+			pickUp === null ? null : onLap(first(pickUp, corner.endM + 140, (s) => at(grid.throttlePct, s) >= 95)),
 		exitKmh: at(grid.speedKmh, corner.endM),
 		plusMinus: {},
 		reasons: {}

@@ -27,7 +27,8 @@ const OPTIONS: { name: string; corner: number; options: ExampleOptions }[] = [
 	{ name: 'no brake channel', corner: 4, options: { without: ['brake', 'steering'] } },
 	{ name: 'no positions', corner: 4, options: { without: ['positions'] } },
 	{ name: 'speed alone', corner: 4, options: { without: ['brake', 'throttle', 'steering', 'positions'] } },
-	{ name: 'spans the line', corner: 12, options: { lineAtM: 500 } },
+	{ name: 'spans the line', corner: 1, options: { lineAtM: 505 } },
+	{ name: 'ends after the line', corner: 12, options: { lineAtM: 525 } },
 	{ name: 'dense', corner: 3, options: { dense: true } },
 	{ name: 'the quicker driver', corner: 4, options: { quicker: true } },
 	{ name: 'the same lap', corner: 4, options: { sameLap: true } }

@@ -20,8 +20,8 @@ export interface Surroundings {
 }
 
 /** A box in the way counts as this many points of a line: text over text cannot be read, text over a line can. */
-const BOX_COST = 12;
-const OUTSIDE_COST = 40;
+const BOX_COST = 60;
+const OUTSIDE_COST = 120;
 
 const overlap = (a: Box, b: Box): boolean =>
 	a.x < b.x + b.width && b.x < a.x + a.width && a.y < b.y + b.height && b.y < a.y + a.height;
