@@ -11,7 +11,7 @@ export interface NumberFormat {
  * A number in the house's setting: decimal point, groups of three from four digits on, real minus, no "−0".
  * What is not finite, null or undefined becomes "–".
  *
- * @example formatNumber(-1535.25, { decimals: 1 }) // => "−1 535.3" with a no-break space
+ * @example formatNumber(-1535.25, { decimals: 1 }) // => "−1 535.3"
  */
 export function formatNumber(value: number | null | undefined, { decimals = 0, signed = false }: NumberFormat = {}) {
 	if (value === null || value === undefined || !Number.isFinite(value)) return NOT_KNOWN;
