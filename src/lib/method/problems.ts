@@ -4,7 +4,9 @@ import type { ProblemCode } from '../schemas/api.ts';
 export const PROBLEM_TEXT: Record<ProblemCode, string> = {
 	empty_file: 'The file has no content.',
 	header_only: 'The file has names of columns, and no row of values below them.',
+	no_data_rows: 'The table has no row of values.',
 	not_text: 'The file is no text in a known encoding.',
+	unknown_encoding: 'The file’s letters are written in an encoding that is not known.',
 	binary_file: 'The file is a program’s own format; export it as CSV.',
 	compressed_file: 'The file is packed in a way that is not read; gzip is.',
 	archive_file: 'The file is an archive; unpack it and hand over the CSV.',
@@ -13,6 +15,7 @@ export const PROBLEM_TEXT: Record<ProblemCode, string> = {
 	unclosed_quote: 'A quotation mark opens and never closes.',
 	missing_time: 'No column of time was found.',
 	missing_motion: 'Neither speed nor distance nor position was found.',
+	missing_speed: 'No column of speed was found, and nothing to make one from.',
 	unreadable_time: 'The column of time holds what is no time.',
 	unreadable_position: 'The columns of position hold what is no position.',
 	time_not_increasing: 'Time goes back again and again.',

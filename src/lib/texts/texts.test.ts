@@ -1,6 +1,7 @@
 import { describe, expect, it } from 'vitest';
 import { channelSchema } from '../schemas/channels.ts';
 import { CHANNEL_ORDER } from './channels.ts';
+import { deviceName } from './device.ts';
 import { describeLap } from './laps.ts';
 import { layoutInSentence, layoutName, runName } from './runs.ts';
 import { describeSource } from './source.ts';
@@ -124,5 +125,24 @@ describe('describeUpload', () => {
 	] as const)('says "$expected"', ({ upload, expected, settled }) => {
 		expect(describeUpload(upload)).toBe(expected);
 		expect(isSettled(upload)).toBe(settled);
+	});
+});
+
+describe('deviceName', () => {
+	it.each([
+		['Mozilla/5.0 (Windows NT 10.0; Win64; x64; rv:140.0) Gecko/20100101 Firefox/140.0', 'Firefox on Windows'],
+		[
+			'Mozilla/5.0 (X11; Linux x86_64) AppleWebKit/537.36 (KHTML, like Gecko) Chrome/150.0 Safari/537.36',
+			'Chrome on Linux'
+		],
+		[
+			'Mozilla/5.0 (iPhone; CPU iPhone OS 19_0 like Mac OS X) AppleWebKit/605.1.15 Version/19.0 Mobile Safari/604.1',
+			'Safari on iPhone'
+		],
+		['Mozilla/5.0 (Windows NT 10.0) AppleWebKit/537.36 Chrome/150.0 Safari/537.36 Edg/150.0', 'Edge on Windows'],
+		['curl/8.5.0', 'a program'],
+		[null, 'a program']
+	])('calls %s "%s"', (userAgent, expected) => {
+		expect(deviceName(userAgent)).toBe(expected);
 	});
 });
