@@ -3,7 +3,7 @@ const BROWSERS: readonly [pattern: RegExp, name: string][] = [
 	[/\bEdgA?\//, 'Edge'],
 	[/\bOPR\//, 'Opera'],
 	[/\bFirefox\/|\bFxiOS\//, 'Firefox'],
-	[/\bChrome\/|\bCriOS\//, 'Chrome'],
+	[/Chrome\/|\bCriOS\//, 'Chrome'],
 	[/\bSafari\//, 'Safari']
 ];
 const SYSTEMS: readonly [pattern: RegExp, name: string][] = [
