@@ -147,7 +147,7 @@ async function shelve(db: Knex, run: SeededRun): Promise<void> {
 		...shelf,
 		public_id: newPublicId(),
 		lap_id: run.bestLapId,
-		name: 'Reference, dry, 3 May',
+		name: 'Rhea Calloway, dry',
 		created_by: run.ownerId
 	});
 }
