@@ -4,9 +4,9 @@ import type { Signal } from './crossing.ts';
 const PIECES = 6;
 /** A piece may be this much steeper than the one before and still count as no steeper. */
 const TOLERANCE_SHARE = 0.15;
-/** Below this share of the peak, the foot is coming off, and how fast says nothing of the shape. */
-const TAIL_SHARE = 0.1;
-const TAIL_LEAST_PCT = 5;
+/** Below a light hold's band, or this share of a light braking's peak, the foot is coming off: how fast says nothing of the shape. */
+const TAIL_PCT = 12;
+const TAIL_SHARE = 0.4;
 
 /**
  * Is a release progressive: does its slope only fall, so that pressure bleeds away ever more gently? A straight release counts.
@@ -18,7 +18,7 @@ const TAIL_LEAST_PCT = 5;
  */
 export function isProgressive(brake: Signal, startS: number, endS: number, peakPct: number): boolean | null {
 	const { timeS, values, noise } = brake;
-	const tail = Math.max(TAIL_LEAST_PCT, TAIL_SHARE * peakPct);
+	const tail = Math.min(TAIL_PCT, TAIL_SHARE * peakPct);
 	let first = 0;
 	let high = values.length;
 	while (first < high) {

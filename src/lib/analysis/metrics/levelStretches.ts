@@ -121,24 +121,30 @@ function windowedStretches(
 		means[i - from] = mean(values, a, b);
 		slopes[i - from] = slope(timeS, values, a, b);
 	}
-	const found: LevelStretch[] = [];
+	const runs: { first: number; last: number }[] = [];
 	let first = -1;
 	for (let i = from; i <= to; i++) {
 		const isLevel =
 			i < to && Math.abs(slopes[i - from]) < steepest && means[i - from] >= low && means[i - from] <= high;
 		if (isLevel && first < 0) first = i;
 		if (isLevel || first < 0) continue;
-		const last = i - 1;
-		const windowS = 2 * half * options.sampleS;
-		const startS = timeS[first] - windowShiftS(slopes, first - from, -1, half, steepest) * windowS;
-		const endS = timeS[last] + windowShiftS(slopes, last - from, 1, half, steepest) * windowS;
-		const overall = slope(timeS, values, first, last);
-		if (endS - startS >= leastS && Math.abs(overall) < steepest) {
-			found.push({ startS, endS, level: mean(values, first, last), firstIndex: first, lastIndex: last });
-		}
+		const before = runs.at(-1);
+		// noise may tilt a window in the middle of a level
+		const goesOn =
+			before &&
+			first - before.last <= 2 * half &&
+			Math.abs(mean(values, before.first, before.last) - mean(values, first, i - 1)) < 2 * signal.noise;
+		if (goesOn) before.last = i - 1;
+		else runs.push({ first, last: i - 1 });
 		first = -1;
 	}
-	return found;
+	const windowS = 2 * half * options.sampleS;
+	return runs.flatMap(({ first, last }) => {
+		const startS = timeS[first] - windowShiftS(slopes, first - from, -1, half, steepest) * windowS;
+		const endS = timeS[last] + windowShiftS(slopes, last - from, 1, half, steepest) * windowS;
+		const isLong = endS - startS >= leastS && Math.abs(slope(timeS, values, first, last)) < steepest;
+		return isLong ? [{ startS, endS, level: mean(values, first, last), firstIndex: first, lastIndex: last }] : [];
+	});
 }
 
 /**
