@@ -86,6 +86,15 @@ export interface RequestOptions {
 
 const SITE = 'http://localhost';
 
+/** What a route answers to: methods of an endpoint, `GET` of a page, `POST ?/name` for each action. */
+export async function operationsOf(route: Route): Promise<string[]> {
+	const endpoint = route.endpoint ? await modules[route.endpoint]() : {};
+	const page = route.page ? await modules[route.page]() : {};
+	const methods = ['GET', 'PUT', 'POST', 'PATCH', 'DELETE'].filter((method) => method in endpoint);
+	const actions = Object.keys(page.actions ?? {}).map((name) => (name === 'default' ? 'POST' : `POST ?/${name}`));
+	return [...methods, ...(route.isPage ? ['GET'] : []), ...actions];
+}
+
 /** Sends one request; cookies that it sets go into the jar. */
 export async function testRequest(path: string, options: RequestOptions = {}): Promise<Response> {
 	const { method = 'GET', body = null, jar = new CookieJar(), origin = SITE, address = '127.0.0.1' } = options;

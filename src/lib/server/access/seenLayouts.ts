@@ -9,9 +9,11 @@ import { readingOrganisations, type Viewer } from './viewer.ts';
 export function seenLayouts(db: Knex, viewer: Viewer): Knex.Raw {
 	const organisations = viewer.memberships.map(({ organisationId }) => organisationId);
 	const ofOrganisation =
-		organisations.length === 0 ? 'FALSE' : `circuits.organisation_id IN (${organisations.map(() => '?').join(', ')})`;
+		organisations.length === 0
+			? 'FALSE'
+			: `COALESCE(circuits.organisation_id IN (${organisations.map(() => '?').join(', ')}), FALSE)`;
 	return db.raw(
-		`(circuits.is_public OR circuits.created_by = ? OR ${ofOrganisation}
+		`(circuits.is_public OR circuits.created_by <=> ? OR ${ofOrganisation}
 			OR EXISTS (SELECT 1 FROM runs WHERE runs.layout_id = layouts.id AND ?))`,
 		[viewer.personId, ...organisations, seenRuns(db, viewer)]
 	);
@@ -24,9 +26,12 @@ export function seenLayouts(db: Knex, viewer: Viewer): Knex.Raw {
 export function editedCircuits(db: Knex, viewer: Viewer): Knex.Raw {
 	const organisations = readingOrganisations(viewer);
 	const ofOrganisation =
-		organisations.length === 0 ? 'FALSE' : `circuits.organisation_id IN (${organisations.map(() => '?').join(', ')})`;
+		organisations.length === 0
+			? 'FALSE'
+			: `COALESCE(circuits.organisation_id IN (${organisations.map(() => '?').join(', ')}), FALSE)`;
+	// Never NULL, for pages read it as a value: an absent creator or organisation is simply not the viewer's.
 	return db.raw(
-		`(circuits.created_by = ? OR ${ofOrganisation}
+		`(circuits.created_by <=> ? OR ${ofOrganisation}
 			OR EXISTS (SELECT 1 FROM guardian_links
 				WHERE guardian_links.minor_id = circuits.created_by AND guardian_links.guardian_id = ? AND guardian_links.ended_at IS NULL))`,
 		[viewer.personId, ...organisations, viewer.personId]

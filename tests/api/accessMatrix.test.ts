@@ -1,0 +1,463 @@
+import '../helpers/server.ts';
+import { randomUUID } from 'node:crypto';
+import { rm } from 'node:fs/promises';
+import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { OPERATIONS } from '../../src/lib/server/http/openApi.ts';
+import { closeDatabase, database } from '../../src/lib/server/db/database.ts';
+import { newPublicId } from '../../src/lib/server/db/publicId.ts';
+import { environment } from '../../src/lib/server/environment.ts';
+import { CookieJar } from '../helpers/cookieJar.ts';
+import {
+	addGuardian,
+	addMember,
+	bearer,
+	makeGrant,
+	makeOrganisation,
+	makePerson,
+	signedIn,
+	type TestPerson
+} from '../helpers/factories.ts';
+import { storedRun, type StoredRun } from '../helpers/storedRun.ts';
+import { operationsOf, ROUTES, testRequest, type RequestOptions } from '../helpers/testRequest.ts';
+
+/**
+ * Every route × everybody × whose data. The routes come from the folders, so a route or an action without an entry fails; what
+ * each person may do is said once, by kind of access.
+ */
+
+/** Who asks; `all` of Mira's laps were shared with some of them. */
+const ACTORS = [
+	'nobody',
+	'owner',
+	'guardian',
+	'coach with all',
+	'coach with the run',
+	'coach with the circuit',
+	'coach with the event',
+	'coach with another run',
+	'coach with another circuit',
+	'coach whose grant was revoked',
+	'coach whose grant begins tomorrow',
+	'manager of the team',
+	'coach of the team',
+	'admin of the team',
+	'driver of the team',
+	'manager of another team',
+	'manager who left the team',
+	'other driver',
+	'site operator',
+	"owner's token to read",
+	"owner's token to upload",
+	"owner's token to edit",
+	"owner's expired token"
+] as const;
+type Actor = (typeof ACTORS)[number];
+
+const READERS: readonly Actor[] = [
+	'owner',
+	'guardian',
+	'coach with all',
+	'coach with the run',
+	'coach with the circuit',
+	'coach with the event',
+	'manager of the team',
+	'coach of the team'
+];
+const KEEPERS: readonly Actor[] = ['owner', 'guardian'];
+
+/** Who is let in; everybody else reads that nothing is there. */
+type Access = 'everybody' | 'signed in' | 'reads the run' | 'keeps the run';
+type Scope = 'laps:read' | 'uploads:write' | 'runs:write';
+
+interface Entry {
+	access: Access;
+	/** of the API: what a token must have been made for; pages open to no token */
+	scope?: Scope;
+	path: (own: StoredRun) => string;
+	request?: (own: StoredRun) => RequestOptions;
+	/** status for whom it lets in */
+	ok: number;
+}
+
+const form = (fields: Record<string, string>): RequestOptions => ({
+	method: 'POST',
+	body: new URLSearchParams(fields).toString(),
+	headers: { 'content-type': 'application/x-www-form-urlencoded' }
+});
+const json = (method: string, body: unknown): RequestOptions => ({
+	method,
+	body: JSON.stringify(body),
+	headers: { 'content-type': 'application/json' }
+});
+const pair = ({ lapPublicIds: [reference, driver] }: StoredRun) => `${driver}/${reference}`;
+const RUN = ({ runPublicId }: StoredRun) => `/runs/${runPublicId}`;
+
+const ENTRIES: Record<string, Record<string, Entry>> = {
+	'/': { GET: { access: 'everybody', path: () => '/', ok: 200 } },
+	'/method': { GET: { access: 'everybody', path: () => '/method', ok: 200 } },
+	'/health/live': { GET: { access: 'everybody', path: () => '/health/live', ok: 200 } },
+	'/health/ready': { GET: { access: 'everybody', path: () => '/health/ready', ok: 200 } },
+	'/(dev)/gallery': { GET: { access: 'everybody', path: () => '/gallery', ok: 200 } },
+	'/(dev)/pages-gallery': { GET: { access: 'everybody', path: () => '/pages-gallery', ok: 200 } },
+	'/sign-in': {
+		GET: { access: 'everybody', path: () => '/sign-in', ok: 200 },
+		POST: {
+			access: 'everybody',
+			path: () => '/sign-in',
+			request: () => form({ email: `${randomUUID()}@example.org`, password: 'x', providerId: 'credentials' }),
+			ok: 401
+		}
+	},
+	'/sign-out': {
+		GET: { access: 'everybody', path: () => '/sign-out', ok: 200 },
+		POST: { access: 'everybody', path: () => '/sign-out', request: () => form({ redirectTo: '/' }), ok: 302 }
+	},
+	'/(app)/notebook': { GET: { access: 'signed in', path: () => '/notebook', ok: 200 } },
+	'/(app)/runs': { GET: { access: 'signed in', path: () => '/runs', ok: 200 } },
+	'/(app)/runs/[run]': {
+		GET: { access: 'reads the run', path: RUN, ok: 200 },
+		'POST ?/compare': {
+			access: 'signed in',
+			path: (own) => `${RUN(own)}?/compare`,
+			request: ({ lapPublicIds: [reference, lap] }) => form({ lap, reference }),
+			ok: 303
+		},
+		'POST ?/describe': {
+			access: 'keeps the run',
+			path: (own) => `${RUN(own)}?/describe`,
+			request: () => form({ place: 'real', conditions: 'dry', intent: 'pace', car: '', tyreSet: '', fuelKg: '' }),
+			ok: 200
+		},
+		'POST ?/names': {
+			access: 'keeps the run',
+			path: (own) => `${RUN(own)}?/names`,
+			request: () => form({ circuitName: 'Vallmere Park', layoutName: 'grand prix' }),
+			ok: 200
+		},
+		'POST ?/delete': { access: 'keeps the run', path: (own) => `${RUN(own)}?/delete`, request: () => form({}), ok: 303 }
+	},
+	'/(app)/compare/[lap]/[reference]': {
+		GET: { access: 'reads the run', path: (own) => `/compare/${pair(own)}`, ok: 200 }
+	},
+	'/(app)/compare/[lap]/[reference]/[corner]': {
+		GET: { access: 'reads the run', path: (own) => `/compare/${pair(own)}/1`, ok: 200 }
+	},
+	'/(app)/upload': {
+		GET: { access: 'signed in', path: () => '/upload', ok: 200 },
+		POST: { access: 'signed in', path: () => '/upload', request: () => form({}), ok: 400 }
+	},
+	'/(app)/upload/[upload]': {
+		GET: { access: 'keeps the run', path: ({ uploadPublicId }) => `/upload/${uploadPublicId}`, ok: 200 },
+		'POST ?/columns': {
+			access: 'keeps the run',
+			path: ({ uploadPublicId }) => `/upload/${uploadPublicId}?/columns`,
+			request: () => form({}),
+			ok: 400
+		}
+	},
+	'/(app)/settings': {
+		GET: { access: 'signed in', path: () => '/settings', ok: 200 },
+		'POST ?/profile': {
+			access: 'signed in',
+			path: () => '/settings?/profile',
+			request: () => form({ name: '', theme: 'dark', speedUnit: 'kmh' }),
+			ok: 400
+		},
+		'POST ?/makeToken': {
+			access: 'signed in',
+			path: () => '/settings?/makeToken',
+			request: () => form({ name: 'a script', scopes: 'laps:read', days: '30' }),
+			ok: 200
+		},
+		// A sign-in or token that is not one's own reads like one that never was.
+		'POST ?/endSignIn': {
+			access: 'signed in',
+			path: () => '/settings?/endSignIn',
+			request: ({ runPublicId: id }) => form({ id }),
+			ok: 404
+		},
+		'POST ?/revokeToken': {
+			access: 'signed in',
+			path: () => '/settings?/revokeToken',
+			request: ({ runPublicId: id }) => form({ id }),
+			ok: 404
+		},
+		'POST ?/endOthers': { access: 'signed in', path: () => '/settings?/endOthers', request: () => form({}), ok: 303 }
+	},
+	'/api/v1/openapi.json': { GET: { access: 'everybody', path: () => '/api/v1/openapi.json', ok: 200 } },
+	'/api/v1/uploads': {
+		GET: { access: 'signed in', scope: 'laps:read', path: () => '/api/v1/uploads', ok: 200 },
+		PUT: {
+			access: 'signed in',
+			scope: 'uploads:write',
+			path: () => '/api/v1/uploads?name=a.csv',
+			request: () => ({ method: 'PUT', body: new Uint8Array([1]) }),
+			ok: 202
+		}
+	},
+	'/api/v1/uploads/[upload]': {
+		GET: {
+			access: 'keeps the run',
+			scope: 'laps:read',
+			path: ({ uploadPublicId }) => `/api/v1/uploads/${uploadPublicId}`,
+			ok: 200
+		}
+	},
+	'/api/v1/uploads/[upload]/file': {
+		GET: {
+			access: 'keeps the run',
+			scope: 'laps:read',
+			path: ({ uploadPublicId }) => `/api/v1/uploads/${uploadPublicId}/file`,
+			ok: 200
+		}
+	},
+	'/api/v1/uploads/[upload]/mapping': {
+		PUT: {
+			access: 'keeps the run',
+			scope: 'uploads:write',
+			path: ({ uploadPublicId }) => `/api/v1/uploads/${uploadPublicId}/mapping`,
+			request: () => json('PUT', { mapping: null }),
+			ok: 202
+		}
+	},
+	'/api/v1/runs': { GET: { access: 'signed in', scope: 'laps:read', path: () => '/api/v1/runs', ok: 200 } },
+	'/api/v1/runs/[run]': {
+		GET: { access: 'reads the run', scope: 'laps:read', path: (own) => `/api/v1${RUN(own)}`, ok: 200 },
+		PATCH: {
+			access: 'keeps the run',
+			scope: 'runs:write',
+			path: (own) => `/api/v1${RUN(own)}`,
+			request: () => json('PATCH', { conditions: 'wet' }),
+			ok: 200
+		},
+		DELETE: {
+			access: 'keeps the run',
+			scope: 'runs:write',
+			path: (own) => `/api/v1${RUN(own)}`,
+			request: () => ({ method: 'DELETE' }),
+			ok: 204
+		}
+	},
+	'/api/v1/laps/[lap]/trace': {
+		GET: {
+			access: 'reads the run',
+			scope: 'laps:read',
+			path: ({ lapPublicIds }) => `/api/v1/laps/${lapPublicIds[0]}/trace?channels=speedKmh`,
+			ok: 200
+		}
+	},
+	'/api/v1/compare/[lap]/[reference]': {
+		GET: { access: 'reads the run', scope: 'laps:read', path: (own) => `/api/v1/compare/${pair(own)}`, ok: 200 }
+	},
+	'/api/v1/layouts/[layout]/names': {
+		PATCH: {
+			access: 'keeps the run',
+			scope: 'runs:write',
+			path: ({ layoutPublicId }) => `/api/v1/layouts/${layoutPublicId}/names`,
+			request: ({ cornerPublicId }) =>
+				json('PATCH', { circuitName: 'Vallmere Park', corners: { [cornerPublicId]: 'Fernside' } }),
+			ok: 204
+		}
+	}
+};
+
+/** Words of an owner that may stand in no answer to whom they did not admit. */
+const SECRETS = { mira: 'Mira Tansley', foreign: 'Tomas Ruud' };
+
+let mira: TestPerson;
+let tomas: TestPerson;
+let own: StoredRun;
+let foreign: StoredRun;
+const sends = new Map<Actor, () => Promise<RequestOptions>>();
+
+beforeAll(async () => {
+	const db = database();
+	mira = await makePerson(SECRETS.mira, { isMinor: true });
+	tomas = await makePerson(SECRETS.foreign);
+	own = await storedRun(mira);
+	foreign = await storedRun(tomas);
+	const other = await storedRun(mira, own);
+	const otherCircuit = await storedRun(mira);
+	const [team, otherTeam] = [await makeOrganisation(), await makeOrganisation('Another team')];
+	const [eventId]: number[] = await db('events').insert({
+		public_id: newPublicId(),
+		organisation_id: otherTeam,
+		name: 'a weekend'
+	});
+	await db('runs').where({ id: own.runId }).update({ event_id: eventId });
+	const tomorrow = new Date(Date.now() + 86_400_000);
+	const person = async (actor: Actor, prepare: (who: TestPerson) => Promise<unknown> = async () => {}) => {
+		const who = await makePerson(actor);
+		await prepare(who);
+		sends.set(actor, async () => ({ jar: await signedIn(who) }));
+	};
+	sends.set('nobody', async () => ({ jar: new CookieJar() }));
+	sends.set('owner', async () => ({ jar: await signedIn(mira) }));
+	const token = async (actor: Actor, scopes: Scope[], expiresAt: Date | null = null) => {
+		const headers = await bearer(mira, scopes, expiresAt);
+		sends.set(actor, async () => ({ headers, origin: null }));
+	};
+	await token("owner's token to read", ['laps:read']);
+	await token("owner's token to upload", ['uploads:write']);
+	await token("owner's token to edit", ['runs:write', 'laps:read']);
+	await token("owner's expired token", ['laps:read'], new Date(Date.now() - 1000));
+	await person('guardian', (who) => addGuardian(who, mira));
+	await person('coach with all', (to) => makeGrant(mira, { to }));
+	await person('coach with the run', (to) => makeGrant(mira, { to, scope: 'run', runId: own.runId }));
+	await person('coach with the circuit', (to) => makeGrant(mira, { to, scope: 'circuit', circuitId: own.circuitId }));
+	await person('coach with the event', (to) => makeGrant(mira, { to, scope: 'event', eventId }));
+	await person('coach with another run', (to) => makeGrant(mira, { to, scope: 'run', runId: other.runId }));
+	await person('coach with another circuit', (to) =>
+		makeGrant(mira, { to, scope: 'circuit', circuitId: otherCircuit.circuitId })
+	);
+	await person('coach whose grant was revoked', (to) => makeGrant(mira, { to, revokedAt: new Date() }));
+	await person('coach whose grant begins tomorrow', (to) => makeGrant(mira, { to, fromAt: tomorrow }));
+	await person('manager of the team', (who) => addMember(team, who, 'manager'));
+	await person('coach of the team', (who) => addMember(team, who, 'coach'));
+	await person('admin of the team', (who) => addMember(team, who, 'admin'));
+	await person('driver of the team', (who) => addMember(team, who, 'driver'));
+	await person('manager of another team', (who) => addMember(otherTeam, who, 'manager'));
+	await person('manager who left the team', async (who) => {
+		await addMember(team, who, 'manager');
+		await db('memberships').where({ person_id: who.id }).update({ ended_at: new Date() });
+	});
+	await person('other driver');
+	await person('site operator', async (who) => db('site_operators').insert({ person_id: who.id }));
+	await makeGrant(mira, { to: team });
+}, 120_000);
+
+afterAll(async () => {
+	await closeDatabase();
+	await rm(environment().KERBNOTE_STORAGE, { recursive: true, force: true });
+});
+
+const isToken = (actor: Actor) => actor.includes('token');
+const isIn = (actor: Actor) => actor !== 'nobody' && actor !== "owner's expired token";
+
+/** The status that an actor must see at Mira's data. */
+function expected(actor: Actor, routeId: string, operation: string, entry: Entry): number {
+	const isApi = routeId.startsWith('/api/');
+	if (entry.access === 'everybody')
+		return isIn(actor) && !isToken(actor) && routeId === '/sign-in' && operation === 'GET' ? 303 : entry.ok;
+	if (!isIn(actor)) return isApi ? 401 : 303;
+	if (isToken(actor)) {
+		if (!isApi) return 303;
+		const scopes = { "owner's token to read": ['laps:read'], "owner's token to upload": ['uploads:write'] }[
+			actor as string
+		] ?? ['runs:write', 'laps:read'];
+		return scopes.includes(entry.scope ?? '') ? entry.ok : 403;
+	}
+	if (entry.access === 'signed in') return entry.ok;
+	return (entry.access === 'reads the run' ? READERS : KEEPERS).includes(actor) ? entry.ok : 404;
+}
+
+async function send(actor: Actor, entry: Entry, at: StoredRun): Promise<Response> {
+	const who = await sends.get(actor)?.();
+	const request = entry.request?.(at) ?? {};
+	return await testRequest(entry.path(at), { ...request, ...who, headers: { ...request.headers, ...who?.headers } });
+}
+
+/** What is taken away by a test comes back for the next. */
+async function restore(): Promise<void> {
+	await database()('runs').whereIn('id', [own.runId, foreign.runId]).update({ deleted_at: null });
+}
+
+describe('the matrix', () => {
+	it('has an entry for every route and action there is, and none for what is gone', async () => {
+		const there = Object.fromEntries(
+			await Promise.all(ROUTES.map(async (route) => [route.id, (await operationsOf(route)).sort()]))
+		);
+		const entered = Object.fromEntries(
+			Object.entries(ENTRIES).map(([id, entries]) => [id, Object.keys(entries).sort()])
+		);
+		expect(entered).toEqual(there);
+	});
+
+	it('knows every operation of the API that its document describes, and the other way round', () => {
+		const described = Object.entries(OPERATIONS).flatMap(([path, methods]) =>
+			Object.entries(methods).map(([method, { scope }]) => `${method.toUpperCase()} ${path} ${scope}`)
+		);
+		const entered = Object.entries(ENTRIES)
+			.filter(([id]) => id.startsWith('/api/') && id !== '/api/v1/openapi.json')
+			.flatMap(([id, entries]) =>
+				Object.entries(entries).map(
+					([method, { scope }]) => `${method} ${id.replaceAll('[', '{').replaceAll(']', '}')} ${scope}`
+				)
+			);
+		expect(entered.sort()).toEqual(described.sort());
+	});
+});
+
+describe.each(
+	Object.entries(ENTRIES).flatMap(([id, entries]) =>
+		Object.entries(entries).map(([operation, entry]) => ({ id, operation, entry }))
+	)
+)('$operation $id', ({ id, operation, entry }) => {
+	it.each(ACTORS)("answers %s about Mira's data as it should, and about Tomas's never", async (actor) => {
+		try {
+			const response = await send(actor, entry, own);
+			const text = await response.text();
+			expect(response.status, text.slice(0, 300)).toBe(expected(actor, id, operation, entry));
+			if (id.startsWith('/api/') && response.status >= 400) {
+				expect(response.headers.get('content-type')).toBe('application/problem+json');
+			}
+			if (response.status === 404) expect(text).not.toContain(SECRETS.mira);
+			expect(text).not.toContain(SECRETS.foreign);
+			if (entry.access === 'reads the run' || entry.access === 'keeps the run') {
+				const other = await send(actor, entry, foreign);
+				expect([303, 401, 403, 404]).toContain(other.status);
+				if (isIn(actor) && !isToken(actor)) expect(other.status).toBe(404);
+				expect(await other.text()).not.toContain(SECRETS.foreign);
+			}
+		} finally {
+			await restore();
+		}
+	});
+});
+
+describe('lists', () => {
+	it.each(ACTORS.filter((actor) => isIn(actor) && !isToken(actor)))(
+		'show %s exactly the runs that one by one open to them',
+		async (actor) => {
+			const runs = await (await send(actor, ENTRIES['/api/v1/runs'].GET, own)).text();
+			expect(runs.includes(own.runPublicId)).toBe(READERS.includes(actor));
+			expect(runs).not.toContain(foreign.runPublicId);
+			const notebook = await testRequest(`/notebook?of=${mira.publicId}`, await sends.get(actor)?.());
+			const mayKnow = [...READERS, 'coach with another run', 'coach with another circuit'].includes(actor);
+			expect(notebook.status).toBe(mayKnow ? 200 : 404);
+			if (!READERS.includes(actor)) expect(await notebook.text()).not.toContain(own.runPublicId);
+		}
+	);
+
+	it('lay no lap of a stranger beside one’s own as a reference', async () => {
+		const page = await (await send('owner', ENTRIES['/api/v1/runs/[run]'].GET, own)).text();
+		expect(page).not.toContain(foreign.lapPublicIds[0]);
+	});
+});
+
+describe('a grant that is taken back', () => {
+	it('closes at once what it had opened, also for who holds the page open', async () => {
+		const coach = await makePerson('Rhea Calloway');
+		const grantId = await makeGrant(mira, { to: coach });
+		const jar = await signedIn(coach);
+		const path = ENTRIES['/api/v1/laps/[lap]/trace'].GET.path(own);
+		const first = await testRequest(path, { jar });
+		expect(first.status).toBe(200);
+		await database()('grants').where({ id: grantId }).update({ revoked_at: new Date() });
+		const etag = first.headers.get('etag') ?? '';
+		expect((await testRequest(path, { jar, headers: { 'if-none-match': etag } })).status).toBe(404);
+	});
+});
+
+describe('an id that nobody has', () => {
+	it.each(['0'.repeat(26), 'zzzz', '../../etc/passwd', '%00', "' OR 1=1 --"])(
+		'reads like one that is refused: %s',
+		async (id) => {
+			const jar = await signedIn(mira);
+			const refused = await testRequest(`/api/v1/runs/${foreign.runPublicId}`, { jar });
+			const absent = await testRequest(`/api/v1/runs/${encodeURIComponent(id)}`, { jar });
+			expect(absent.status).toBe(404);
+			expect(await absent.json()).toEqual(await refused.json());
+		}
+	);
+});
