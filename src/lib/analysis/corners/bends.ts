@@ -14,15 +14,18 @@ export interface Bend {
 	angleRad: number;
 }
 
+/** Tighter than this is a corner whatever the car does. */
+const TIGHT_RADIUS_M = 300;
+/** So is what uses this share of the car's lateral envelope. */
+const ENVELOPE_SHARE = 0.4;
 /** Shares of the peak between which the flank is drawn on as a straight line. */
 const LOW_SHARE = 0.3;
 const HIGH_SHARE = 0.7;
 /** Same-hand neighbours with a smaller gap are one corner. */
 const JOIN_GAP_M = 6;
 const JOIN_GAP_S = 0.5;
-/** A lobe that turns less, or is this much gentler than its neighbour, is no neighbour to be joined: a wobble, a fading end. */
+/** A lobe that turns less is no neighbour to be joined: a wobble, a fading end. */
 const LEAST_JOINED_RAD = (4 * Math.PI) / 180;
-const LEAST_JOINED_SHARE = 0.15;
 /** A second peak is a second apex when its own part turns this much. */
 const LEAST_APEX_RAD = (8 * Math.PI) / 180;
 const LEAST_APEX_SHARE = 0.4;
@@ -83,17 +86,16 @@ function flankCrossing(
 	border: number
 ): number | null {
 	const level = share * peak.height;
-	for (let i = peak.at; i !== border; i += direction) {
+	const outside = (i: number) => i < 0 || i >= curvature.length;
+	// from outside inwards: a wobble on the flank does not end the corner
+	for (let i = border; ; i -= direction) {
 		const here = hand * curvature[i];
-		const next = hand * curvature[i + direction];
-		if (here >= level && next < level) return i + (direction * (here - level)) / (here - next);
+		if (here >= level) {
+			const next = outside(i + direction) ? NaN : hand * curvature[i + direction];
+			return next < level ? i + (direction * (here - level)) / (here - next) : null;
+		}
+		if (i === peak.at) return null;
 	}
-	// the neighbour of the other hand begins within this metre
-	const beyond = border + direction;
-	if (beyond < 0 || beyond >= curvature.length) return null;
-	const here = hand * curvature[border];
-	const next = hand * curvature[beyond];
-	return here >= level && next < level ? border + (direction * (here - level)) / (here - next) : null;
 }
 
 /** Angle turned to one hand between two places, rad. */
@@ -116,6 +118,7 @@ function separate(bends: Bend[]): void {
 	}
 }
 
+/** Joins same-hand corners with nearly nothing between them; a kink beside a corner stays a kink. */
 function joinNeighbours(bends: Bend[], trace: ReferenceTrace): Bend[] {
 	const joined: Bend[] = [];
 	for (const bend of bends) {
@@ -131,14 +134,22 @@ function joinNeighbours(bends: Bend[], trace: ReferenceTrace): Bend[] {
 
 function belongTogether(a: Bend, b: Bend, trace: ReferenceTrace): boolean {
 	if (a.hand !== b.hand) return false;
-	const [first, second] = [highest(a.peaks), highest(b.peaks)];
-	const gentler = Math.min(first.height, second.height);
 	if (Math.min(a.angleRad, b.angleRad) < LEAST_JOINED_RAD) return false;
-	if (gentler < LEAST_JOINED_SHARE * Math.max(first.height, second.height)) return false;
+	if (!isCornering(a, trace) || !isCornering(b, trace)) return false;
 	const middle = Math.min(Math.max(Math.round((a.endM + b.startM) / 2), 0), trace.size - 1);
 	const gap = Math.max(JOIN_GAP_M, JOIN_GAP_S * trace.speedMps[middle]);
 	if (b.startM - a.endM >= gap) return false;
 	return !secondBraking(trace, a.peaks[a.peaks.length - 1].at, b.peaks[0].at);
+}
+
+/** Is a bend tight, or does it use a good part of the car's lateral envelope? */
+export function isCornering({ peaks, startM, endM }: Bend, trace: ReferenceTrace): boolean {
+	if (peaks.some((peak) => 1 / peak.height < TIGHT_RADIUS_M)) return true;
+	const { curvaturePerM, speedMps, size, envelopeMps2 } = trace;
+	for (let i = Math.max(Math.ceil(startM), 0); i <= Math.min(endM, size - 1); i++) {
+		if (Math.abs(curvaturePerM[i]) * speedMps[i] ** 2 > ENVELOPE_SHARE * envelopeMps2) return true;
+	}
+	return false;
 }
 
 function highest(peaks: Peak[]): Peak {

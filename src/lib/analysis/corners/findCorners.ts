@@ -1,18 +1,14 @@
 import type { Corner } from '../../schemas/analysisDocument.ts';
 import type { PlacedRun } from '../model.ts';
-import { findBends } from './bends.ts';
+import { findBends, isCornering } from './bends.ts';
 import type { Bend } from './bends.ts';
-import { longestFullThrottle, pedalUse } from './pedalUse.ts';
+import { longestFullThrottle, pedalUse, slowingAt } from './pedalUse.ts';
 import { referenceTrace } from './referenceTrace.ts';
 import type { ReferenceTrace } from './referenceTrace.ts';
 import { speedCorners } from './speedCorners.ts';
 
 /** A corner turns at least this much; what turns less is a straight with a wobble. */
 const LEAST_ANGLE_RAD = (15 * Math.PI) / 180;
-/** Tighter than this is a corner whatever the car does. */
-const TIGHT_RADIUS_M = 300;
-/** So is what uses this share of the car's lateral envelope. */
-const ENVELOPE_SHARE = 0.4;
 /** Brake and lift for a corner are looked for this far before it, but not before the last one's apex. */
 const APPROACH_M = 250;
 /** Linked: less time than this from end to start, and no longer at full throttle between than this. */
@@ -50,42 +46,34 @@ export interface FoundCorner {
 }
 
 function curvedCorners(trace: ReferenceTrace): FoundCorner[] {
-	const bends = findBends(trace).filter((bend) => bend.angleRad >= LEAST_ANGLE_RAD);
-	return bends.map((bend, k) => judged(bend, bends[k - 1], trace));
+	const found: FoundCorner[] = [];
+	let lastApexM = -Infinity;
+	for (const bend of findBends(trace)) {
+		if (bend.angleRad < LEAST_ANGLE_RAD) continue;
+		const corner = judged(bend, lastApexM, trace);
+		if (corner.isCorner) lastApexM = corner.apex2M ?? corner.apexM;
+		found.push(corner);
+	}
+	return found;
 }
 
-function judged(bend: Bend, before: Bend | undefined, trace: ReferenceTrace): FoundCorner {
-	const tightest = Math.max(...bend.peaks.map((peak) => peak.height));
-	const lastApex = bend.peaks[bend.peaks.length - 1].centre;
-	const approachM = Math.max(
-		bend.startM - APPROACH_M,
-		before ? before.peaks[before.peaks.length - 1].centre : -Infinity
-	);
-	const use = pedalUse(trace, approachM, lastApex);
-	const isCorner =
-		1 / tightest < TIGHT_RADIUS_M ||
-		mostSideways(trace, bend) > ENVELOPE_SHARE * trace.envelopeMps2 ||
-		use.braked ||
-		use.lifted;
+/** @param lastApexM apex of the corner before, behind which brake and lift may be for this bend */
+function judged(bend: Bend, lastApexM: number, trace: ReferenceTrace): FoundCorner {
+	const tightest = Math.max(...bend.peaks.map((peak) => peak.topMean));
+	const apexM = bend.peaks[bend.peaks.length - 1].centre;
+	const use = pedalUse(trace, Math.max(bend.startM - APPROACH_M, lastApexM), apexM);
+	const slowedFor = (use.braked || use.lifted) && !slowingAt(trace, bend.endM);
 	return {
 		startM: bend.startM,
 		apexM: bend.peaks[0].centre,
-		apex2M: bend.peaks.length > 1 ? lastApex : null,
+		apex2M: bend.peaks.length > 1 ? apexM : null,
 		endM: bend.endM,
 		direction: bend.hand > 0 ? 'left' : 'right',
 		minRadiusM: 1 / tightest,
 		angleDeg: (bend.angleRad * 180) / Math.PI,
 		kind: use.braked ? 'braked' : use.lifted ? 'lifted' : use.known ? 'flat' : null,
-		isCorner
+		isCorner: isCornering(bend, trace) || slowedFor
 	};
-}
-
-function mostSideways({ curvaturePerM, speedMps, size }: ReferenceTrace, { startM, endM }: Bend): number {
-	let most = 0;
-	for (let i = Math.max(Math.ceil(startM), 0); i <= Math.min(endM, size - 1); i++) {
-		most = Math.max(most, Math.abs(curvaturePerM[i]) * speedMps[i] ** 2);
-	}
-	return most;
 }
 
 /** Takes the corners with an apex on the middle turn of the unrolled trace, numbers and links them. */

@@ -81,6 +81,14 @@ export function pedalUse(trace: ReferenceTrace, from: number, to: number): Pedal
 	return { braked, lifted, known: brakePct !== null || throttlePct !== null };
 }
 
+/** Is the car still slowing down at a place, on the brake or off the throttle? Then it slows for what comes next. */
+export function slowingAt(trace: ReferenceTrace, at: number): boolean {
+	const { throttlePct, speedMps, size } = trace;
+	const i = Math.min(Math.max(Math.round(at), 1), size - 2);
+	if (brakedAt(trace, i)) return true;
+	return throttlePct !== null && throttlePct[i] < LIFTED_PCT && speedMps[i + 1] < speedMps[i - 1];
+}
+
 /** Longest time at full throttle within a stretch, s; 0 without a throttle channel. */
 export function longestFullThrottle({ throttlePct, timeS, size }: ReferenceTrace, from: number, to: number): number {
 	if (!throttlePct) return 0;

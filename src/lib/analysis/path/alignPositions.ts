@@ -4,6 +4,8 @@ import type { Tracked } from './trackOnPath.ts';
 /** A shift below this is not told from a line. */
 const LEAST_SHIFT_M = 1;
 const LARGEST_SHIFT_M = 15;
+/** So many positions, spread over the run, say as much as all of them. */
+const ENOUGH_POSITIONS = 20000;
 /** Share of the offsets' variance that one shift of the whole run must explain: two lines differ corner by corner, a shift everywhere. */
 const LEAST_EXPLAINED = 0.8;
 
@@ -23,7 +25,8 @@ export function alignPositions({ placeM, offsetM }: Tracked, path: PathGeometry)
 	let xn = 0;
 	let yn = 0;
 	let nn = 0;
-	for (let j = 0; j < placeM.length; j++) {
+	const stride = Math.max(1, Math.floor(placeM.length / ENOUGH_POSITIONS));
+	for (let j = 0; j < placeM.length; j += stride) {
 		const offset = offsetM[j];
 		if (!(Math.abs(offset) < LARGEST_SHIFT_M)) continue;
 		const place = closed ? placeM[j] - Math.floor(placeM[j] / lengthM) * lengthM : placeM[j];

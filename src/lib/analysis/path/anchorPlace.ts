@@ -15,12 +15,11 @@ const FADE_M = 80;
  * crossing is put at exactly a whole turn. What that moves is due to the line's own direction, which need not be square to the path,
  * and to the receiver; both belong to the place where the line is, so the move fades away from it.
  *
- * @param placeM unwrapped places by sample
- * @returns new places; the input itself where the marks are coarse or belong to another line
+ * @param placeM unwrapped places by sample; changed in place, unless the marks are coarse or belong to another line
  */
-export function anchorPlace(placeM: Float64Array, channels: Channels, lengthM: number, marks: LapMarks): Float64Array {
+export function anchorPlace(placeM: Float64Array, channels: Channels, lengthM: number, marks: LapMarks): void {
 	const own = marks.source !== 'chosenLine' && marks.source !== 'lapLength' && marks.source !== 'none';
-	if (!own || !(marks.plusMinusS <= FINE_S)) return placeM;
+	if (!own || !(marks.plusMinusS <= FINE_S)) return;
 	const { timeS, speedKmh } = channels;
 	const at: number[] = [];
 	const off: number[] = [];
@@ -33,9 +32,8 @@ export function anchorPlace(placeM: Float64Array, channels: Channels, lengthM: n
 		at.push(place);
 		off.push(place - Math.round(place / lengthM) * lengthM);
 	}
-	if (at.length === 0 || Math.abs(median(off)) > LARGEST_SHIFT_M) return placeM;
+	if (at.length === 0 || Math.abs(median(off)) > LARGEST_SHIFT_M) return;
 	const fade = Math.min(FADE_M, lengthM / 4);
-	const anchored = placeM.slice();
 	let k = 0;
 	for (let i = 0; i < placeM.length; i++) {
 		const place = placeM[i];
@@ -44,7 +42,6 @@ export function anchorPlace(placeM: Float64Array, channels: Channels, lengthM: n
 		// one wild mark is left to the projection
 		if (!(away < fade) || Math.abs(off[k]) > LARGEST_SHIFT_M) continue;
 		const share = away / fade;
-		anchored[i] = place - off[k] * (1 - share * share * (3 - 2 * share));
+		placeM[i] = place - off[k] * (1 - share * share * (3 - 2 * share));
 	}
-	return anchored;
 }

@@ -5,7 +5,7 @@ import type { LapMarks, StartLine } from '../laps/lapMarks.ts';
 import type { Channels, Lap, PlacedRun, ReferencePath } from '../model.ts';
 import { median, quantile } from '../stats/quantile.ts';
 import { sampleBefore } from '../trace/placeTime.ts';
-import { closedLine, smoothingFor } from './closedLine.ts';
+import { closedLine, smoothingFor, within } from './closedLine.ts';
 import type { Stretch } from './closedLine.ts';
 import { cubicBetween, curvatureOf, fitEvenLine } from './evenLine.ts';
 import type { EvenLine } from './evenLine.ts';
@@ -91,7 +91,7 @@ function fromPositions(channels: Channels, positions: Positions, marks: LapMarks
 	const chosen = laps.slice(0, positions.noiseM > SHARP_NOISE_M ? MOST_LAPS : 1);
 	const line = chosen.length > 0 ? closedLine(positions, channels, chosen) : openLine(positions, channels);
 	const curvature = curvatureOf(line);
-	const own = onlyLap(positions, channels, chosen[0]);
+	const own = chosen.length > 0 ? within(positions, channels, chosen[0], 0) : positions;
 	const tracked = trackOnPath(own, channels, geometryOfLine(line, curvature));
 	const trackM = chosen.length > 0 && positions.noiseM <= SHARP_NOISE_M ? trackLength(channels, marks) : null;
 	return {
@@ -102,22 +102,6 @@ function fromPositions(channels: Channels, positions: Positions, marks: LapMarks
 		line: lineKind(marks),
 		speedKmh: speedByPlace(channels, own.sample, tracked.placeM, line.lengthM, line.closed),
 		frame: channels.origin
-	};
-}
-
-/** The positions of one lap; all of them where there is none. */
-function onlyLap(positions: Positions, { timeS }: Channels, lap: Stretch | undefined): Positions {
-	if (!lap) return positions;
-	const { sample } = positions;
-	let from = 0;
-	while (from < sample.length - 2 && timeS[sample[from]] < lap.startS) from++;
-	let to = from + 1;
-	while (to < sample.length && timeS[sample[to]] <= lap.endS) to++;
-	return {
-		...positions,
-		sample: sample.subarray(from, to),
-		xM: positions.xM.subarray(from, to),
-		yM: positions.yM.subarray(from, to)
 	};
 }
 

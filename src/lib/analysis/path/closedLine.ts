@@ -25,6 +25,8 @@ const SHARPNESS_VARIANCE = 4e-6;
 export const LEAST_SMOOTHING = 50;
 /** Lap ends are blended over this way before and behind the line, because the line is not crossed at the same place across. */
 const BLEND_M = 60;
+/** Time before and behind a lap in which that way is looked for. */
+const MARGIN_S = 15;
 /** With less way than this beyond the lap's ends the gap is closed by a slow drift over the whole lap. */
 const LEAST_BLEND_M = 5;
 
@@ -41,40 +43,34 @@ export function smoothingFor(noiseM: number): number {
  */
 export function closedLine(positions: Positions, channels: Channels, laps: Stretch[]): EvenLine {
 	const lambda = smoothingFor(positions.noiseM);
-	const way = wayAlong(positions, channels);
-	const first = lapPoints(positions, channels, way, laps[0]);
-	let line = fitEvenLine({ ...first, closed: true }, lambda);
+	const points = laps.map((lap) => lapPoints(positions, channels, lap));
+	let line = fitEvenLine({ ...points[0], closed: true }, lambda);
 	// twice: places along the first fit are as good as the way driven, along the second as good as the line
-	for (let pass = 0; pass < 2; pass++) {
-		const points = laps.map((lap, k) => (k === 0 ? first : lapPoints(positions, channels, way, lap)));
-		line = refit(line, points, positions, channels, lambda);
-	}
+	for (let pass = 0; pass < 2; pass++) line = refit(line, points, channels, lambda);
 	return line;
 }
 
-interface LapPoints {
-	/** indices into the positions */
-	from: number;
-	to: number;
+/** A lap's positions with what it drove before and behind it. */
+interface LapPoints extends Positions {
+	/** way from the lap's start, m; negative before it */
 	atM: Float64Array;
-	xM: Float64Array;
-	yM: Float64Array;
 	weights: Float64Array;
 	lengthM: number;
 }
 
 /** Positions of a lap with what it drove before and behind it, by way from its start. */
-function lapPoints(positions: Positions, channels: Channels, way: Float64Array, lap: Stretch): LapPoints {
-	const { sample, xM, yM } = positions;
-	const startM = wayAt(positions, channels, way, lap.startS);
-	const endM = wayAt(positions, channels, way, lap.endS);
+function lapPoints(positions: Positions, channels: Channels, lap: Stretch): LapPoints {
+	const around = within(positions, channels, lap, MARGIN_S);
+	const { sample } = around;
+	const way = wayAlong(around, channels);
+	const startM = wayAt(around, channels, way, lap.startS);
+	const endM = wayAt(around, channels, way, lap.endS);
 	const lengthM = endM - startM;
-	const inside = (j: number, reach: number) => way[j] >= startM - reach && way[j] <= endM + reach;
 	const reach = Math.min(BLEND_M, lengthM / 8);
 	let from = 0;
-	while (from < sample.length && way[from] < startM - reach) from++;
-	let to = from;
-	while (to + 1 < sample.length && inside(to + 1, reach)) to++;
+	while (from < sample.length - 1 && way[from] < startM - reach) from++;
+	let to = sample.length - 1;
+	while (to > from && way[to] > endM + reach) to--;
 	const blend = Math.min(startM - way[from], way[to] - endM, reach);
 	const drift = blend < LEAST_BLEND_M;
 	if (drift) {
@@ -83,28 +79,49 @@ function lapPoints(positions: Positions, channels: Channels, way: Float64Array, 
 	}
 	const count = to - from + 1;
 	const points: LapPoints = {
-		from,
-		to,
+		...positions,
+		sample: sample.subarray(from, to + 1),
+		xM: around.xM.slice(from, to + 1),
+		yM: around.yM.slice(from, to + 1),
 		atM: new Float64Array(count),
-		xM: xM.slice(from, to + 1),
-		yM: yM.slice(from, to + 1),
 		weights: new Float64Array(count).fill(1),
 		lengthM
 	};
-	const gapX = drift ? xM[to] - xM[from] : 0;
-	const gapY = drift ? yM[to] - yM[from] : 0;
 	// of the gap only what lies across counts; along it is the way between the last and the first position
-	const [acrossX, acrossY] = drift ? across(gapX, gapY, xM[from + 1] - xM[from], yM[from + 1] - yM[from]) : [0, 0];
+	const { xM: x, yM: y } = points;
+	const [acrossX, acrossY] = drift
+		? across(x[count - 1] - x[0], y[count - 1] - y[0], x[1] - x[0], y[1] - y[0])
+		: [0, 0];
 	for (let k = 0; k < count; k++) {
 		const at = way[from + k] - startM;
 		points.atM[k] = at;
 		if (drift) {
 			const share = at / lengthM - 0.5;
-			points.xM[k] -= acrossX * share;
-			points.yM[k] -= acrossY * share;
+			x[k] -= acrossX * share;
+			y[k] -= acrossY * share;
 		} else points.weights[k] = fade(at, blend) - fade(at - lengthM, blend);
 	}
 	return points;
+}
+
+/** The positions from some time before a stretch to some time behind it. */
+export function within(
+	positions: Positions,
+	{ timeS }: Channels,
+	{ startS, endS }: Stretch,
+	marginS: number
+): Positions {
+	const { sample } = positions;
+	let from = 0;
+	while (from < sample.length - 2 && timeS[sample[from]] < startS - marginS) from++;
+	let to = sample.length;
+	while (to > from + 2 && timeS[sample[to - 1]] > endS + marginS) to--;
+	return {
+		...positions,
+		sample: sample.subarray(from, to),
+		xM: positions.xM.subarray(from, to),
+		yM: positions.yM.subarray(from, to)
+	};
 }
 
 /** 0 before −blend, 1 behind +blend, smooth between. */
@@ -120,34 +137,30 @@ function across(x: number, y: number, alongX: number, alongY: number): [number, 
 }
 
 /** Lays laps on a line and fits it anew. */
-function refit(line: EvenLine, laps: LapPoints[], positions: Positions, channels: Channels, lambda: number): EvenLine {
+function refit(line: EvenLine, laps: LapPoints[], channels: Channels, lambda: number): EvenLine {
 	const geometry = geometryOfLine(line, curvatureOf(line));
-	const at: number[] = [];
-	const x: number[] = [];
-	const y: number[] = [];
-	const weights: number[] = [];
+	const total = laps.reduce((sum, lap) => sum + lap.sample.length, 0);
+	const atM = new Float64Array(total);
+	const xM = new Float64Array(total);
+	const yM = new Float64Array(total);
+	const weights = new Float64Array(total);
+	let count = 0;
 	for (const lap of laps) {
-		const own: Positions = {
-			...positions,
-			sample: positions.sample.subarray(lap.from, lap.to + 1),
-			xM: lap.xM,
-			yM: lap.yM
-		};
-		const tracked = trackOnPath(own, channels, geometry);
-		for (let k = 0; k < lap.atM.length; k++) {
-			if (Number.isNaN(tracked.placeM[k])) continue;
-			at.push(tracked.placeM[k]);
-			x.push(lap.xM[k]);
-			y.push(lap.yM[k]);
-			weights.push(lap.weights[k]);
+		const { placeM } = trackOnPath(lap, channels, geometry);
+		for (let k = 0; k < placeM.length; k++) {
+			if (Number.isNaN(placeM[k])) continue;
+			atM[count] = placeM[k];
+			xM[count] = lap.xM[k];
+			yM[count] = lap.yM[k];
+			weights[count++] = lap.weights[k];
 		}
 	}
 	return fitEvenLine(
 		{
-			atM: Float64Array.from(at),
-			xM: Float64Array.from(x),
-			yM: Float64Array.from(y),
-			weights: Float64Array.from(weights),
+			atM: atM.subarray(0, count),
+			xM: xM.subarray(0, count),
+			yM: yM.subarray(0, count),
+			weights: weights.subarray(0, count),
 			lengthM: line.lengthM,
 			closed: true
 		},

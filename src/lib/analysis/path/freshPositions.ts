@@ -6,6 +6,7 @@ import { KMH_PER_MPS } from '../../units.ts';
 export interface Positions {
 	/** samples with a position that is known, new and reachable; increasing */
 	sample: Int32Array;
+	/** coordinates of those samples; not to be written into, they may be the run's own columns */
 	xM: Float64Array;
 	yM: Float64Array;
 	/** standard deviation of one coordinate from sample to sample, m */
@@ -25,7 +26,7 @@ const STEP_SLACK_M = 8;
 const BELIEVE_AFTER_S = 2;
 /** The noise is estimated while the car moves: standing receivers filter it away. */
 const NOISE_ABOVE_KMH = 20;
-const NOISE_SAMPLES = 6000;
+const NOISE_SAMPLES = 4000;
 /**
  * A receiver slower than the file, whose positions were joined up, looks noiseless from sample to sample: the noise is also looked
  * for over these spans, and only as many positions are kept as the receiver gave.
@@ -67,7 +68,7 @@ export function freshPositions(channels: Channels): Positions | null {
 		last = i;
 	}
 	if (count < 8) return null;
-	let kept = sample.slice(0, count);
+	let kept = count === sample.length ? sample : sample.slice(0, count);
 	let noiseM = noiseOf(kept, channels, 1);
 	for (const span of SLOW_RECEIVER_S) {
 		const stride = Math.round(span * channels.sampleRateHz);
@@ -78,6 +79,8 @@ export function freshPositions(channels: Channels): Positions | null {
 		noiseM = slower;
 		break;
 	}
+	// a run without stale positions is not copied: it may be an hour long
+	if (kept.length === xM.length) return { sample: kept, xM, yM, noiseM, jumps, firstJump };
 	const x = new Float64Array(kept.length);
 	const y = new Float64Array(kept.length);
 	for (let j = 0; j < kept.length; j++) {
@@ -99,7 +102,11 @@ function noiseOf(sample: Int32Array, { timeS, speedKmh, xM, yM }: Channels, stri
 	const size = new Float64Array(Math.ceil(sample.length / every));
 	let count = 0;
 	for (let j = 2 * stride; j + 2 * stride < sample.length; j += every) {
-		const [a, b, c, d, e] = [-2, -1, 0, 1, 2].map((k) => sample[j + k * stride]);
+		const a = sample[j - 2 * stride];
+		const b = sample[j - stride];
+		const c = sample[j];
+		const d = sample[j + stride];
+		const e = sample[j + 2 * stride];
 		const dt = timeS[c] - timeS[b];
 		if (!(speedKmh[c] > NOISE_ABOVE_KMH)) continue;
 		if (Math.abs(timeS[e] - timeS[a] - 4 * dt) > 0.1 * dt) continue;

@@ -31,6 +31,8 @@ const LARGEST_RATIO = 1.7;
  * The way along the path is the driven way times 1/(1 − κ·n) for a car n metres left of a path of curvature κ. What position and
  * way disagree by changes slowly (scale of the speed, slip), while noise does not: with noisy positions the disagreement is smoothed
  * by as much as its own cross-validation asks for. A spin or a roll back keeps the furthest place.
+ *
+ * @param tracked may be written into and returned: an hour's columns are not copied
  */
 export function fusePlace(
 	positions: Positions,
@@ -54,14 +56,16 @@ export function fusePlace(
 		placeAt = smoothNoisy(sampleTimeS, apart, DRIFT_WAVELENGTHS_S);
 		for (let j = 0; j < sample.length; j++) placeAt[j] += wayM[sample[j]];
 	}
-	const placeM = new Float64Array(n).fill(NaN);
-	const offsetM = new Float64Array(n).fill(NaN);
+	const everySample = sample.length === n;
+	const placeM = everySample ? placeAt : new Float64Array(n).fill(NaN);
+	const offsetM = everySample ? offsets : new Float64Array(n).fill(NaN);
 	let known = 0;
 	for (let j = 0; j < sample.length; j++) {
-		if (Number.isNaN(rawM[j])) continue;
-		known++;
-		placeM[sample[j]] = placeAt[j];
-		offsetM[sample[j]] = offsets[j];
+		if (!Number.isNaN(rawM[j])) {
+			known++;
+			placeM[sample[j]] = placeAt[j];
+			offsetM[sample[j]] = offsets[j];
+		} else if (everySample) placeM[j] = offsetM[j] = NaN;
 	}
 	if (known === 0) return { placeM, offsetM };
 	if (known < n) bridge(placeM, offsetM, wayM ?? wayOnPath(channels, positions, rawM, offsets, path), timeS);

@@ -9,6 +9,9 @@ import { wayAlong } from './wayAlong.ts';
 const LEAST_KMH = 30;
 /** Accelerations and yaw rates are smoothed over this time, s: quicker than a driver turns the wheel. */
 const MOTION_WAVELENGTH_S = 0.4;
+/** Positions up to this noise are thinned to this spacing. */
+const EXACT_NOISE_M = 0.02;
+const LEAST_SPACING_M = 0.45;
 /** Curvature is not read where positions are further apart than this, s. */
 const LONGEST_STEP_S = 2;
 
@@ -19,12 +22,11 @@ const LONGEST_STEP_S = 2;
  * @returns 1/m; NaN where the positions have a gap
  */
 export function curvatureFromPositions(positions: Positions, channels: Channels): Float64Array {
-	const { sample, xM, yM } = positions;
+	const { sample } = positions;
 	const { timeS } = channels;
 	const wayM = wayAlong(positions, channels);
 	const nodes = Math.max(8, Math.ceil(wayM[wayM.length - 1]) + 2);
-	const lambda = smoothingFor(positions.noiseM);
-	const [x, y] = smoothScattered(wayM, [xM, yM], null, { nodes, lambda, closed: false });
+	const [x, y] = smoothLine(positions, wayM, nodes);
 	const curvature = new Float64Array(nodes);
 	for (let i = 1; i + 1 < nodes; i++) {
 		const ax = x[i] - x[i - 1];
@@ -49,6 +51,27 @@ export function curvatureFromPositions(positions: Positions, channels: Channels)
 		}
 	}
 	return out;
+}
+
+/** Coordinates at whole metres of the driven way. */
+function smoothLine({ xM, yM, noiseM }: Positions, wayM: Float64Array, nodes: number): Float64Array[] {
+	const options = { nodes, lambda: smoothingFor(noiseM), closed: false };
+	if (noiseM > EXACT_NOISE_M) return smoothScattered(wayM, [xM, yM], null, options);
+	// exact positions closer together than the detail that is kept say nothing more
+	const n = wayM.length;
+	const at = new Float64Array(n);
+	const x = new Float64Array(n);
+	const y = new Float64Array(n);
+	let count = 0;
+	let next = -Infinity;
+	for (let j = 0; j < n; j++) {
+		if (wayM[j] < next) continue;
+		next = wayM[j] + LEAST_SPACING_M;
+		at[count] = wayM[j];
+		x[count] = xM[j];
+		y[count++] = yM[j];
+	}
+	return smoothScattered(at.subarray(0, count), [x.subarray(0, count), y.subarray(0, count)], null, options);
 }
 
 function between(values: Float64Array, at: number): number {

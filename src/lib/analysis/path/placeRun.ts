@@ -70,9 +70,10 @@ function byPositions(channels: Channels, positions: Positions, path: ReferencePa
 		tracked = trackOnPath(moved, channels, geometry);
 	}
 	const dense = fusePlace(moved, channels, tracked, geometry);
-	const placeM = placeByTrackDistance(dense.placeM, channels, path, marks);
+	placeByTrackDistance(dense.placeM, channels, path, marks);
+	anchorPlace(dense.placeM, channels, path.lengthM, marks);
 	return {
-		placeM: anchorPlace(placeM, channels, path.lengthM, marks),
+		placeM: dense.placeM,
 		offsetM: dense.offsetM,
 		curvaturePerM: curvatureFromPositions(positions, channels)
 	};
@@ -82,7 +83,8 @@ function byDistance(channels: Channels, path: ReferencePath, marks: LapMarks): L
 	const ways = Array.from(marks.crossingS, (t) => distanceAt(channels, t));
 	const usual = median(ways.slice(1).map((way, k) => way - ways[k]));
 	if (Math.abs(usual / path.lengthM - 1) > LARGEST_LENGTH_DIFFERENCE) throw notHere();
-	const placeM = placeByTrackDistance(stretchPlace(channels, marks, path), channels, path, marks);
+	const placeM = stretchPlace(channels, marks, path);
+	placeByTrackDistance(placeM, channels, path, marks);
 	const reader = bendReader(channels, path.origin, steeringScaleFor(channels, placeM, path));
 	return { placeM, offsetM: null, curvaturePerM: reader && curvatureFromMotion(channels, reader) };
 }
@@ -108,6 +110,7 @@ function fromFirstTurn(placeM: Float64Array, { lengthM, closed }: ReferencePath)
 	if (!closed || first > last) return placeM;
 	const step = 1.6 * (placeM[Math.min(first + 1, last)] - placeM[first]);
 	const turn = Math.ceil((placeM[first] - step) / lengthM);
+	// a new column, because the ends of the old one are remembered with it
 	return turn === 0 ? placeM : placeM.map((place) => place - turn * lengthM);
 }
 

@@ -12,6 +12,8 @@ const LARGEST_NOISE_S = 0.0012;
 /** Along the track, distance and projection agree but for lines that run at an angle to each other. */
 const USUAL_DIFFERENCE_M = 0.3;
 const LARGEST_DIFFERENCE_M = 5;
+/** Every how many samples that is checked. */
+const CHECK_STRIDE = 32;
 
 /**
  * Length of the track by the file's own lap distance.
@@ -73,49 +75,59 @@ export function trackDistanceByPlace(
 }
 
 /**
- * Places of a run by its own track distance, where that counts the same way as the path's.
+ * Puts a run's places by its own track distance, where that counts the same way as the path's.
  *
- * @param placeM places by projection or by stretched distance, which say the turn and what is credible
- * @returns new places; the input itself where the distances do not count alike
+ * @param placeM places by projection or by stretched distance, which say the turn and what is credible; changed in place, or left
+ *               as they are where the distances do not count alike
  */
 export function placeByTrackDistance(
 	placeM: Float64Array,
 	channels: Channels,
 	path: ReferencePath,
 	marks: LapMarks
-): Float64Array {
+): void {
 	const { lapDistanceM } = channels;
-	const { lengthM, trackDistanceM } = path;
 	const ownM = trackLength(channels, marks);
-	if (!trackDistanceM || !lapDistanceM || ownM === null) return placeM;
-	const known = trackDistanceM;
-	const count = known.length;
-	// the path's track length, drawn on over the last part of a metre
-	const pathM = known[count - 1] + (lengthM - (count - 1)) * (known[count - 1] - known[count - 2]);
-	if (Math.abs(ownM - pathM) > 2 * SAME_LENGTH_M) return placeM;
-	const out = placeM.slice();
-	const differences: number[] = [];
-	let at = 0;
-	for (let i = 0; i < out.length; i++) {
-		const distance = lapDistanceM[i];
-		if (!(distance >= 0 && distance <= ownM + SAME_LENGTH_M) || Number.isNaN(placeM[i])) continue;
-		if (at > 0 && known[at] > distance) at = Math.max(at - 3, 0);
-		if (known[at] > distance) at = 0;
-		while (at + 1 < count && known[at + 1] <= distance) at++;
-		const next = at + 1 < count ? known[at + 1] : ownM;
-		const span = at + 1 < count ? 1 : lengthM - at;
-		const s = at + (next > known[at] ? Math.min((distance - known[at]) / (next - known[at]), 1) * span : 0);
-		const place = s + Math.round((placeM[i] - s) / lengthM) * lengthM;
-		const difference = Math.abs(place - placeM[i]);
-		if (i % 8 === 0) differences.push(difference);
-		if (difference <= LARGEST_DIFFERENCE_M) out[i] = place;
+	const place = ownM === null ? null : placeReader(path, ownM);
+	if (!lapDistanceM || !place) return;
+	const differences = new Float64Array(Math.floor(placeM.length / CHECK_STRIDE) + 1).fill(NaN);
+	for (let i = 0; i < placeM.length; i += CHECK_STRIDE) {
+		differences[i / CHECK_STRIDE] = Math.abs(place(lapDistanceM[i], placeM[i]) - placeM[i]);
 	}
-	if (!(quantile(differences, 0.5) <= USUAL_DIFFERENCE_M)) return placeM;
-	if (!(quantile(differences, 0.98) <= LARGEST_DIFFERENCE_M)) return placeM;
+	if (!(quantile(differences, 0.5) <= USUAL_DIFFERENCE_M)) return;
+	if (!(quantile(differences, 0.98) <= LARGEST_DIFFERENCE_M)) return;
 	let furthest = -Infinity;
-	for (let i = 0; i < out.length; i++) {
-		if (out[i] < furthest) out[i] = furthest;
-		else if (!Number.isNaN(out[i])) furthest = out[i];
+	for (let i = 0; i < placeM.length; i++) {
+		const read = place(lapDistanceM[i], placeM[i]);
+		if (Math.abs(read - placeM[i]) <= LARGEST_DIFFERENCE_M) placeM[i] = read;
+		if (placeM[i] < furthest) placeM[i] = furthest;
+		else if (!Number.isNaN(placeM[i])) furthest = placeM[i];
 	}
-	return out;
+}
+
+/**
+ * Reads the unwrapped place at a track distance, given roughly where it is.
+ *
+ * @returns null where the path knows no track distance, or one of another length
+ */
+function placeReader(
+	{ lengthM, trackDistanceM }: ReferencePath,
+	ownM: number
+): ((distanceM: number, nearM: number) => number) | null {
+	if (!trackDistanceM || trackDistanceM.length < 2) return null;
+	const known = trackDistanceM;
+	const last = known.length - 1;
+	// the path's track length, drawn on over the last part of a metre
+	const pathM = known[last] + (lengthM - last) * (known[last] - known[last - 1]);
+	if (Math.abs(ownM - pathM) > 2 * SAME_LENGTH_M) return null;
+	let at = 0;
+	return (distanceM, nearM) => {
+		if (!(distanceM >= 0 && distanceM <= ownM + SAME_LENGTH_M)) return NaN;
+		while (at > 0 && known[at] > distanceM) at = at > 8 && known[at - 8] > distanceM ? 0 : at - 1;
+		while (at < last && known[at + 1] <= distanceM) at++;
+		const next = at < last ? known[at + 1] : ownM;
+		const span = at < last ? 1 : lengthM - at;
+		const s = at + (next > known[at] ? Math.min((distanceM - known[at]) / (next - known[at]), 1) * span : 0);
+		return s + Math.round((nearM - s) / lengthM) * lengthM;
+	};
 }

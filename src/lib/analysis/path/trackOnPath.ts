@@ -1,3 +1,4 @@
+import { KMH_PER_MPS } from '../../units.ts';
 import { wayBetween } from '../laps/wayBetween.ts';
 import type { Channels } from '../model.ts';
 import type { Positions } from './freshPositions.ts';
@@ -27,6 +28,8 @@ const STEP_SHARE = 0.6;
 const SEARCH_AFTER_S = 1;
 /** The driven way over a longer gap says too little about where the car is. */
 const LONGEST_STEP_S = 4;
+/** So many positions near the path say which way round the run goes. */
+const ENOUGH_TRIES = 15;
 /** Slower than this a car has no course to search by. */
 const COURSE_KMH = 15;
 /** Cosine that the course must have with the path's direction. */
@@ -41,24 +44,27 @@ const ALONG_COS = 0.5;
  */
 export function trackOnPath(positions: Positions, channels: Channels, path: PathGeometry): Tracked {
 	const { sample, xM, yM } = positions;
-	const { timeS } = channels;
+	const { timeS, speedKmh } = channels;
 	const n = sample.length;
 	const placeM = new Float64Array(n).fill(NaN);
 	const offsetM = new Float64Array(n).fill(NaN);
 	const at = new PathPoint(path);
 	const start = firstOnPath();
 	if (start.index < 0) return { placeM, offsetM, onPath: 0, reversed: start.against > 0 };
-	follow(start.index, 1);
-	follow(start.index, -1);
-	let driven = 0;
-	let found = 0;
-	for (let j = 1; j < n; j++) {
-		const way = wayBetween(channels, sample[j - 1], sample[j]);
-		driven += way;
-		if (Math.abs(offsetM[j]) < FOUND_OFFSET_M) found += way;
-	}
-	const onPath = driven > 0 ? found / driven : 0;
+	const onward = follow(start.index, 1);
+	const back = follow(start.index, -1);
+	const driven = onward.driven + back.driven;
+	const onPath = driven > 0 ? (onward.found + back.found) / driven : 1;
 	return { placeM, offsetM, onPath, reversed: start.against > start.along };
+
+	/** Way between two neighbouring positions. */
+	function wayTo(j: number): number {
+		const from = sample[j - 1];
+		const to = sample[j];
+		if (to > from + 1) return wayBetween(channels, from, to);
+		const way = ((speedKmh[from] + speedKmh[to]) / (2 * KMH_PER_MPS)) * (timeS[to] - timeS[from]);
+		return way >= 0 ? way : wayBetween(channels, from, to);
+	}
 
 	/** First position from which the path can be followed, and how many before it ran along or against it. */
 	function firstOnPath(): { index: number; along: number; against: number } {
@@ -67,14 +73,14 @@ export function trackOnPath(positions: Positions, channels: Channels, path: Path
 		let index = -1;
 		let triedS = -Infinity;
 		for (let j = 0; j < n - 1; j++) {
-			if (timeS[sample[j]] < triedS + SEARCH_AFTER_S || !(channels.speedKmh[sample[j]] > COURSE_KMH)) continue;
+			if (timeS[sample[j]] < triedS + SEARCH_AFTER_S || !(speedKmh[sample[j]] > COURSE_KMH)) continue;
 			triedS = timeS[sample[j]];
 			const cos = at.search(xM[j], yM[j], course(j), FOUND_OFFSET_M);
 			if (!(Math.abs(at.offsetM) < FOUND_OFFSET_M)) continue;
 			if (cos > ALONG_COS) along++;
 			else if (cos < -ALONG_COS) against++;
 			if (index < 0 && cos > ALONG_COS) index = j;
-			if (along + against >= 60) break;
+			if (along + against >= ENOUGH_TRIES) break;
 		}
 		return { index: along > against ? index : -1, along, against };
 	}
@@ -89,7 +95,10 @@ export function trackOnPath(positions: Positions, channels: Channels, path: Path
 		return Math.atan2(yM[high] - yM[low], xM[high] - xM[low]);
 	}
 
-	function follow(from: number, direction: 1 | -1): void {
+	/** Follows the path from a position to the end or the start of the run; returns the way driven and the way found on the path. */
+	function follow(from: number, direction: 1 | -1): { driven: number; found: number } {
+		let driven = 0;
+		let found = 0;
 		at.search(xM[from], yM[from], course(from), FOUND_OFFSET_M);
 		let place = at.placeM;
 		let turns = 0;
@@ -99,27 +108,29 @@ export function trackOnPath(positions: Positions, channels: Channels, path: Path
 		let expected = place;
 		for (let j = from + direction; j >= 0 && j < n; j += direction) {
 			const before = direction > 0 ? j - 1 : j;
-			const way = wayBetween(channels, sample[before], sample[before + 1]);
+			const way = wayTo(before + 1);
 			expected += direction * way;
+			driven += way;
 			const stepS = timeS[sample[before + 1]] - timeS[sample[before]];
 			const lostS = Math.abs(timeS[sample[j]] - timeS[sample[last]]);
 			if (lostS < SEARCH_AFTER_S + stepS && stepS < LONGEST_STEP_S) {
 				at.moveTo(expected - turns * path.lengthM);
 				const reach = STEP_SLACK_M + STEP_SHARE * Math.abs(expected - place);
 				if (at.settle(xM[j], yM[j], reach) && Math.abs(at.offsetM) <= LARGEST_OFFSET_M) {
-					const found = at.placeM + (turns + at.turns) * path.lengthM;
-					if (Math.abs(found - expected) <= reach) {
+					const dropped = at.placeM + (turns + at.turns) * path.lengthM;
+					if (Math.abs(dropped - expected) <= reach) {
 						turns += at.turns;
-						place = found;
-						expected = found;
-						placeM[j] = found;
+						place = dropped;
+						expected = dropped;
+						placeM[j] = place;
 						offsetM[j] = at.offsetM;
 						last = j;
+						if (Math.abs(at.offsetM) < FOUND_OFFSET_M) found += way;
 					}
 				}
 				continue;
 			}
-			if (!(channels.speedKmh[sample[j]] > COURSE_KMH)) continue;
+			if (!(speedKmh[sample[j]] > COURSE_KMH)) continue;
 			const cos = at.search(xM[j], yM[j], course(j), FOUND_OFFSET_M);
 			if (!(cos > ALONG_COS && Math.abs(at.offsetM) < FOUND_OFFSET_M)) continue;
 			turns = path.closed ? Math.round((expected - at.placeM) / path.lengthM) : 0;
@@ -134,5 +145,6 @@ export function trackOnPath(positions: Positions, channels: Channels, path: Path
 			offsetM[j] = at.offsetM;
 			last = j;
 		}
+		return { driven, found };
 	}
 }

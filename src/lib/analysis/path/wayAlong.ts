@@ -13,11 +13,16 @@ const STANDING_KMH = 3.6;
 export function wayAlong({ sample, xM, yM, noiseM }: Positions, { distanceM, speedKmh }: Channels): Float64Array {
 	const way = new Float64Array(sample.length);
 	const byChords = noiseM <= CHORD_NOISE_M;
+	let sum = 0;
 	for (let j = 1; j < way.length; j++) {
-		const driven = distanceM[sample[j]] - distanceM[sample[j - 1]];
-		const chord = Math.hypot(xM[j] - xM[j - 1], yM[j] - yM[j - 1]);
-		const step = byChords && !(speedKmh[sample[j]] < STANDING_KMH) ? chord : driven;
-		way[j] = way[j - 1] + (step > 0 ? step : 0);
+		let step = distanceM[sample[j]] - distanceM[sample[j - 1]];
+		if (byChords && !(speedKmh[sample[j]] < STANDING_KMH)) {
+			const dx = xM[j] - xM[j - 1];
+			const dy = yM[j] - yM[j - 1];
+			step = Math.sqrt(dx * dx + dy * dy);
+		}
+		if (step > 0) sum += step;
+		way[j] = sum;
 	}
 	return way;
 }

@@ -31,7 +31,12 @@ export function smoothScattered(
 ): Float64Array[] {
 	if (!(nodes >= 8)) throw new RangeError(`smoothScattered requires at least 8 nodes, got ${nodes}`);
 	if (!(lambda > 0)) throw new RangeError(`smoothScattered requires lambda > 0, got ${lambda}`);
-	return smoothGathered(gather(at, columns, weights, nodes, closed), lambda);
+	const gathered = gather(at, columns, weights, nodes, closed);
+	if (closed) return smoothGathered(gathered, lambda);
+	// nobody else needs what was gathered: solved in place
+	const factor = factorise(gathered.bands, lambda);
+	for (const side of gathered.sides) solve(factor, side);
+	return gathered.sides;
 }
 
 /** Points of a smoothing problem summed up on its grid, so that it can be solved for several strengths of the penalty. */
@@ -71,7 +76,11 @@ export function gather(
 		const n1 = closed ? wrap(first + 1, nodes) : first + 1;
 		const n2 = closed ? wrap(first + 2, nodes) : first + 2;
 		const n3 = closed ? wrap(first + 3, nodes) : first + 3;
-		const [s0, s1, s2, s3] = share;
+		// not by destructuring, which would walk an iterator for each point
+		const s0 = share[0];
+		const s1 = share[1];
+		const s2 = share[2];
+		const s3 = share[3];
 		b0[n0] += weight * s0 * s0;
 		b0[n1] += weight * s1 * s1;
 		b0[n2] += weight * s2 * s2;
