@@ -92,7 +92,8 @@ async function runStages(wish, stop, closing, sum) {
 	const startedAt = new Map();
 	const tasks = ORDER.filter(({ name }) => stages.includes(name)).map((stage) => ({
 		...stage,
-		work: () => {
+		work: async () => {
+			stop.check();
 			startedAt.set(stage.name, Date.now());
 			return work[stage.name]();
 		}
