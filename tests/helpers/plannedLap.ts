@@ -28,7 +28,7 @@ export interface Circuit {
 const OPENING_MPS2 = 1.6;
 const OPENING_S = 0.4;
 const FULL_MPS2 = 3.6;
-const TOP_MPS = 62;
+const TOP_MPS = 75;
 const COASTING_MPS2 = -1.1;
 const PEDAL_S = 0.1;
 const MARGIN_M = 250;
@@ -112,15 +112,17 @@ function drive({ lengthM, plans, startMps }: Circuit): Driven {
 	return { timeS, mps, brakePct, throttlePct, lapTimeS: timeS[lengthM], events };
 }
 
-/** The lap as the comparison takes it; before and after the line the lap repeats itself. */
+/** The lap as the comparison takes it. */
 export function plannedLap(circuit: Circuit, lapNumber: number): CompareSide {
-	const { lengthM, corners, plans } = circuit;
+	const { lengthM, corners, plans, startMps } = circuit;
 	const driven = drive(circuit);
-	const spread = (column: Float64Array, perTurn = 0) =>
+	// before the line both laps come at the same speed, and after it they go on at theirs
+	const lastMps = driven.mps[lengthM];
+	const spread = (column: Float64Array, perM: [number, number] = [0, 0]) =>
 		Float64Array.from({ length: lengthM + 1 + 2 * MARGIN_M }, (_, i) => {
 			const placeM = i - MARGIN_M;
-			const turn = Math.floor(placeM / lengthM);
-			return column[placeM - turn * lengthM] + turn * perTurn;
+			if (placeM < 0) return column[0] + placeM * perM[0];
+			return placeM > lengthM ? column[lengthM] + (placeM - lengthM) * perM[1] : column[placeM];
 		});
 	const metrics = corners.map((corner, k): CornerMetrics => {
 		const { liftM, onsetM, releaseEndM, slowestM, fullM, coastS } = driven.events[k];
@@ -169,7 +171,7 @@ export function plannedLap(circuit: Circuit, lapNumber: number): CompareSide {
 			lengthM,
 			marginM: MARGIN_M,
 			lapTimeS: driven.lapTimeS,
-			timeS: spread(driven.timeS, driven.lapTimeS),
+			timeS: spread(driven.timeS, [1 / startMps, 1 / lastMps]),
 			speedKmh: spread(driven.mps.map((v) => v * 3.6)),
 			brakePct: spread(driven.brakePct),
 			throttlePct: spread(driven.throttlePct),

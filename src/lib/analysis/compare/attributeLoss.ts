@@ -46,7 +46,10 @@ export function attributeLoss(
 	let row = 0;
 	for (let i = 0; i + 1 < deficit.length; i++) {
 		const { loss, gain, straight } = plan;
-		if (i > 0 && (loss[i] !== loss[i - 1] || gain[i] !== gain[i - 1])) pools.settle();
+		if (i > 0 && (loss[i] !== loss[i - 1] || gain[i] !== gain[i - 1])) {
+			if (straight[i - 1]) pools.cancel();
+			pools.settle();
+		}
 		if (straight[i] && !straight[i - 1]) byModel = model !== null && departsFromModel(gap, plan, i, model);
 
 		for (const pool of pools.active) before[pool] = pools.parts[pool];
@@ -104,7 +107,10 @@ function departsFromModel(gap: SpeedGap, plan: StagePlan, from: number, model: F
 		expected += ownGrowth(gap, to, model);
 		to++;
 	}
-	const remainder = Math.abs(deficit[to] - deficit[from] - expected);
-	const allowed = DRIFT_MPS * driverMps[to] + SCATTER_SHARE * model.residualMps2 * (to - from);
-	return remainder > Math.max(DRIFT_SHARE * Math.abs(deficit[from]), allowed);
+	const own = deficit[from] + expected;
+	const scatter = DRIFT_MPS * driverMps[to] + SCATTER_SHARE * model.residualMps2 * (to - from);
+	const allowed = Math.max(DRIFT_SHARE * Math.abs(deficit[from]), scatter);
+	// closing up faster than the model has it may be a limiter or the model; no cause is charged with more than was lost
+	const closesUp = deficit[to] * own >= 0 ? Math.abs(deficit[to]) <= Math.abs(own) : Math.abs(deficit[to]) <= scatter;
+	return !closesUp && Math.abs(deficit[to] - own) > allowed;
 }

@@ -43,6 +43,18 @@ describe('GapPools', () => {
 		expect(parts(pools)).toEqual([13, 2]);
 	});
 
+	it('cancels parts that stand against the gap, so that none of them outlives it', () => {
+		const pools = new GapPools(3);
+		pools.change(12, 0);
+		pools.evolve(2, 1, 1);
+		expect(parts(pools)).toEqual([12, -10, 0]);
+		pools.cancel();
+		expect(parts(pools)).toEqual([2, 0, 0]);
+		pools.evolve(-3, 1, 1);
+		pools.cancel();
+		expect(parts(pools)).toEqual([0, -3, 0]);
+	});
+
 	it('keeps the sum of the parts equal to the gap, in any order of changes', () => {
 		const step = fc.record({
 			next: fc.double({ min: -50, max: 50, noNaN: true }),

@@ -60,6 +60,19 @@ export class GapPools {
 		this.#gap = next;
 	}
 
+	/**
+	 * Parts against the gap's sign and as much of the others cancel each other: a tow makes up for a slow exit until the next corner,
+	 * which wipes out both. Without it two large parts would hide in a gap of nothing.
+	 */
+	cancel(): void {
+		let along = 0;
+		for (const key of this.active) if (this.parts[key] * this.#gap > 0) along += this.parts[key];
+		for (const key of this.active) {
+			const same = this.parts[key] * this.#gap > 0;
+			this.parts[key] = same ? (this.parts[key] * this.#gap) / along : 0;
+		}
+	}
+
 	#add(pool: number, amount: number): void {
 		if (!this.active.includes(pool)) {
 			this.active.push(pool);

@@ -1,5 +1,6 @@
 import type { CornerPlaces } from '../compare/cornerPlaces.ts';
-import { gapIndex, type SpeedGap } from '../compare/speedGap.ts';
+import type { LapGrid } from '../model.ts';
+import { KMH_PER_MPS } from '../../units.ts';
 
 /** How hard both laps slow down for one corner, from the same two kinds of place: the onset and a speed that both reach. */
 export interface BrakingStrength {
@@ -17,17 +18,30 @@ export interface BrakingStrength {
 const ABOVE_MINIMUM_MPS = 0.6;
 /** Speed that a braking must take off before its mean deceleration says anything. */
 const LEAST_DROP_MPS = 3;
+const STEP_M = 0.25;
 
-/** First index at or after `from` where the speed is at or below `level`, up to `to`; −1 where it stays above. */
-function reaches(speedMps: Float64Array, level: number, from: number, to: number): number {
-	for (let i = from; i <= to; i++) if (speedMps[i] <= level) return i;
-	return -1;
+/** Speed by place on one lap's grid, linear between metres, in m/s. */
+function speedAt({ speedKmh, marginM }: LapGrid, placeM: number): number {
+	const at = Math.min(Math.max(placeM + marginM, 0), speedKmh.length - 1);
+	const i = Math.min(Math.floor(at), speedKmh.length - 2);
+	return (speedKmh[i] + (speedKmh[i + 1] - speedKmh[i]) * (at - i)) / KMH_PER_MPS;
 }
 
-function lowest(speedMps: Float64Array, from: number, to: number): number {
+function lowest(grid: LapGrid, fromM: number, toM: number): number {
 	let low = Infinity;
-	for (let i = from; i <= to; i++) if (speedMps[i] < low) low = speedMps[i];
+	for (let m = fromM; m <= toM; m++) low = Math.min(low, speedAt(grid, m));
 	return low;
+}
+
+/** First place from `fromM` on where the speed is down to a level; NaN where it stays above. */
+function reaches(grid: LapGrid, levelMps: number, fromM: number, toM: number): number {
+	for (let m = fromM; m < toM; m++) {
+		const next = speedAt(grid, m + 1);
+		if (next > levelMps) continue;
+		const here = speedAt(grid, m);
+		return here > next ? m + Math.min(Math.max((here - levelMps) / (here - next), 0), 1) : m;
+	}
+	return NaN;
 }
 
 /**
@@ -35,29 +49,29 @@ function lowest(speedMps: Float64Array, from: number, to: number): number {
  *
  * @returns null where either lap does not brake for the corner, or hardly slows down
  */
-export function brakingStrength(gap: SpeedGap, place: CornerPlaces): BrakingStrength | null {
-	const onsetDriverM = place.driver.onsetM;
-	const onsetReferenceM = place.reference.onsetM;
-	if (onsetDriverM === null || onsetReferenceM === null) return null;
-	const d = gapIndex(gap, onsetDriverM);
-	const r = gapIndex(gap, onsetReferenceM);
-	const end = gapIndex(gap, Math.max(place.endM, onsetDriverM + 1, onsetReferenceM + 1));
-	const { driverMps, referenceMps } = gap;
-	const common = Math.max(lowest(driverMps, d, end), lowest(referenceMps, r, end)) + ABOVE_MINIMUM_MPS;
-	if (!(driverMps[d] > common + LEAST_DROP_MPS && referenceMps[r] > common + LEAST_DROP_MPS)) return null;
-	const driverAt = reaches(driverMps, common, d, end);
-	const referenceAt = reaches(referenceMps, common, r, end);
-	if (driverAt <= d || referenceAt <= r) return null;
+export function brakingStrength(driver: LapGrid, reference: LapGrid, place: CornerPlaces): BrakingStrength | null {
+	const driverM = place.driver.onsetM;
+	const referenceM = place.reference.onsetM;
+	if (driverM === null || referenceM === null) return null;
+	const endM = Math.max(place.endM, driverM + 1, referenceM + 1);
+	const common = Math.max(lowest(driver, driverM, endM), lowest(reference, referenceM, endM)) + ABOVE_MINIMUM_MPS;
+	const driverMps = speedAt(driver, driverM);
+	const referenceMps = speedAt(reference, referenceM);
+	if (!(driverMps > common + LEAST_DROP_MPS && referenceMps > common + LEAST_DROP_MPS)) return null;
+	const driverToM = reaches(driver, common, driverM, endM);
+	const referenceToM = reaches(reference, common, referenceM, endM);
+	if (!(driverToM > driverM && referenceToM > referenceM)) return null;
 	const mean = (fromMps: number, metres: number) => (fromMps * fromMps - common * common) / (2 * metres);
-	const driverMps2 = mean(driverMps[d], driverAt - d);
-	const referenceMps2 = mean(referenceMps[r], referenceAt - r);
+	const driverMps2 = mean(driverMps, driverToM - driverM);
+	const referenceMps2 = mean(referenceMps, referenceToM - referenceM);
 	// going on as the reference does before its own onset, up to where its deceleration still suffices
-	let later = d;
-	while (later < r) {
-		const gained = (referenceMps[later + 1] ** 2 - referenceMps[d] ** 2) / 2;
-		const reached = driverMps[d] ** 2 + 2 * gained;
-		if (reached - common * common > 2 * referenceMps2 * (driverAt - later - 1)) break;
-		later++;
+	const without = speedAt(reference, driverM) ** 2;
+	let laterM = 0;
+	while (driverM + laterM < referenceM) {
+		const nextM = Math.min(driverM + laterM + STEP_M, referenceM);
+		const reached = driverMps ** 2 + speedAt(reference, nextM) ** 2 - without;
+		if (reached - common * common > 2 * referenceMps2 * (driverToM - nextM)) break;
+		laterM = nextM - driverM;
 	}
-	return { driverMps2, referenceMps2, laterByStrengthM: later - d };
+	return { driverMps2, referenceMps2, laterByStrengthM: laterM };
 }

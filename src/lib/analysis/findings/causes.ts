@@ -27,6 +27,8 @@ export interface CauseShare {
 	share: number;
 }
 
+/** Two causes share an earlier onset only where each explains more than this of it. */
+const ONE_CAUSE_SHARE = 0.2;
 /** Peaks and strengths nearer than this are the same braking. */
 const SAME_STRENGTH = 0.97;
 /** A driven radius below this share of the reference's is another line; lateral acceleration above the other share is the grip used. */
@@ -74,11 +76,10 @@ export function causesOfEarlyBraking(c: CornerCase): CauseShare[] {
 	const early = cause(c, 'brake_early', 'onsetM');
 	const weak = weakBraking(c);
 	if (!c.strength || !weak) return whole(early);
-	const needed = c.strength.laterByStrengthM;
-	const slack = Math.max(onset.plusMinus, 1);
-	if (needed <= slack) return whole(early);
-	if (-onset.by - needed <= slack) return whole(weak);
-	const share = needed / -onset.by;
+	const share = c.strength.laterByStrengthM / -onset.by;
+	const slack = Math.max(onset.plusMinus / -onset.by, ONE_CAUSE_SHARE);
+	if (share <= slack) return whole(early);
+	if (share >= 1 - slack) return whole(weak);
 	return [
 		{ cause: weak, share },
 		{ cause: early, share: 1 - share }

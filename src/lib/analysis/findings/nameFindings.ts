@@ -64,7 +64,7 @@ const total = (byRow: Float64Array): number => byRow.reduce((sum, lossS) => sum 
  * are one finding, and techniques that differ without a cost follow. Sorted by cost.
  */
 export function nameFindings(input: FindingsInput): Finding[] {
-	const { places, rows, losses, driver, reference, gap } = input;
+	const { places, rows, losses, driver, reference } = input;
 	const { lengthM } = reference.grid;
 	const charged: Charged[] = runUpCauses(input);
 	const techniques: Charged[] = [];
@@ -73,7 +73,7 @@ export function nameFindings(input: FindingsInput): Finding[] {
 		const c: CornerCase = {
 			place,
 			pair: { driver: of(driver.metrics), reference: of(reference.metrics), apexM: place.apexM, lengthM },
-			strength: brakingStrength(gap, place),
+			strength: brakingStrength(driver.grid, reference.grid, place),
 			cornering: corneringAt(driver.grid, reference.grid, place)
 		};
 		const here: Charged[] = [];

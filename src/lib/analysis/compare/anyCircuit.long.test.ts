@@ -1,0 +1,8 @@
+import { describe, it } from 'vitest';
+import { expectNamedOnAnyCircuit, MISTAKES } from '../../../../tests/helpers/mistakes.ts';
+
+describe('compareLaps on any circuit', { timeout: 900_000 }, () => {
+	it.each(MISTAKES)('names $name first, with its cost and at its corner', (mistake) => {
+		expectNamedOnAnyCircuit(mistake, 400);
+	});
+});
