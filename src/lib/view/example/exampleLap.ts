@@ -1,4 +1,4 @@
-import type { CentreLine } from '../../demo/centreLine.ts';
+import { smoothClosed, type CentreLine } from '../../demo/centreLine.ts';
 import type { LapGrid } from '../../analysis/model.ts';
 import { metricsSchema, type CornerMetrics } from '../../schemas/analysisDocument.ts';
 import type { ExampleLine } from './exampleLine.ts';
@@ -92,23 +92,10 @@ export function exampleLap(road: CentreLine, line: ExampleLine, lapNumber: numbe
 			run(a, true);
 		});
 	}
-	const smooth = (values: Float64Array, sigma: number): Float64Array => {
-		const reach = Math.ceil(sigma * 3);
-		return values.map((_, i) => {
-			let sum = 0;
-			let weights = 0;
-			for (let k = -reach; k <= reach; k++) {
-				const w = Math.exp(-(k * k) / (2 * sigma * sigma));
-				sum += w * values[wrap(i + k)];
-				weights += w;
-			}
-			return sum / weights;
-		});
-	};
-	const speedKmh = smooth(speed, 2.5).map((value) => value * KMH_PER_MPS);
-	const brakePct = smooth(brake, 1.6).map((value) => (value < 0.4 ? 0 : value));
-	const throttlePct = smooth(throttle, 1.6);
-	const steeringDeg = smooth(line.curvaturePerM, 3).map((curvature) => curvature * 1900);
+	const speedKmh = smoothClosed(speed, 2.5).map((value) => value * KMH_PER_MPS);
+	const brakePct = smoothClosed(brake, 1.6).map((value) => (value < 0.4 ? 0 : value));
+	const throttlePct = smoothClosed(throttle, 1.6);
+	const steeringDeg = smoothClosed(line.curvaturePerM, 3).map((curvature) => curvature * 1900);
 
 	const size = n + 1 + 2 * MARGIN_M;
 	const onGrid = (values: Float64Array): Float64Array =>
