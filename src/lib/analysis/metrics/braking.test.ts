@@ -1,5 +1,5 @@
 import fc from 'fast-check';
-import { describe, expect, it } from 'vitest';
+import { describe, expect, it, vi } from 'vitest';
 import { brakeApplications } from './brakeApplications.ts';
 import type { Signal } from './crossing.ts';
 import { measureBraking } from './measureBraking.ts';
@@ -65,6 +65,9 @@ function lastAt(knots: Knots, level: number): number {
 	const [[ta, ya], [tb, yb]] = knots.slice(-2);
 	return ta + ((ya - level) / (ya - yb)) * (tb - ta);
 }
+
+// hundreds of runs a property; a busy machine needs more than the usual five seconds
+vi.setConfig({ testTimeout: 60_000 });
 
 describe('measureBraking', () => {
 	it('finds onset, peak, rise, release and off of a trapezoid wherever the samples fall', () => {

@@ -1,5 +1,5 @@
 import fc from 'fast-check';
-import { describe, expect, it } from 'vitest';
+import { describe, expect, it, vi } from 'vitest';
 import { crossing } from './crossing.ts';
 import { idleGap } from './idleGap.ts';
 import { heldLevel } from './heldLevel.ts';
@@ -10,6 +10,9 @@ import { seededNormal } from './testing/seededNormal.ts';
 import { turnIn } from './turnIn.ts';
 
 type Knots = [number, number][];
+
+// hundreds of runs a property; a busy machine needs more than the usual five seconds
+vi.setConfig({ testTimeout: 60_000 });
 
 describe('crossing', () => {
 	it.each([

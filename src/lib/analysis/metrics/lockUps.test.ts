@@ -1,7 +1,7 @@
 import { readFileSync } from 'node:fs';
 import { gunzipSync } from 'node:zlib';
 import fc from 'fast-check';
-import { describe, expect, it } from 'vitest';
+import { describe, expect, it, vi } from 'vitest';
 import type { Wheel } from '../../schemas/analysisDocument.ts';
 import type { Channels } from '../model.ts';
 import { lockUps } from './lockUps.ts';
@@ -38,6 +38,9 @@ function readCase(name: string): { channels: Channels; startS: number } {
 	const [fl, fr, rl, rr] = [3, 4, 5, 6].map((index) => Float64Array.from(column(index)));
 	return { channels: { ...base, wheelKmh: { fl, fr, rl, rr } }, startS };
 }
+
+// hundreds of runs a property; a busy machine needs more than the usual five seconds
+vi.setConfig({ testTimeout: 60_000 });
 
 describe('lockUps', () => {
 	it.each(cases)('finds the locks of $file and no other', ({ file, lock_events, sample_rate_hz }) => {

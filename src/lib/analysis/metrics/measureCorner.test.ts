@@ -1,5 +1,5 @@
 import fc from 'fast-check';
-import { describe, expect, it } from 'vitest';
+import { describe, expect, it, vi } from 'vitest';
 import { metricsSchema, type Corner, type CornerMetrics } from '../../schemas/analysisDocument.ts';
 import type { PlacedRun } from '../model.ts';
 import { measureRun } from './measureRun.ts';
@@ -49,6 +49,9 @@ function expectPlace(value: number | null, timeS: number, withinM = 0.15): void 
 	expect(value).not.toBeNull();
 	expect(Math.abs((value ?? NaN) - at(timeS))).toBeLessThan(withinM);
 }
+
+// hundreds of runs a property; a busy machine needs more than the usual five seconds
+vi.setConfig({ testTimeout: 60_000 });
 
 describe('measureCorner', () => {
 	it('measures a braked corner by the definitions', () => {
