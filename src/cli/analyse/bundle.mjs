@@ -18,7 +18,7 @@ const KEPT = join(ROOT, 'node_modules', '.cache', 'kerbnote');
  * @returns {Promise<string>} URL of a module to import
  */
 export async function bundle(entry) {
-	const name = createHash('sha256').update(`${entry} ${process.version}`).digest('hex').slice(0, 16);
+	const name = createHash('sha256').update(`${ROOT} ${entry} ${process.version}`).digest('hex').slice(0, 16);
 	const kept = join(KEPT, `${name}.mjs`);
 	if (isCurrent(kept)) return pathToFileURL(kept).href;
 	const { build } = await import('esbuild');
