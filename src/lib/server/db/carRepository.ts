@@ -44,6 +44,8 @@ export async function findCar(
 
 /** The owner's car of that name, made where there is none. */
 export async function findOrMakeCar(trx: Knex.Transaction, ownerId: number, name: string): Promise<number> {
+	// Two files of one person that name a new car end at the same time: the second waits here, and then finds it.
+	await trx('people').where({ id: ownerId }).forUpdate().first('id');
 	const known = await findCar(trx, ownerId, name);
 	if (known) return known.id;
 	const [id]: number[] = await trx('cars').insert({
