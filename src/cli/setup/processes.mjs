@@ -94,7 +94,9 @@ export function isAlive(pid, words) {
 		// A zombie has an empty command line and state Z; it has ended for all that matters here.
 		if (/^\d+ \(.*\) [ZX]/s.test(readFileSync(`/proc/${pid}/stat`, 'utf8'))) return false;
 		if (words === undefined) return true;
-		return readFileSync(`/proc/${pid}/cmdline`, 'utf8').replaceAll('\0', ' ').includes(words);
+		const commandLine = readFileSync(`/proc/${pid}/cmdline`, 'utf8').replaceAll('\0', ' ');
+		// A process that is ending loses its command line before it lets go of its files.
+		return commandLine === '' || commandLine.includes(words);
 	} catch {
 		return words === undefined;
 	}
