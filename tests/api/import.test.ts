@@ -178,7 +178,7 @@ describe('a refused file', () => {
 		{
 			name: 'picture.png',
 			bytes: Uint8Array.of(0x89, 0x50, 0x4e, 0x47, 0x0d, 0x0a, 0x1a, 0x0a, 0, 0, 0, 13),
-			code: 'binary_file'
+			code: 'not_text'
 		},
 		{
 			name: 'broken.csv.gz',
