@@ -66,7 +66,11 @@ describe('the job queue', () => {
 			pauses.push(Number(row.pause));
 		}
 		expect(pauses[1]).toBeGreaterThan(pauses[0]);
-		expect(await db('jobs').first()).toMatchObject({ status: 'failed', error_code: 'fault', error_message: 'it broke' });
+		expect(await db('jobs').first()).toMatchObject({
+			status: 'failed',
+			error_code: 'fault',
+			error_message: 'it broke'
+		});
 		expect(await claim(db, 'a')).toBeUndefined();
 	});
 

@@ -20,7 +20,11 @@ describe('readDescription', () => {
 	});
 
 	it.each([
-		{ fields: { fuelKg: 'half' } as Record<string, string>, field: 'fuelKg', says: 'Write the fuel in kg, as a number' },
+		{
+			fields: { fuelKg: 'half' } as Record<string, string>,
+			field: 'fuelKg',
+			says: 'Write the fuel in kg, as a number'
+		},
 		{ fields: { tyreSet: 'x'.repeat(61) }, field: 'tyreSet', says: 'A name has at most 60 characters' }
 	])('refuses $fields where it was written', ({ fields, field, says }) => {
 		expect(readDescription(form(fields)).issues).toEqual({ [field]: [says] });
