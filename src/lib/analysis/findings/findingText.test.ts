@@ -28,6 +28,11 @@ const CASES: { code: FindingCode; evidence: Evidence[]; text: string }[] = [
 		text: 'Brakes at 412 m, where the reference does not brake.'
 	},
 	{
+		code: 'brake_early',
+		evidence: [evidence('onset', 'm', -3.2, 1.1, -3.2)],
+		text: 'Brakes 4\u00a0m early: at 3\u00a0m before the line, not 1\u00a0m.'
+	},
+	{
 		code: 'brake_late',
 		evidence: [evidence('onset', 'm', 425.3, 424.1, 425.3)],
 		text: 'Brakes 1.2 m late: at 425.3 m, not 424.1 m.'

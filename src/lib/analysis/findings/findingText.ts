@@ -21,17 +21,23 @@ interface Said {
 const plain = (text: string): TextPart => ({ text, isReference: false });
 
 function say(evidence: Evidence): Said {
-	const { unit, driver, reference, atM } = evidence;
+	const { quantity, unit, driver, reference, atM } = evidence;
 	const digits = digitsFor(unit, driver, reference);
-	const value = (x: number | null) => (x === null ? '' : withUnit(x, unit, digits));
+	const isPlace = unit === 'm' && quantity !== 'offset';
+	const value = (x: number | null) => (x === null ? '' : isPlace ? placeText(x, digits) : withUnit(x, unit, digits));
 	return {
 		driver: plain(value(driver)),
 		reference: { text: value(reference), isReference: true },
 		by: driver === null || reference === null ? '' : withUnit(Math.abs(driver - reference), unit, digits),
 		hasReference: reference !== null,
 		hasDriver: driver !== null,
-		at: atM === null ? '' : withUnit(atM, 'm', 0)
+		at: atM === null ? '' : placeText(atM, 0)
 	};
+}
+
+/** A corner that the line cuts has places before it: they count back from there, for nobody says "at minus three". */
+function placeText(placeM: number, digits: number): string {
+	return placeM < 0 ? `${withUnit(-placeM, 'm', digits)} before the line` : withUnit(placeM, 'm', digits);
 }
 
 type Words = string | TextPart;
