@@ -28,11 +28,6 @@ const CASES: { code: FindingCode; evidence: Evidence[]; text: string }[] = [
 		text: 'Brakes at 412 m, where the reference does not brake.'
 	},
 	{
-		code: 'brake_early',
-		evidence: [evidence('onset', 'm', -3.2, 1.1, -3.2)],
-		text: 'Brakes 4\u00a0m early: at 3\u00a0m before the line, not 1\u00a0m.'
-	},
-	{
 		code: 'brake_late',
 		evidence: [evidence('onset', 'm', 425.3, 424.1, 425.3)],
 		text: 'Brakes 1.2 m late: at 425.3 m, not 424.1 m.'
@@ -144,6 +139,11 @@ const CASES: { code: FindingCode; evidence: Evidence[]; text: string }[] = [
 		code: 'carried_in',
 		evidence: [evidence('lineSpeed', 'km/h', 171, 176, 0)],
 		text: 'Brought along from the lap before: crosses the line at 171 km/h, not 176 km/h.'
+	},
+	{
+		code: 'brake_early',
+		evidence: [evidence('onset', 'm', -3.2, 1.1, -3.2)],
+		text: 'Brakes 4 m early: at 3 m before the line, not 1 m.'
 	}
 ];
 
