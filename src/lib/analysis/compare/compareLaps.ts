@@ -8,6 +8,7 @@ import { attributeLoss } from './attributeLoss.ts';
 import { cornerPlaces } from './cornerPlaces.ts';
 import { deltaTrace } from './deltaTrace.ts';
 import { cornerBorders, cutLedger } from './ledger.ts';
+import { ownLifts } from './ownLifts.ts';
 import { speedGap } from './speedGap.ts';
 import { planStages } from './stages.ts';
 
@@ -36,9 +37,13 @@ const LEAD_M = 10;
  *
  * @throws {RangeError} if the laps lie on paths of different length
  */
-export function compareLaps({ driver, reference, corners, run }: CompareInput): Comparison {
-	const trace = deltaTrace(driver.grid, reference.grid);
+export function compareLaps(input: CompareInput): Comparison {
+	const { corners, run } = input;
+	const trace = deltaTrace(input.driver.grid, input.reference.grid);
 	const { lengthM } = trace;
+	const withOwnLifts = ({ grid, metrics }: CompareSide) => ({ grid, metrics: ownLifts(metrics, corners, lengthM) });
+	const driver = withOwnLifts(input.driver);
+	const reference = withOwnLifts(input.reference);
 	const places = cornerPlaces(corners, lengthM, driver.metrics, reference.metrics);
 	const borders = places.map(cornerBorders);
 	const ledger = cutLedger(trace, borders);
@@ -79,7 +84,7 @@ export function compareLaps({ driver, reference, corners, run }: CompareInput): 
 		deltaS: trace.finalS,
 		stepM: 1,
 		delta: Array.from(trace.deltaS),
-		referenceMetrics: reference.metrics,
+		referenceMetrics: input.reference.metrics,
 		ledger,
 		findings,
 		unexplained

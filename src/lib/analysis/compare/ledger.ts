@@ -24,7 +24,8 @@ function earliest(...places: (number | null)[]): number | null {
  */
 export function cornerBorders(place: CornerPlaces): CornerBorders {
 	const { driver, reference, startM, apexM, endM } = place;
-	const turnInM = Math.min(Math.max(reference.turnInM ?? startM, startM - (endM - startM)), endM);
+	// a turn-in comes before the apex, and not a whole corner's length before the corner
+	const turnInM = Math.min(Math.max(reference.turnInM ?? startM, 2 * startM - endM), apexM);
 	const begin = earliest(driver.onsetM, driver.liftM, reference.onsetM, reference.liftM) ?? startM;
 	const pickUpM = earliest(driver.pickUpM, reference.pickUpM) ?? apexM;
 	return {

@@ -27,10 +27,16 @@ export interface CauseShare {
 	share: number;
 }
 
-/** Two causes share an earlier onset only where each explains more than this of it. */
+/** A pick-up has waited for the brake where the brake explains this share of its lateness. */
+const WAITED_SHARE = 0.7;
+/** Room in what a late pick-up can explain: acceleration is highest right after it. */
+const LATENESS_ROOM = 1.5;
+/** Two causes share an earlier onset, or an exit, only where each explains more than this of it. */
 const ONE_CAUSE_SHARE = 0.2;
 /** Peaks and strengths nearer than this are the same braking. */
 const SAME_STRENGTH = 0.97;
+/** Deceleration up to this share of the reference's is no harder braking. */
+const NO_HARDER = 1.01;
 /** A driven radius below this share of the reference's is another line; lateral acceleration above the other share is the grip used. */
 const TIGHTER_RADIUS = 0.93;
 const GRIP_USED = 0.97;
@@ -64,8 +70,8 @@ export function causesBeforeBrake(c: CornerCase): CauseShare[] {
 }
 
 /**
- * Braking before the reference does. The part of the earlier onset that a weaker braking needs is written to the weakness (a lower peak,
- * or a longer release), the rest to the onset.
+ * Braking before the reference does. The part of the earlier onset that a lower peak needs, since it slows the car less, is written to
+ * the peak, the rest to the onset.
  */
 export function causesOfEarlyBraking(c: CornerCase): CauseShare[] {
 	const onset = differenceOf(c.pair, 'onsetM');
@@ -74,35 +80,39 @@ export function causesOfEarlyBraking(c: CornerCase): CauseShare[] {
 	// the same onset: what the gap grew by here is the end of an earlier lift
 	if (!less(onset)) return causesBeforeBrake(c);
 	const early = cause(c, 'brake_early', 'onsetM');
-	const weak = weakBraking(c);
-	if (!c.strength || !weak) return whole(early);
-	const share = c.strength.laterByStrengthM / -onset.by;
+	const weak = weakPeak(c, onset);
 	const slack = Math.max(onset.plusMinus / -onset.by, ONE_CAUSE_SHARE);
-	if (share <= slack) return whole(early);
-	if (share >= 1 - slack) return whole(weak);
-	return [
-		{ cause: weak, share },
-		{ cause: early, share: 1 - share }
-	];
+	if (!weak || weak.share <= slack) return whole(early);
+	if (weak.share >= 1 - slack) return whole(weak.cause);
+	return [weak, { cause: early, share: 1 - weak.share }];
 }
 
-function weakBraking(c: CornerCase): Cause | null {
+/** How much of an earlier onset a lower peak needs; null where the braking is not weaker, or its peak not lower. */
+function weakPeak(c: CornerCase, onset: Difference): CauseShare | null {
 	const { strength } = c;
 	if (!strength || !(strength.driverMps2 < SAME_STRENGTH * strength.referenceMps2)) return null;
 	const peak = differenceOf(c.pair, 'peakPct');
-	const strengths: Evidence = {
+	if (!less(peak)) return null;
+	const named = cause(c, 'peak_under', 'peakPct', 'onsetM');
+	const strengths = strengthEvidence(strength, c.pair.driver?.onsetM ?? null);
+	// deceleration can follow the peak, not fall further than it
+	const weaker = 1 - strength.driverMps2 / strength.referenceMps2;
+	const ofPeak = Math.min(1, (1 - peak.driver / peak.reference) / weaker);
+	return {
+		cause: { ...named, evidence: [named.evidence[0], strengths, named.evidence[1]] },
+		share: (ofPeak * strength.laterByStrengthM) / -onset.by
+	};
+}
+
+function strengthEvidence({ driverMps2, referenceMps2 }: BrakingStrength, atM: number | null): Evidence {
+	return {
 		quantity: 'deceleration',
 		unit: 'm/s²',
-		driver: strength.driverMps2,
-		reference: strength.referenceMps2,
-		atM: c.pair.driver?.onsetM ?? null,
+		driver: driverMps2,
+		reference: referenceMps2,
+		atM,
 		plusMinus: null
 	};
-	if (less(peak)) {
-		const named = cause(c, 'peak_under', 'peakPct', 'onsetM');
-		return { ...named, evidence: [named.evidence[0], strengths, named.evidence[1]] };
-	}
-	return more(differenceOf(c.pair, 'releaseS')) ? cause(c, 'release_long', 'releaseS') : null;
 }
 
 /** Slowing down more than the reference, on the brake or off it, before the reference picks the throttle up. */
@@ -130,16 +140,8 @@ export function causesOfSlowing(c: CornerCase, onBrake: boolean): CauseShare[] {
 export function overPeak(c: CornerCase): Cause {
 	const named = cause(c, 'peak_over', 'peakPct');
 	const { strength } = c;
-	if (strength && strength.driverMps2 <= strength.referenceMps2 * 1.01) {
-		named.evidence.push({
-			quantity: 'deceleration',
-			unit: 'm/s²',
-			driver: strength.driverMps2,
-			reference: strength.referenceMps2,
-			atM: c.pair.driver?.peakM ?? null,
-			plusMinus: null
-		});
-	}
+	if (strength && strength.driverMps2 <= strength.referenceMps2 * NO_HARDER)
+		named.evidence.push(strengthEvidence(strength, c.pair.driver?.peakM ?? null));
 	return named;
 }
 
@@ -173,27 +175,53 @@ function unusedGrip(c: CornerCase): Cause | null {
 
 /** Off the throttle after the reference picked it up. */
 export function causesOfLatePickUp(c: CornerCase): CauseShare[] {
+	const root = rootOfLatePickUp(c);
+	if (root) return whole(root);
 	const pickUp = differenceOf(c.pair, 'pickUpM');
 	const picksUpAlone = pickUp === null && c.place.reference.flat && c.pair.driver?.pickUpM != null;
 	if (more(pickUp) || picksUpAlone) return whole(cause(c, 'pick_up_late', 'pickUpM'));
 	return whole(more(differenceOf(c.pair, 'coastingS')) ? cause(c, 'coasting', 'coastingS') : slowExit(c));
 }
 
+/** A locked wheel, or a brake that is held so long that the pick-up had to wait for it, explains the lateness. */
+function rootOfLatePickUp(c: CornerCase): Cause | null {
+	if (more(differenceOf(c.pair, 'lockUps'))) return cause(c, 'lock_up', 'lockUps');
+	const pickUp = differenceOf(c.pair, 'pickUpM');
+	const release = differenceOf(c.pair, 'releaseEndM');
+	if (!more(pickUp) || !more(release) || !less(differenceOf(c.pair, 'minKmh'))) return null;
+	if (!(release.by >= WAITED_SHARE * pickUp.by)) return null;
+	return causesOfSlowing(c, true)[0]?.cause ?? null;
+}
+
 /** Opening the throttle: a late pick-up shifts the whole opening; what the opening itself takes longer is the exit's. */
 export function causesOfSlowOpening(c: CornerCase): CauseShare[] {
-	const late = causesOfLatePickUp(c).find(({ cause: { code } }) => code === 'pick_up_late');
-	const exit = slowExit(c);
-	if (!late) return whole(exit);
 	const pickUp = differenceOf(c.pair, 'pickUpM');
+	const [late] = causesOfLatePickUp(c);
+	if (!late || !more(pickUp) || late.cause.code !== 'pick_up_late') return late ? [late] : whole(slowExit(c));
+	const share = Math.min(shareOfLateness(c, pickUp.by), shareOfShift(c, pickUp.by));
+	if (share >= 1 - ONE_CAUSE_SHARE) return [late];
+	const exit = slowExit(c);
+	return [{ ...late, share }, ...(exit ? [{ cause: exit, share: 1 - share }] : [])];
+}
+
+/** How much of the slower exit a pick-up that is late by some metres can explain, by the reference's own acceleration: v² = v₀² + 2·a·s. */
+function shareOfLateness({ pair, place }: CornerCase, lateM: number): number {
+	const { driver, reference } = pair;
+	const { pickUpM } = place.reference;
+	if (driver?.exitKmh == null || reference?.exitKmh == null || reference.minKmh === null || pickUpM === null) return 1;
+	const openM = place.endM - pickUpM;
+	const lost = reference.exitKmh ** 2 - driver.exitKmh ** 2;
+	if (!(openM > lateM && lost > 0)) return 1;
+	const gainedPerM = (reference.exitKmh ** 2 - reference.minKmh ** 2) / openM;
+	return Math.min(1, (LATENESS_ROOM * gainedPerM * lateM) / lost);
+}
+
+/** Share of a later full throttle that is the later pick-up's. */
+function shareOfShift(c: CornerCase, lateM: number): number {
 	const full = differenceOf(c.pair, 'fullThrottleM');
-	if (!pickUp || !full || !exit) return [late];
-	const slower = full.by - pickUp.by;
-	if (!(slower > SLOW_OPENING_SHARE * pickUp.by && slower > full.plusMinus)) return [late];
-	const share = slower / full.by;
-	return [
-		{ cause: late.cause, share: 1 - share },
-		{ cause: exit, share }
-	];
+	if (!full) return 1;
+	const slower = full.by - lateM;
+	return slower > SLOW_OPENING_SHARE * lateM && slower > full.plusMinus ? lateM / full.by : 1;
 }
 
 function slowExit(c: CornerCase): Cause | null {
