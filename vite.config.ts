@@ -57,8 +57,8 @@ const product: ViteUserConfig = {
 	// Inlined fonts would be blocked by the content security policy (font-src 'self').
 	build: { assetsInlineLimit: 0 },
 	test: {
-		testTimeout: withLongTests ? 300_000 : 20_000,
-		hookTimeout: 60_000,
+		testTimeout: withLongTests ? 1_200_000 : 20_000,
+		hookTimeout: withLongTests ? 300_000 : 60_000,
 		projects: [
 			{
 				extends: true,

@@ -22,8 +22,13 @@ const portFile = join(folders.base, 'ports.json');
 /** Says to a second start where the first one serves. */
 const addressFile = join(folders.base, 'address');
 
-/** @param {string} line */
+/** @typedef {(line: string) => void} Say */
+
+/** @type {Say} */
 const say = (line) => console.log(line);
+
+/** A command's own output must stand alone on standard output. @type {Say} */
+const sayAside = (line) => console.error(line);
 
 /** @typedef {import('./commands.mjs').Way} Way */
 
@@ -72,7 +77,7 @@ async function serve(way, stop, closing) {
 	const given = parsePort(process.env.KERBNOTE_PORT || process.env.PORT, 'KERBNOTE_PORT');
 	const host = process.env.HOST || '127.0.0.1';
 	const port = await choosePort({ root: ROOT, use: 'server', file: portFile, given, variable: 'KERBNOTE_PORT', host });
-	const { database, demo } = await prepare(way, closing, stop.check);
+	const { database, demo } = await prepare({ way, closing, say, check: stop.check });
 	const developing = way === 'source';
 	const env = productEnvironment({ folders, databaseUrl: database.url, demo, port, developing });
 	writeWhole(addressFile, `${env.ORIGIN}\n`);
@@ -148,11 +153,9 @@ async function watch(parts, stop) {
 /**
  * Packages, build and database: what the server and the commands both need.
  *
- * @param {Way} way
- * @param {Array<() => unknown>} closing
- * @param {() => void} [check]
+ * @param {{ way: Way, closing: Array<() => unknown>, say: Say, check?: () => void }} wish
  */
-async function prepare(way, closing, check) {
+async function prepare({ way, closing, say, check }) {
 	const external = process.env.DATABASE_URL;
 	if (external) await checkReachable(external);
 	const startDatabase = async () => {
@@ -175,10 +178,10 @@ async function prepare(way, closing, check) {
  */
 async function runAdmin(args, closing) {
 	checkRoom(ROOT, folders);
-	const { database } = await prepare('built', closing);
+	const { database } = await prepare({ way: 'built', closing, say: sayAside });
 	const env = productEnvironment({ folders, databaseUrl: database.url, demo: false });
 	const { build } = folders;
-	await migrateAndSeed({ env, demo: false, way: 'built', build, database: databaseName(), say });
+	await migrateAndSeed({ env, demo: false, way: 'built', build, database: databaseName(), say: sayAside });
 	const command = [...programArguments('admin', 'built', build), ...args];
 	const { code } = await run(process.execPath, command, { cwd: ROOT, env, inherit: true });
 	return code === 0 ? 0 : 1;
