@@ -4,9 +4,12 @@ import { tmpdir } from 'node:os';
 import { join, resolve } from 'node:path';
 import { setTimeout as sleep } from 'node:timers/promises';
 import { createConnection } from 'mysql2/promise';
-import { afterAll, afterEach, beforeAll, beforeEach, expect, it } from 'vitest';
+import { afterAll, afterEach, beforeAll, beforeEach, expect, it, vi } from 'vitest';
 import { z } from 'zod';
 import { isAlive } from '../../src/cli/setup/processes.mjs';
+
+// A server starts in a second on a quiet machine and in twenty on one that also builds and tests.
+vi.setConfig({ testTimeout: 120_000, hookTimeout: 120_000 });
 
 let base: string;
 let folder: string;
