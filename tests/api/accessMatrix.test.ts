@@ -77,6 +77,8 @@ interface Entry {
 	request?: (own: StoredRun) => RequestOptions;
 	/** status for whom it lets in */
 	ok: number;
+	/** the sign-in that asks is over afterwards */
+	endsSignIn?: boolean;
 }
 
 const form = (fields: Record<string, string>): RequestOptions => ({
@@ -110,7 +112,13 @@ const ENTRIES: Record<string, Record<string, Entry>> = {
 	},
 	'/sign-out': {
 		GET: { access: 'everybody', path: () => '/sign-out', ok: 200 },
-		POST: { access: 'everybody', path: () => '/sign-out', request: () => form({ redirectTo: '/' }), ok: 302 }
+		POST: {
+			access: 'everybody',
+			path: () => '/sign-out',
+			request: () => form({ redirectTo: '/' }),
+			ok: 302,
+			endsSignIn: true
+		}
 	},
 	'/(app)/notebook': { GET: { access: 'signed in', path: () => '/notebook', ok: 200 } },
 	'/(app)/runs': { GET: { access: 'signed in', path: () => '/runs', ok: 200 } },
@@ -269,6 +277,13 @@ let tomas: TestPerson;
 let own: StoredRun;
 let foreign: StoredRun;
 const sends = new Map<Actor, () => Promise<RequestOptions>>();
+const jars = new Map<Actor, CookieJar>();
+
+async function jarOf(actor: Actor, who: TestPerson): Promise<CookieJar> {
+	const jar = jars.get(actor) ?? (await signedIn(who));
+	jars.set(actor, jar);
+	return jar.copy();
+}
 
 beforeAll(async () => {
 	const db = database();
@@ -289,10 +304,10 @@ beforeAll(async () => {
 	const person = async (actor: Actor, prepare: (who: TestPerson) => Promise<unknown> = async () => {}) => {
 		const who = await makePerson(actor);
 		await prepare(who);
-		sends.set(actor, async () => ({ jar: await signedIn(who) }));
+		sends.set(actor, async () => ({ jar: await jarOf(actor, who) }));
 	};
 	sends.set('nobody', async () => ({ jar: new CookieJar() }));
-	sends.set('owner', async () => ({ jar: await signedIn(mira) }));
+	sends.set('owner', async () => ({ jar: await jarOf('owner', mira) }));
 	const token = async (actor: Actor, scopes: Scope[], expiresAt: Date | null = null) => {
 		const headers = await bearer(mira, scopes, expiresAt);
 		sends.set(actor, async () => ({ headers, origin: null }));
@@ -358,7 +373,9 @@ async function send(actor: Actor, entry: Entry, at: StoredRun): Promise<Response
 }
 
 /** What is taken away by a test comes back for the next. */
-async function restore(): Promise<void> {
+async function restore(actor: Actor, entry: Entry): Promise<void> {
+	if (entry.endsSignIn) jars.delete(actor);
+	if (entry.access !== 'keeps the run') return;
 	await database()('runs').whereIn('id', [own.runId, foreign.runId]).update({ deleted_at: null });
 }
 
@@ -410,7 +427,7 @@ describe.each(
 				expect(await other.text()).not.toContain(SECRETS.foreign);
 			}
 		} finally {
-			await restore();
+			await restore(actor, entry);
 		}
 	});
 });

@@ -1,6 +1,7 @@
 import type { Knex } from 'knex';
 import { cornerSchema } from '../../schemas/analysisDocument.ts';
 import { seenLayouts } from '../access/seenLayouts.ts';
+import { seenOwners } from '../access/seenRuns.ts';
 import type { Viewer } from '../access/viewer.ts';
 import { getCornerMap, getPath } from '../db/layoutRepository.ts';
 import type { LayoutCandidate, LayoutFingerprint } from './importMessages.ts';
@@ -24,22 +25,19 @@ export async function findCandidates(
 	uploadId: number
 ): Promise<LayoutCandidate[]> {
 	const { lengthM, centre, origin } = fingerprint;
+	const owners = await seenOwners(db, owner);
 	const query = db('layouts')
 		.join('circuits', 'circuits.id', 'layouts.circuit_id')
 		.join('path_versions', (on) =>
 			on.on('path_versions.layout_id', 'layouts.id').andOn('path_versions.version', 'layouts.path_version')
 		)
-		.where(seenLayouts(db, owner))
+		.where(seenLayouts(db, owner, owners))
 		.where((kept) =>
-			kept
-				.where('path_versions.origin', origin)
-				.orWhereExists(
-					db
-						.select(db.raw('1'))
-						.from('runs')
-						.whereRaw('runs.layout_id = layouts.id')
-						.whereRaw('NOT (runs.upload_id <=> ?)', [uploadId])
-				)
+			kept.where('path_versions.origin', origin).orWhereRaw(
+				// Not EXISTS: the optimiser would gather every run there is to answer it.
+				'(SELECT 1 FROM runs AS first_other WHERE first_other.layout_id = layouts.id AND NOT (first_other.upload_id <=> ?) LIMIT 1) IS NOT NULL',
+				[uploadId]
+			)
 		);
 	if (lengthM !== null) {
 		query.whereBetween('layouts.length_m', [lengthM * (1 - LENGTH_TOLERANCE), lengthM * (1 + LENGTH_TOLERANCE)]);

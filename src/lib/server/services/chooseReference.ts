@@ -6,6 +6,7 @@ import { listFoundLaps, seenLaps, toLapHead, type FoundLap } from '../db/lapRepo
 
 /** More than anybody scrolls through; the rest is found through the runs. */
 const MOST_CANDIDATES = 24;
+const MOST_SHELVED = 200;
 
 /** What the laps are to be laid on: a layout's path and corners as they were when the laps were analysed. */
 export interface ReferencePlace {
@@ -32,18 +33,31 @@ export async function listReferences(db: Knex, viewer: Viewer, place: ReferenceP
 			.orderBy('laps.time_us')
 			.limit(MOST_CANDIDATES);
 	const owners = await seenOwners(db, viewer);
+	const shelved = await listShelved(db, viewer, place.layoutId, owners);
 	const [onShelf, best] = await Promise.all([
-		listFoundLaps(
-			onLayout().whereIn(
-				'laps.id',
-				db.select('lap_id').from('shelf_references').where({ layout_id: place.layoutId }).whereNull('removed_at')
-			)
-		),
+		shelved.length === 0 ? [] : listFoundLaps(onLayout().whereIn('laps.id', shelved)),
 		listFoundLaps(onLayout().whereIn('runs.owner_id', owners).whereRaw('laps.id = runs.best_lap_id'))
 	]);
 	const shelf = onShelf.filter(({ shelf_name }) => shelf_name !== null);
 	const known = new Set(shelf.map(({ lap_id }) => lap_id));
 	return [...shelf, ...best.filter(({ lap_id }) => !known.has(lap_id))];
+}
+
+/** Laps of the layout that stand on a shelf the viewer knows: of a person whose laps they see, or of their organisations. */
+async function listShelved(db: Knex, viewer: Viewer, layoutId: number, owners: readonly number[]): Promise<number[]> {
+	const organisations = viewer.memberships.map(({ organisationId }) => organisationId);
+	const standing = () =>
+		db('shelf_references')
+			.where({ layout_id: layoutId })
+			.whereNull('removed_at')
+			.select<{ lap_id: number }[]>('lap_id')
+			.limit(MOST_SHELVED);
+	// Two questions, for each has an index of its own.
+	const [ofPeople, ofOrganisations] = await Promise.all([
+		standing().whereIn('person_id', owners),
+		organisations.length === 0 ? [] : standing().whereIn('organisation_id', organisations)
+	]);
+	return [...new Set([...ofPeople, ...ofOrganisations].map(({ lap_id }) => lap_id))];
 }
 
 /**
