@@ -64,9 +64,9 @@ export function causesBeforeBrake(c: CornerCase): CauseShare[] {
 	const lift = differenceOf(c.pair, 'liftM');
 	const liftsAlone = c.pair.driver?.liftM != null && c.place.reference.flat;
 	const liftCounts = less(lift) || liftsAlone;
-	if (more(differenceOf(c.pair, 'coastingS')))
-		return whole(cause(c, 'coasting', 'coastingS', ...(liftCounts ? (['liftM'] as const) : [])));
-	return whole(liftCounts ? cause(c, 'brake_early', 'liftM') : null);
+	if (!liftCounts) return [];
+	const coasts = more(differenceOf(c.pair, 'coastingS'));
+	return whole(coasts ? cause(c, 'coasting', 'coastingS', 'liftM') : cause(c, 'brake_early', 'liftM'));
 }
 
 /**
@@ -77,8 +77,8 @@ export function causesOfEarlyBraking(c: CornerCase): CauseShare[] {
 	const onset = differenceOf(c.pair, 'onsetM');
 	if (onset === null)
 		return whole(c.pair.driver?.onsetM != null && c.pair.reference ? cause(c, 'brake_early', 'onsetM') : null);
-	// the same onset: what the gap grew by here is the end of an earlier lift
-	if (!less(onset)) return causesBeforeBrake(c);
+	// the same onset: what the gap grew by here is the end of an earlier lift, or the beginning of a harder braking
+	if (!less(onset)) return less(differenceOf(c.pair, 'liftM')) ? causesBeforeBrake(c) : causesOfSlowing(c, true);
 	const early = cause(c, 'brake_early', 'onsetM');
 	const weak = weakPeak(c, onset);
 	const slack = Math.max(onset.plusMinus / -onset.by, ONE_CAUSE_SHARE);

@@ -91,13 +91,19 @@ export function differenceOf(pair: MetricsPair, field: MetricField): Difference 
 /** The metric as evidence; where one lap has no value its side is null. */
 export function evidenceOf(pair: MetricsPair, field: MetricField, atM: number | null): Evidence {
 	const { quantity, unit, place } = FIELD_FACTS[field];
-	const driver = pair.driver?.[field] ?? null;
+	// both on the corner's side of the line, so that a sentence may subtract them
+	const value = (metrics: CornerMetrics | undefined): number | null => {
+		const known = metrics?.[field] ?? null;
+		return place && known !== null ? nearestPlace(pair.apexM, known, pair.lengthM) : known;
+	};
+	const driver = value(pair.driver);
+	const reference = value(pair.reference);
 	return {
 		quantity,
 		unit,
 		driver,
-		reference: pair.reference?.[field] ?? null,
-		atM: place ? (driver ?? pair.reference?.[field] ?? atM) : atM,
+		reference,
+		atM: place ? (driver ?? reference ?? atM) : atM,
 		plusMinus: differenceOf(pair, field)?.plusMinus ?? null
 	};
 }

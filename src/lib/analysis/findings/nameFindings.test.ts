@@ -1,9 +1,10 @@
 import { describe, expect, it } from 'vitest';
 import { pointMassLap, TWO_CORNERS, type Stretch } from '../../../../tests/helpers/pointMassLap.ts';
-import type { Comparison } from '../../schemas/analysisDocument.ts';
+import type { Comparison, CornerMetrics } from '../../schemas/analysisDocument.ts';
 import type { FullThrottleModel } from '../car/fullThrottle.ts';
 import { compareLaps, type CompareSide } from '../compare/compareLaps.ts';
 import { countsOnce } from './countsOnce.ts';
+import { differenceOf, evidenceOf } from './difference.ts';
 
 /** a car with a constant 4 m/s² at full throttle */
 const STEADY: FullThrottleModel = {
@@ -147,5 +148,12 @@ describe('nameFindings', () => {
 		const comparison = compare(driven(lifting), reference());
 		expect(said(comparison)).toEqual([{ corner: 2, code: 'brake_early', costS: expect.closeTo(comparison.deltaS, 2) }]);
 		expect(comparison.findings[0].text).toMatch(/^Lifts at 760.m, where the reference does not lift\.$/);
+	});
+
+	it('subtracts places on either side of the line the short way', () => {
+		const onset = (onsetM: number) => ({ onsetM, plusMinus: {} }) as CornerMetrics;
+		const pair = { driver: onset(990), reference: onset(2), apexM: 40, lengthM: 1000 };
+		expect(differenceOf(pair, 'onsetM')?.by).toBe(-12);
+		expect(evidenceOf(pair, 'onsetM', null)).toMatchObject({ driver: -10, reference: 2, atM: -10 });
 	});
 });
