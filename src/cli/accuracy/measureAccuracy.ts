@@ -2,7 +2,7 @@ import { readFileSync } from 'node:fs';
 import { gunzipSync } from 'node:zlib';
 import { analyseRun, type AnalyseOptions } from '../../lib/analysis/index.ts';
 import { readRun, type RawRun } from '../../lib/parse/index.ts';
-import type { AnalysisDocument, Comparison, LapDocument } from '../../lib/schemas/analysisDocument.ts';
+import type { AnalysisDocument, LapDocument } from '../../lib/schemas/analysisDocument.ts';
 import { AccuracyTable, type AccuracyRow, type Quantity, type Rate } from './accuracyTable.ts';
 import {
 	closedFormFile,
@@ -40,8 +40,8 @@ export async function measureAccuracy(): Promise<AccuracyRow[]> {
 		const raws = await read(file);
 		const { laps } = pairLaps(analyseRun(raws).document, recordings[file]);
 		for (const { lap, motion } of laps.slice(1)) {
-			const { comparison } = analyseRun(raws, { lap: lap.number, reference }).document;
-			if (comparison) table.add('deltaOtherLine', rate, worstDelta(comparison, truth, motion));
+			const { document } = analyseRun(raws, { lap: lap.number, reference });
+			table.add('deltaOtherLine', rate, worstDelta(document, truth, motion));
 		}
 	}
 	const noDistance = 'marrow_fen_nodist_60hz.csv';
@@ -160,9 +160,10 @@ function compareAll({ truth, table, rate, raws, recording }: Session, quantity: 
 	for (const { lap, motion } of laps) {
 		if (lap === reference.lap) continue;
 		const options: AnalyseOptions = { lap: lap.number, referenceLap: reference.lap.number };
-		const { comparison, corners } = analyseRun(raws, options).document;
+		const { document } = analyseRun(raws, options);
+		const { comparison, corners } = document;
 		if (!comparison) continue;
-		table.add(quantity, rate, worstDelta(comparison, truth, motion));
+		table.add(quantity, rate, worstDelta(document, truth, motion));
 		const sum = comparison.ledger.reduce((total, row) => total + row.totalS, 0);
 		table.add('ledger', rate, (sum - comparison.deltaS) * 1e6);
 		const lostS = truth.laps[motion].delta_final_s ?? 0;
@@ -176,14 +177,16 @@ function compareAll({ truth, table, rate, raws, recording }: Session, quantity: 
 }
 
 /** Worst error of Δ over the lap, ms, leaving out the changed link, which has a path of its own. */
-function worstDelta({ delta, deltaS }: Comparison, truth: ClosedFormTruth, motion: string): number {
+function worstDelta({ comparison, path }: AnalysisDocument, truth: ClosedFormTruth, motion: string): number {
+	if (!comparison) return NaN;
+	const { delta, deltaS } = comparison;
 	const lap: TruthLap = truth.laps[motion];
 	const exact = lap.delta_every_2_m_of_reference_distance_s;
-	const scale = (delta.length - 1) / truth.length_m;
+	const scale = path.lengthM / truth.length_m;
 	let worst = Math.abs(deltaS - (lap.delta_final_s ?? 0));
 	for (let s = 2; s < truth.length_m - 2; s += 2) {
 		if (motion === 'link_straight' && s > 690 && s < 820) continue;
-		const at = s * Math.min(scale, 1);
+		const at = s * scale;
 		const i = Math.floor(at);
 		const own = delta[i] + (delta[i + 1] - delta[i]) * (at - i);
 		worst = Math.max(worst, Math.abs(own - (exact ? exact[s / 2] : 0)));
