@@ -44,11 +44,27 @@ export function findBends(trace: ReferenceTrace): Bend[] {
 	const bends = parts.map((lobe) => asBend(lobe, curvaturePerM)).filter((bend) => bend.angleRad >= LEAST_BEND_RAD);
 	separate(bends);
 	const joined = joinNeighbours(bends, trace);
+	const round = joined.find((bend) => trace.closed && bend.endM - bend.startM >= trace.lengthM);
+	if (round) return [onceRound(round.hand, trace)];
 	for (const bend of joined) {
 		bend.angleRad = turned(curvaturePerM, bend.hand, bend.startM, bend.endM);
 		bend.peaks = apexes(bend, curvaturePerM);
 	}
 	return joined;
+}
+
+/** A circuit that never stops turning to one hand is one bend, cut where it turns least. */
+function onceRound(hand: 1 | -1, { curvaturePerM, lengthM, fromM }: ReferenceTrace): Bend {
+	const height = (i: number) => hand * curvaturePerM[i];
+	let least = -fromM;
+	for (let i = least; i < lengthM - fromM; i++) if (height(i) < height(least)) least = i;
+	let most = least;
+	for (let i = least; i < least + lengthM; i++) if (height(i) > height(most)) most = i;
+	const angleRad = turned(curvaturePerM, hand, least, least + lengthM - 1);
+	// the apex lies on the turn that corners are taken from
+	const shift = most >= lengthM - fromM ? Math.floor(lengthM) : 0;
+	const peak = { at: most - shift, height: height(most), topMean: height(most), centre: most - shift };
+	return { hand, startM: least - shift, endM: least - shift + lengthM, peaks: [peak], angleRad };
 }
 
 /** A second braking between two peaks of a lobe makes two of it, even where the curvature does not fall far. */

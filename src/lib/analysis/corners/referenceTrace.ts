@@ -14,7 +14,7 @@ export interface ReferenceTrace {
 	/** s, growing throughout */
 	timeS: Float64Array;
 	speedMps: Float64Array;
-	/** path's curvature, left positive, smoothed over what a car drives in about 0.15 s to each side */
+	/** path's curvature, left positive, smoothed over what a car drives in about 0.25 s to each side */
 	curvaturePerM: Float64Array;
 	/** in % of full pedal; null where the run has none */
 	brakePct: Float64Array | null;
@@ -23,10 +23,13 @@ export interface ReferenceTrace {
 	envelopeMps2: number;
 }
 
-/** Curvature is averaged twice over this time to each side: quicker than any corner, slower than corrections at the wheel. */
-const SMOOTHING_S = 0.08;
+/**
+ * Curvature is averaged twice over the way driven in this time to each side: quicker than any transition, slower than corrections at
+ * the wheel. With 0.08 s noisy positions split wide corners, with 0.2 s ends of clean ones move by a metre.
+ */
+const SMOOTHING_S = 0.14;
 const LEAST_SMOOTHING_M = 1.5;
-const MOST_SMOOTHING_M = 10;
+const MOST_SMOOTHING_M = 14;
 /** Share of the way above which the lateral acceleration counts as the car's envelope: single spikes do not. */
 const ENVELOPE_SHARE = 0.98;
 

@@ -9,6 +9,8 @@ import { timeBack } from './wayBetween.ts';
 
 /** A file cut at the line begins or ends up to this many sample steps away from it. */
 const STEPS = 1.5;
+/** A last sample this little behind the line's usual distance lies on it. */
+const SLACK_M = 0.2;
 /** Without positions or lap distance: lengths and speeds that agree so well mean that a stretch is a whole lap. */
 const LENGTH_SHARE = 0.01;
 const SPEED_SHARE = 0.1;
@@ -91,9 +93,12 @@ function endAtLine(
 	if (line && positions) return forward(-aheadOf(line, positions, positions.sample.length - 1));
 	if (atS.length < 2) return null;
 	if (lapDistanceM) {
-		const lengths = Array.from(atS, (t) => lapDistanceM[Math.max(sampleBefore(timeS, t), 0)]);
-		const steps = Array.from(atS, (t) => speedMps(channels, Math.max(sampleBefore(timeS, t), 0)) * step);
-		return forward(median(lengths) + median(steps) / 2 - lapDistanceM[last]);
+		const lengths = Array.from(atS, (t) => {
+			const i = Math.max(sampleBefore(timeS, t), 0);
+			return lapDistanceM[i] + speedMps(channels, i) * (t - timeS[i]);
+		});
+		const leftM = median(lengths) - lapDistanceM[last];
+		return forward(Math.abs(leftM) < SLACK_M ? 0 : leftM);
 	}
 	return wholeLap(channels, atS[atS.length - 1], timeS[last], atS) ? timeS[last] : null;
 }

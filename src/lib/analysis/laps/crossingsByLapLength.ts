@@ -7,7 +7,7 @@ const STEP_M = 5;
 const SHORTEST_LAP_M = 300;
 const LONGEST_LAP_M = 30000;
 /** Correlation of the speed trace with itself one lap on; a lap repeats much better than two different parts of a circuit. */
-const LEAST_CORRELATION = 0.7;
+const LEAST_CORRELATION = 0.85;
 /** A multiple of the lap correlates as well as the lap: the first lag that comes this near to the best is it. */
 const NEAR_BEST = 0.9;
 const MOVING_KMH = 10;

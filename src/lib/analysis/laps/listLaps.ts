@@ -84,7 +84,7 @@ function passages(placed: Omit<PlacedRun, 'laps'>): Passage[] {
 	const to = Math.floor((placeM[last] + step) / path.lengthM);
 	for (let turn = from; turn <= to; turn++) {
 		const atS = timeAtPlace(run, turn * path.lengthM);
-		if (Number.isFinite(atS) && atS > channels.timeS[0] - 1) found.push({ turn, atS });
+		if (Number.isFinite(atS) && atS > channels.timeS[0] - 1) found.push({ turn: turn + 0, atS });
 	}
 	return found;
 }
