@@ -112,7 +112,7 @@ export function analyseRun(raws: RawRun[], options: AnalyseOptions = {}): RunAna
 	const document = toDocument({
 		source: raw.source,
 		warnings: [...channels.warnings, ...measured.warnings, ...warnings],
-		path,
+		path: layout ? { ...path, line: 'layout' } : path,
 		laps,
 		cellS,
 		corners,
