@@ -42,13 +42,18 @@ const TIGHTER_RADIUS = 0.93;
 const GRIP_USED = 0.97;
 const GRIP_LEFT = 0.93;
 const LEAST_OFFSET_M = 0.8;
-/** Coasting that is worth a word beside a low minimum speed. */
+/** What is worth a word beside the finding that it belongs to. */
 const LEAST_COASTING_S = 0.1;
+const LEAST_TOLD_M = 2;
+const LEAST_TOLD_KMH = 1;
+/** A peak nearer to the reference's than this explains no earlier onset. */
+const LEAST_PEAK_PCT = 5;
 /** An opening of the throttle longer than the reference's is a cause of its own from this share of the lateness on. */
 const SLOW_OPENING_SHARE = 0.5;
 
 const more = (difference: Difference | null): difference is Difference =>
 	difference !== null && difference.counts && difference.by > 0;
+const moreBy = (difference: Difference | null, least: number): boolean => more(difference) && difference.by >= least;
 const less = (difference: Difference | null): difference is Difference =>
 	difference !== null && difference.counts && difference.by < 0;
 
@@ -79,7 +84,9 @@ export function causesOfEarlyBraking(c: CornerCase): CauseShare[] {
 		return whole(c.pair.driver?.onsetM != null && c.pair.reference ? cause(c, 'brake_early', 'onsetM') : null);
 	// the same onset: what the gap grew by here is the end of an earlier lift, or the beginning of a harder braking
 	if (!less(onset)) return less(differenceOf(c.pair, 'liftM')) ? causesBeforeBrake(c) : causesOfSlowing(c, true);
-	const early = cause(c, 'brake_early', 'onsetM');
+	const minimum = differenceOf(c.pair, 'minKmh');
+	const slows = less(minimum) && -minimum.by >= LEAST_TOLD_KMH;
+	const early = cause(c, 'brake_early', 'onsetM', ...(slows ? (['minKmh'] as const) : []));
 	const weak = weakPeak(c, onset);
 	const slack = Math.max(onset.plusMinus / -onset.by, ONE_CAUSE_SHARE);
 	if (!weak || weak.share <= slack) return whole(early);
@@ -92,7 +99,7 @@ function weakPeak(c: CornerCase, onset: Difference): CauseShare | null {
 	const { strength } = c;
 	if (!strength || !(strength.driverMps2 < SAME_STRENGTH * strength.referenceMps2)) return null;
 	const peak = differenceOf(c.pair, 'peakPct');
-	if (!less(peak)) return null;
+	if (!less(peak) || -peak.by < LEAST_PEAK_PCT) return null;
 	const named = cause(c, 'peak_under', 'peakPct', 'onsetM');
 	const strengths = strengthEvidence(strength, c.pair.driver?.onsetM ?? null);
 	// deceleration can follow the peak, not fall further than it
@@ -123,8 +130,8 @@ export function causesOfSlowing(c: CornerCase, onBrake: boolean): CauseShare[] {
 	if (less(minimum)) {
 		const line = tighterLine(c);
 		if (line) return whole(line);
-		const longer = more(differenceOf(c.pair, 'releaseEndM')) ? (['releaseEndM'] as const) : [];
-		const rolls = !longer.length && more(coasting) && coasting.by > LEAST_COASTING_S ? (['coastingS'] as const) : [];
+		const longer = moreBy(differenceOf(c.pair, 'releaseEndM'), LEAST_TOLD_M) ? (['releaseEndM'] as const) : [];
+		const rolls = !longer.length && moreBy(coasting, LEAST_COASTING_S) ? (['coastingS'] as const) : [];
 		return whole(cause(c, 'min_speed_low', 'minKmh', ...longer, ...rolls));
 	}
 	if (onBrake) {
@@ -226,7 +233,7 @@ function shareOfShift(c: CornerCase, lateM: number): number {
 
 function slowExit(c: CornerCase): Cause | null {
 	if (!less(differenceOf(c.pair, 'exitKmh'))) return null;
-	const full = more(differenceOf(c.pair, 'fullThrottleM')) ? (['fullThrottleM'] as const) : [];
+	const full = moreBy(differenceOf(c.pair, 'fullThrottleM'), LEAST_TOLD_M) ? (['fullThrottleM'] as const) : [];
 	return cause(c, 'exit_speed_low', 'exitKmh', ...full);
 }
 

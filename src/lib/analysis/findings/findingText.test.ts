@@ -28,6 +28,11 @@ const CASES: { code: FindingCode; evidence: Evidence[]; text: string }[] = [
 		text: 'Brakes at 412 m, where the reference does not brake.'
 	},
 	{
+		code: 'brake_early',
+		evidence: [evidence('onset', 'm', 903, 910, 903), evidence('minSpeed', 'km/h', 98, 101, 1040)],
+		text: 'Brakes 7 m early: at 903 m, not 910 m; slowest at 98 km/h, not 101 km/h.'
+	},
+	{
 		code: 'brake_late',
 		evidence: [evidence('onset', 'm', 425.3, 424.1, 425.3)],
 		text: 'Brakes 1.2 m late: at 425.3 m, not 424.1 m.'
@@ -165,7 +170,9 @@ describe('findingText', () => {
 	});
 
 	it('sets each reference value apart, so that a page can mark it', () => {
-		const parts = findingParts(CASES[6]).filter((part) => part.isReference);
+		const parts = findingParts(CASES.find(({ code }) => code === 'peak_under') ?? CASES[0]).filter(
+			(part) => part.isReference
+		);
 		expect(parts.map(({ text }) => seen(text))).toEqual(['95 %', '9.5 m/s²', '1209 m']);
 	});
 

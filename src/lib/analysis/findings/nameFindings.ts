@@ -16,7 +16,7 @@ import { judgeHabit } from './habit.ts';
 import { techniquesOf } from './techniques.ts';
 
 /** A cause that costs less than this is not named; the loss stays with what nothing explains. */
-const LEAST_COST_S = 0.005;
+const LEAST_COST_S = 0.01;
 /** Car, tow or wind, what the lap before left, and what is carried in are only told from here on. */
 const LEAST_CARRIED_S = 0.01;
 /** Arriving faster than the reference by this much can be why the rest of the corner is slow. */
