@@ -41,6 +41,8 @@ const SMALLEST_PX = 12;
 const GROWTH_PX = 24;
 const FOUND_PX = 13;
 const RING_PX = 22;
+/** A figure leads to its card, so that each keeps the room of a target for itself. */
+const TARGET_PX = 26;
 
 /** @returns null where the layout has no shape (speed only) */
 export function circuitPlan(view: ComparisonView): CircuitPlan | null {
@@ -90,14 +92,18 @@ export function circuitPlan(view: ComparisonView): CircuitPlan | null {
 			const height = word === 'found' ? RING_PX : sizePx * 0.8;
 			const outside = -handAt(path, corner.apexM, corner.direction) as 1 | -1;
 			const reach = 9 + Math.max(width, height) / 2;
+			const [roomX, roomY] = [Math.max(width + 4, TARGET_PX), Math.max(height + 4, TARGET_PX)];
 			const candidates = [outside, -outside as 1 | -1].flatMap((side, turn) =>
-				[0, 8, 18].map((further, far) => {
-					const [x, y] = beside(corner.apexM, side, reach + further);
-					return { x: x - width / 2, y: y - height / 2, width, height, centre: [x, y], penalty: turn * 2 + far };
-				})
+				[0, 8, 18, 30].flatMap((further, far) =>
+					[0, -18, 18, -34, 34].map((along, aside) => {
+						const [x, y] = beside(corner.apexM + along / frame.pxPerM, side, reach + further);
+						const penalty = turn * 2 + far * 1.5 + Math.ceil(aside / 2) * 3;
+						return { x: x - roomX / 2, y: y - roomY / 2, width: roomX, height: roomY, centre: [x, y], penalty };
+					})
+				)
 			);
 			const { chosen } = placeLabel(candidates, { points: obstacles, boxes, frame: frameBox });
-			boxes.push({ x: chosen.x - 2, y: chosen.y - 2, width: width + 4, height: height + 4 });
+			boxes.push({ x: chosen.x, y: chosen.y, width: roomX, height: roomY });
 			return [
 				{
 					corner: row.corner,

@@ -195,7 +195,7 @@ function annotate(chart: Chart, places: PlacedCorner): Pick<CornerCard, 'tags' |
 	);
 	const speed = canvases.get('speed');
 	const slowest = speed ? slowestLabel(speed.wide, places) : null;
-	const tags = orderedFindings(view.comparison, places.ledger.corner).flatMap(({ finding, number }) => {
+	const tags = orderedFindings(view.comparison, places.ledger.corner).told.flatMap(({ finding, number }) => {
 		const place = evidencePlace(finding, rows, window, places, view.path.lengthM, view.path.closed);
 		const canvas = place && canvases.get(place.row.key);
 		return place && canvas && number !== null ? [placeTag(number, finding.code, place.atM, canvas)] : [];

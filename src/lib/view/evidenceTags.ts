@@ -138,7 +138,9 @@ export function evidencePlace(
 	const row = rowKeys.map((key) => rows.find((r) => r.key === key && r.driver !== '')).find(Boolean);
 	const field = POINTS_AT[code];
 	const measured = field ? driver?.[field] : null;
-	const raw = measured ?? evidence.find((item) => item.atM !== null)?.atM ?? (code === 'exit_speed_low' ? endM : null);
+	const stated = evidence.find((item) => item.atM !== null)?.atM ?? null;
+	// An exit is slow where it ends; a card that cuts it points at what led to it.
+	const raw = code === 'exit_speed_low' && endM <= window.toM ? endM : (measured ?? stated);
 	if (!row || raw === null) return null;
 	const atM = nearestTurn(raw, apexM, lengthM, closed);
 	return atM >= window.fromM && atM <= window.toM ? { row, atM } : null;

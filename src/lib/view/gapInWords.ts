@@ -54,11 +54,11 @@ export function gapInWords(view: ComparisonView, speedUnit: SpeedUnit = 'kmh'): 
 	if (worst) {
 		const corner = view.corners.find((c) => c.number === worst.corner);
 		const where = cornerInWords(corner ?? { number: worst.corner, name: null });
-		const costly = orderedFindings(comparison, worst.corner).filter(
-			({ number, shareS }) => number !== null && (shareS ?? 0) >= SAID_FROM_S
+		const costly = orderedFindings(comparison, worst.corner).told.filter(
+			({ number, shareS }) => number !== null && shareS >= SAID_FROM_S
 		);
 		const causes = costly
-			.filter(({ shareS }) => (shareS ?? 0) >= (costly[0].shareS ?? 0) * SECOND_CAUSE_SHARE)
+			.filter(({ shareS }) => shareS >= costly[0].shareS * SECOND_CAUSE_SHARE)
 			.slice(0, 2)
 			.map(({ finding }) => clause(finding, speedUnit))
 			.filter((text) => text !== null);
@@ -110,8 +110,8 @@ export function clause(finding: Finding, speedUnit: SpeedUnit = 'kmh'): string |
 	const clauses: Record<FindingCode, string | null> = {
 		brake_early: `the brake comes${metres} early`,
 		brake_late: `the brake comes${metres} late`,
-		peak_over: 'the pedal goes deeper than the reference’s',
-		peak_under: 'the pedal stays above the reference’s',
+		peak_over: 'the brake is pressed harder than the reference’s',
+		peak_under: 'the brake stays lighter than the reference’s',
 		rise_quick: 'the brake goes on abruptly',
 		second_dab: 'the brake is pressed twice',
 		release_abrupt: 'the brake is let go abruptly',

@@ -21,7 +21,7 @@ export interface MiniCard {
 	parts: { name: 'entry' | 'mid' | 'exit'; text: string }[];
 	/** the largest cause, and the next one where there is room */
 	sentence: TextPart[];
-	/** "habit, 6 of 7 laps" */
+	/** "habit, 6 of 7" */
 	habit: string | null;
 	plan: { widthPx: number; heightPx: number; reference: string; driver: string } | null;
 	/** brake over speed on one drawing, WIDTH_UNITS wide; empty paths where a channel is absent */
@@ -90,7 +90,7 @@ export function miniCard(view: ComparisonView, number: number, domain: [number, 
 			lines.map((line) => line.segments),
 			ledger.totalS
 		),
-		habit: lines[0]?.habit?.text ?? null,
+		habit: lines[0]?.habit?.text.replace(/\u00a0laps?$/, '') ?? null,
 		plan: path.origin === 'speedOnly' || planTo <= planFrom ? null : miniPlan(view, planFrom, planTo, hand),
 		traces: {
 			heightPx: TRACES_PX,

@@ -132,9 +132,10 @@ describe('gapInWords', () => {
 describe('findingLines', () => {
 	it('puts what is told and the rest to the corner’s total, but for what is too little to tell', () => {
 		for (const row of typical.comparison.ledger.filter((r) => r.corner > 0)) {
-			const told = orderedFindings(typical.comparison, row.corner).reduce((sum, { shareS }) => sum + (shareS ?? 0), 0);
+			const { told, smaller } = orderedFindings(typical.comparison, row.corner);
+			const said = [...told, ...smaller].reduce((sum, { shareS }) => sum + shareS, 0);
 			const rest = typical.comparison.unexplained.find((u) => u.corner === row.corner)?.costS ?? NaN;
-			expect(Math.abs(told + rest - row.totalS)).toBeLessThan(0.02);
+			expect(Math.abs(said + rest - row.totalS)).toBeLessThan(0.02);
 		}
 	});
 	it('numbers what is measured here, and gives no ring to what is carried in', () => {
@@ -154,6 +155,26 @@ describe('findingLines', () => {
 			['brake_early', 1, 'about\u00a00.12\u00a0s\u00a0lost'],
 			['peak_over', 2, null]
 		]);
+	});
+	it('sums up what is too small for a line, and tells five at most', () => {
+		const small = [0.012, 0.009, -0.004].map((costS) =>
+			finding({ code: 'coasting', costS, shares: [{ corner: 4, costS }] })
+		);
+		const { lines, smaller } = findingLines(ledgerOf({ 4: 0.3 }, [finding(), ...small]).comparison, 4);
+		expect(lines).toHaveLength(2);
+		expect(smaller).toEqual({
+			text: 'Two smaller causes together',
+			cost: { text: 'about\u00a00.02\u00a0s\u00a0lost', word: 'lost' }
+		});
+		const many = findingLines(
+			ledgerOf(
+				{ 4: 0.3 },
+				Array.from({ length: 9 }, () => finding())
+			).comparison,
+			4
+		);
+		expect(many.lines).toHaveLength(5);
+		expect(many.smaller?.text).toBe('Four smaller causes together');
 	});
 	it('marks the reference’s value and says what is carried on', () => {
 		const comparison = ledgerOf({ 4: 0.3 }, [
