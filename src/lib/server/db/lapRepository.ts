@@ -14,7 +14,8 @@ import { decodeTrace, type StoredColumn } from './traceCodec.ts';
 
 const buffer = z.instanceof(Buffer);
 
-const headRowSchema = z.object({
+/** What `seenLaps` selects. */
+export const headRowSchema = z.object({
 	lap_id: z.number(),
 	lap_public_id: buffer,
 	number: z.number(),
@@ -173,19 +174,29 @@ export async function listLapRows(db: Knex, runIds: readonly number[]): Promise<
 	return byRun;
 }
 
-/** Metrics of every lap of the runs, keyed by run; lap numbers are those within their run. */
-export async function listMetrics(db: Knex, runIds: readonly number[]): Promise<Map<number, CornerMetrics[]>> {
+/** Metrics of every lap of a run, and which laps were clean; lap numbers are those within the run. */
+export interface RunMetrics {
+	metrics: CornerMetrics[];
+	cleanLaps: number[];
+}
+
+/** Metrics of the runs' laps, in driving order; keyed by run. */
+export async function listMetrics(db: Knex, runIds: readonly number[]): Promise<Map<number, RunMetrics>> {
 	const rows: Record<string, unknown>[] = await db('laps')
 		.join('lap_corner_metrics', 'lap_corner_metrics.lap_id', 'laps.id')
 		.whereIn('laps.run_id', runIds)
 		.orderBy(['laps.run_id', 'laps.ordinal', 'lap_corner_metrics.number'])
-		.select({ lap_run_id: 'laps.run_id', lap_number: 'laps.number' }, ...METRIC_COLUMN_LIST);
-	const byRun = new Map<number, CornerMetrics[]>();
+		.select(
+			{ lap_run_id: 'laps.run_id', lap_number: 'laps.number', lap_is_clean: 'laps.is_clean' },
+			...METRIC_COLUMN_LIST
+		);
+	const byRun = new Map<number, RunMetrics>();
 	for (const row of rows) {
-		const runId = Number(row.lap_run_id);
-		const metrics = byRun.get(runId) ?? [];
-		byRun.set(runId, metrics);
-		metrics.push(fromMetricsRow(Number(row.lap_number), row));
+		const [runId, lap] = [Number(row.lap_run_id), Number(row.lap_number)];
+		const run = byRun.get(runId) ?? { metrics: [], cleanLaps: [] };
+		byRun.set(runId, run);
+		run.metrics.push(fromMetricsRow(lap, row));
+		if (row.lap_is_clean === 1 && run.cleanLaps[run.cleanLaps.length - 1] !== lap) run.cleanLaps.push(lap);
 	}
 	return byRun;
 }

@@ -144,10 +144,17 @@ export async function release(db: Knex, job: ClaimedJob): Promise<void> {
 
 /** Returns jobs whose worker is gone to the queue. A job that took its worker with it every time is given up by its next claim. */
 export async function reap(db: Knex): Promise<number> {
-	return await db('jobs')
-		.where('status', 'running')
-		.where('heartbeat_at', '<', db.raw('CURRENT_TIMESTAMP(3) - INTERVAL ? MICROSECOND', [LOST_AFTER_MS * 1000]))
-		.update({ status: 'waiting', claimed_by: null, error_code: 'worker_lost', run_at: db.raw('CURRENT_TIMESTAMP(3)') });
+	return await retryOnDeadlock(db, (trx) =>
+		trx('jobs')
+			.where('status', 'running')
+			.where('heartbeat_at', '<', db.raw('CURRENT_TIMESTAMP(3) - INTERVAL ? MICROSECOND', [LOST_AFTER_MS * 1000]))
+			.update({
+				status: 'waiting',
+				claimed_by: null,
+				error_code: 'worker_lost',
+				run_at: db.raw('CURRENT_TIMESTAMP(3)')
+			})
+	);
 }
 
 /** The job was reaped and belongs to another worker now. */

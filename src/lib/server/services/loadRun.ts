@@ -68,7 +68,7 @@ export async function loadRun(viewer: Viewer, runId: string): Promise<RunView> {
 		laps,
 		corners: map.corners.map(({ corner }) => corner),
 		cells: map.cells,
-		spread: cornerSpreads(laps, metrics.get(run.run_id) ?? []),
+		spread: cornerSpreads(laps, metrics.get(run.run_id)?.metrics ?? []),
 		suggestion: suggestPair(viewer, runLaps, references),
 		references: toHeads(references, viewer),
 		mayEdit

@@ -25,6 +25,10 @@ export async function nameLayout(viewer: Viewer, layoutId: string, names: Layout
 			await trx('circuits').where({ id: layout.circuit_id }).update({ name: names.circuitName });
 		if (names.layoutName !== undefined)
 			await trx('layouts').where({ id: layout.id }).update({ name: names.layoutName });
+		// Answers that hold a name are kept under the time of the last change, also of a corner's.
+		await trx('layouts')
+			.where({ id: layout.id })
+			.update({ updated_at: trx.raw('CURRENT_TIMESTAMP(3)') });
 		for (const [cornerId, name] of Object.entries(names.corners ?? {})) {
 			const corner: unknown = await trx('corners')
 				.where({ public_id: decodePublicId(cornerId), layout_id: layout.id })
