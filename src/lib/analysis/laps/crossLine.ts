@@ -16,6 +16,8 @@ export interface Crossing {
 
 /** The car must cross within this angle of the line's direction: a path that crosses itself is no lap. */
 const LARGEST_ANGLE_COS = Math.cos((55 * Math.PI) / 180);
+/** A car that stands on the line does not cross it, whatever its receiver says. */
+const LEAST_KMH = 4;
 /** Distance to be driven between two crossings at least. */
 const LEAST_LAP_M = 100;
 /** Up to this noise the two positions beside the line say when it was crossed; above, a straight piece through its neighbours does. */
@@ -56,7 +58,7 @@ export function crossLine(line: StartLine, positions: Positions, channels: Chann
 		if (!(leftM <= line.leftM + 2 * noiseM && leftM >= -line.rightM - 2 * noiseM)) continue;
 		if (timeS[sample[j]] - timeS[sample[j - 1]] > LONGEST_STEP_S) continue;
 		if (headingCos(positions, j, ux, uy) < LARGEST_ANGLE_COS) continue;
-		if (distanceM[sample[j]] - lastDistance < LEAST_LAP_M) continue;
+		if (distanceM[sample[j]] - lastDistance < LEAST_LAP_M || channels.speedKmh[sample[j]] < LEAST_KMH) continue;
 		lastDistance = distanceM[sample[j]];
 		const atS = noiseM <= DIRECT_NOISE_M ? directTime(j, share) : (fittedTime(j) ?? directTime(j, share));
 		found.push({ atS, leftM, behind: j });

@@ -137,6 +137,30 @@ describe('placeRun', () => {
 		expect(worstMs(placeRun(patchy, reference.path).placed, timeAt)).toBeLessThan(5);
 	});
 
+	it('does not make laps out of a pause in the recording', () => {
+		const { channels, placeM } = recorded({ toLap: 4.1 });
+		const keep = Array.from(placeM.keys()).filter((i) => placeM[i] < 1.4 * L || placeM[i] > 1.7 * L);
+		const cut = (values: unknown) =>
+			values instanceof Float64Array ? Float64Array.from(keep, (i) => values[i]) : values;
+		const paused = Object.fromEntries(
+			Object.entries(channels).map(([name, values]) => [name, cut(values)])
+		) as typeof channels;
+		const resumed = { ...paused, timeS: paused.timeS.map((t, k) => (placeM[keep[k]] > 1.5 * L ? t + 300 : t)) };
+		const timed = placeRun(resumed, reference.path).placed.laps.filter(({ kind }) => kind === 'timed');
+		expect(timed).toHaveLength(4);
+		expect(timed.map(({ clean }) => clean)).toEqual([true, false, true, true]);
+		expect(timed[1].reasons).toContain('drop_out');
+	});
+
+	it('does not gain a lap by positions that are elsewhere on the circuit for some seconds', () => {
+		const { channels, placeM } = recorded({ toLap: 4.1 });
+		const away = (column: Float64Array) =>
+			column.map((value, i) => (placeM[i] > 1.4 * L && placeM[i] < 1.5 * L ? column[Math.max(i - 900, 0)] : value));
+		const lost = { ...channels, xM: away(channels.xM ?? placeM), yM: away(channels.yM ?? placeM) };
+		const timed = placeRun(lost, reference.path).placed.laps.filter(({ kind }) => kind === 'timed');
+		expect(timed).toHaveLength(4);
+	});
+
 	it('takes a shift of the whole recording for the receiver’s, not for a line', () => {
 		const { channels, timeAt } = recorded({ moveM: [1.6, -1.2] });
 		const { placed } = placeRun(channels, reference.path);

@@ -49,8 +49,12 @@ export function placeRun(
 	const positions = options.known ? options.known.positions : freshPositions(inFrame);
 	const marks = options.known?.marks ?? findMarks(inFrame, positions, null);
 	const usable = positions !== null && path.origin === 'positions';
-	const laid = usable ? byPositions(inFrame, positions, path, marks) : byDistance(inFrame, path, marks);
-	const unjudged: PlacedRun = { ...laid, placeM: fromFirstTurn(laid.placeM, path), channels: inFrame, path, laps: [] };
+	// a run that made the path belongs on it, even if it hardly moves
+	const laid =
+		(usable ? byPositions(inFrame, positions, path, marks, options.known !== undefined) : null) ??
+		byDistance(inFrame, path, marks, options.known !== undefined);
+	countFromFirstTurn(laid.placeM, path);
+	const unjudged: PlacedRun = { ...laid, channels: inFrame, path, laps: [] };
 	unjudged.laps = listLaps(unjudged, marks);
 	const placed = { ...unjudged, laps: judgeLaps(unjudged) };
 	return { placed, warnings: lapWarnings(placed) };
@@ -58,11 +62,22 @@ export function placeRun(
 
 type Laid = Pick<PlacedRun, 'placeM' | 'offsetM' | 'curvaturePerM'>;
 
-function byPositions(channels: Channels, positions: Positions, path: ReferencePath, marks: LapMarks): Laid {
+/** @returns null where the path's own run cannot be followed along it */
+function byPositions(
+	channels: Channels,
+	positions: Positions,
+	path: ReferencePath,
+	marks: LapMarks,
+	isOwn: boolean
+): Laid | null {
 	const geometry = geometryOfPath(path);
 	let tracked = trackOnPath(positions, channels, geometry);
-	if (tracked.reversed) throw mismatch('goes round the other way', 'Choose a reference driven in the same direction');
-	if (!(tracked.onPath >= LEAST_ON_PATH)) throw notHere();
+	if (tracked.reversed || !(tracked.onPath >= LEAST_ON_PATH)) {
+		if (isOwn) return null;
+		throw tracked.reversed
+			? mismatch('goes round the other way', 'Choose a reference driven in the same direction')
+			: notHere();
+	}
 	let moved = positions;
 	const shift = alignPositions(tracked, geometry);
 	if (shift) {
@@ -79,10 +94,10 @@ function byPositions(channels: Channels, positions: Positions, path: ReferencePa
 	};
 }
 
-function byDistance(channels: Channels, path: ReferencePath, marks: LapMarks): Laid {
+function byDistance(channels: Channels, path: ReferencePath, marks: LapMarks, isOwn: boolean): Laid {
 	const ways = Array.from(marks.crossingS, (t) => distanceAt(channels, t));
 	const usual = median(ways.slice(1).map((way, k) => way - ways[k]));
-	if (Math.abs(usual / path.lengthM - 1) > LARGEST_LENGTH_DIFFERENCE) throw notHere();
+	if (!isOwn && Math.abs(usual / path.lengthM - 1) > LARGEST_LENGTH_DIFFERENCE) throw notHere();
 	const placeM = stretchPlace(channels, marks, path);
 	placeByTrackDistance(placeM, channels, path, marks);
 	const reader = bendReader(channels, path.origin, steeringScaleFor(channels, placeM, path));
@@ -104,14 +119,13 @@ function shifted(positions: Positions, byX: number, byY: number): Positions {
 	return { ...positions, xM: positions.xM.map((x) => x + byX), yM: positions.yM.map((y) => y + byY) };
 }
 
-/** Places counted so that the first passage of the line is at 0. */
-function fromFirstTurn(placeM: Float64Array, { lengthM, closed }: ReferencePath): Float64Array {
+/** Counts places, in place, so that the first passage of the line is at 0. */
+function countFromFirstTurn(placeM: Float64Array, { lengthM, closed }: ReferencePath): void {
 	const { first, last } = placedEnds(placeM);
-	if (!closed || first > last) return placeM;
+	if (!closed || first > last) return;
 	const step = 1.6 * (placeM[Math.min(first + 1, last)] - placeM[first]);
-	const turn = Math.ceil((placeM[first] - step) / lengthM);
-	// a new column, because the ends of the old one are remembered with it
-	return turn === 0 ? placeM : placeM.map((place) => place - turn * lengthM);
+	const turnM = Math.ceil((placeM[first] - step) / lengthM) * lengthM;
+	if (turnM !== 0) for (let i = 0; i < placeM.length; i++) placeM[i] -= turnM;
 }
 
 function lapWarnings({ laps, path }: PlacedRun): Warning[] {

@@ -106,12 +106,18 @@ export function trackOnPath(positions: Positions, channels: Channels, path: Path
 		offsetM[from] = at.offsetM;
 		let last = from;
 		let expected = place;
+		let afterGap = false;
 		for (let j = from + direction; j >= 0 && j < n; j += direction) {
 			const before = direction > 0 ? j - 1 : j;
 			const way = wayTo(before + 1);
-			expected += direction * way;
-			driven += way;
 			const stepS = timeS[sample[before + 1]] - timeS[sample[before]];
+			if (stepS < LONGEST_STEP_S) {
+				expected += direction * way;
+				driven += way;
+			} else {
+				expected = place;
+				afterGap = true;
+			}
 			const lostS = Math.abs(timeS[sample[j]] - timeS[sample[last]]);
 			if (lostS < SEARCH_AFTER_S + stepS && stepS < LONGEST_STEP_S) {
 				at.moveTo(expected - turns * path.lengthM);
@@ -133,12 +139,8 @@ export function trackOnPath(positions: Positions, channels: Channels, path: Path
 			if (!(speedKmh[sample[j]] > COURSE_KMH)) continue;
 			const cos = at.search(xM[j], yM[j], course(j), FOUND_OFFSET_M);
 			if (!(cos > ALONG_COS && Math.abs(at.offsetM) < FOUND_OFFSET_M)) continue;
-			turns = path.closed ? Math.round((expected - at.placeM) / path.lengthM) : 0;
-			// a car does not go back a lap
-			if (direction * (at.placeM + turns * path.lengthM - place) < -STEP_SLACK_M * 4) {
-				if (!path.closed) continue;
-				turns += direction;
-			}
+			turns = turnsTo(at.placeM, place, expected, afterGap, direction);
+			afterGap = false;
 			place = at.placeM + turns * path.lengthM;
 			expected = place;
 			placeM[j] = place;
@@ -146,5 +148,16 @@ export function trackOnPath(positions: Positions, channels: Channels, path: Path
 			last = j;
 		}
 		return { driven, found };
+	}
+
+	/**
+	 * Whole turns to add to a place where the path is met again: those that the driven way says; behind a gap in the recording, which
+	 * says nothing about the way, as few as lie ahead.
+	 */
+	function turnsTo(found: number, lastPlace: number, expected: number, afterGap: boolean, direction: 1 | -1): number {
+		if (!path.closed) return 0;
+		if (!afterGap) return Math.round((expected - found) / path.lengthM);
+		const ahead = (lastPlace - direction * STEP_SLACK_M - found) / path.lengthM;
+		return direction > 0 ? Math.ceil(ahead) : Math.floor(ahead);
 	}
 }
