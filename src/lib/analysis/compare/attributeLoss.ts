@@ -3,7 +3,7 @@ import { KMH_PER_MPS } from '../../units.ts';
 import { fullThrottleAcceleration, type FullThrottleModel } from '../car/fullThrottle.ts';
 import { GapPools } from './gapPools.ts';
 import type { SpeedGap } from './speedGap.ts';
-import { CARRIED_IN, REST, type StagePlan } from './stages.ts';
+import { CARRIED_IN, poolOf, REST, type StagePlan } from './stages.ts';
 
 /** A gap below this is none: 1 mm/s at 50 m/s. */
 const NO_DEFICIT = 0.05;
@@ -23,7 +23,7 @@ export type LossTable = ReadonlyMap<number, Float64Array>;
  *
  * The speed gap at each metre is the sum of what each stage has added so far. Where the gap grows, the stage at that place is
  * charged with the growth; where it shrinks (the reference slows down for a corner that the driver has slowed down for already),
- * all shares shrink alike. The time lost in a metre follows the shares, so that a cause pays for what it carries down the next
+ * all shares shrink alike. What an early braking leaves at the lowest speed is a low minimum speed from there on. The time lost in a metre follows the shares, so that a cause pays for what it carries down the next
  * straight, and all shares sum to Δ. At full throttle the gap follows from the car's own acceleration by speed; what differs
  * from that beyond the model's scatter is charged to the straight.
  *
@@ -48,6 +48,12 @@ export function attributeLoss(
 		const { loss, gain, straight } = plan;
 		if (i > 0 && (loss[i] !== loss[i - 1] || gain[i] !== gain[i - 1])) {
 			if (straight[i - 1]) pools.cancel();
+			pools.settle();
+		}
+		const slowest = plan.slowest.get(i);
+		if (slowest !== undefined) {
+			for (const kind of ['coastBefore', 'approach'] as const)
+				pools.move(poolOf(slowest, kind), poolOf(slowest, 'rolling'));
 			pools.settle();
 		}
 		if (straight[i] && !straight[i - 1]) byModel = model !== null && departsFromModel(gap, plan, i, model);

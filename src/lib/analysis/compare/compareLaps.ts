@@ -1,11 +1,11 @@
 import type { Comparison, Corner, CornerMetrics } from '../../schemas/analysisDocument.ts';
 import type { FullThrottleModel } from '../car/fullThrottle.ts';
 import { countsOnce } from '../findings/countsOnce.ts';
-import { differenceOf } from '../findings/difference.ts';
+import { differenceOf, type MetricField } from '../findings/difference.ts';
 import { nameFindings } from '../findings/nameFindings.ts';
 import type { LapGrid } from '../model.ts';
 import { attributeLoss } from './attributeLoss.ts';
-import { cornerPlaces } from './cornerPlaces.ts';
+import { cornerPlaces, type CornerPlaces } from './cornerPlaces.ts';
 import { deltaTrace } from './deltaTrace.ts';
 import { cornerBorders, cutLedger } from './ledger.ts';
 import { ownLifts } from './ownLifts.ts';
@@ -52,13 +52,17 @@ export function compareLaps(input: CompareInput): Comparison {
 	const entries = borders.map(({ entryM }) => entryM);
 	const fromM = Math.max(Math.floor(Math.min(0, ...entries) - LEAD_M), -margin);
 	const gap = speedGap(driver.grid, reference.grid, fromM, Math.ceil(lengthM));
-	const idle = places.map((place) => {
+	const difference = (place: CornerPlaces, field: MetricField) => {
 		const of = (metrics: CornerMetrics[]) => metrics.find((m) => m.corner === place.number);
 		const pair = { driver: of(driver.metrics), reference: of(reference.metrics), apexM: place.apexM, lengthM };
-		const gapS = differenceOf(pair, 'idleGapS');
-		return gapS !== null && gapS.counts && gapS.by > 0;
-	});
-	const plan = planStages(places, entries, idle, driver.grid, reference.grid, fromM, Math.ceil(lengthM));
+		const found = differenceOf(pair, field);
+		return found?.counts ? found.by : 0;
+	};
+	const idle = places.map((place) => difference(place, 'idleGapS') > 0);
+	// where nobody brakes, the lift and the speed that it takes off are one thing
+	const slower = places.map((place) => place.driver.onsetM !== null && difference(place, 'minKmh') < 0);
+	const toM = Math.ceil(lengthM);
+	const plan = planStages(places, entries, idle, slower, driver.grid, reference.grid, fromM, toM);
 	const losses = attributeLoss(gap, plan, ledger, run.fullThrottle);
 	const clean = new Set(run.cleanLaps);
 	const findings = nameFindings({

@@ -60,6 +60,14 @@ export class GapPools {
 		this.#gap = next;
 	}
 
+	/** What one pool holds goes over to another. */
+	move(from: number, to: number): void {
+		const amount = this.parts[from];
+		if (amount === 0) return;
+		this.parts[from] = 0;
+		this.#add(to, amount);
+	}
+
 	/**
 	 * Parts against the gap's sign and as much of the others cancel each other: a tow makes up for a slow exit until the next corner,
 	 * which wipes out both. Without it two large parts would hide in a gap of nothing.

@@ -46,6 +46,8 @@ export interface StagePlan {
 	owner: Int16Array;
 	/** 1 where both laps are at full throttle */
 	straight: Uint8Array;
+	/** by index, the owner whose lowest speed is reached there: from then on what is left of an early braking is a low minimum speed */
+	slowest: Map<number, number>;
 }
 
 /** As in the definition of full throttle, with room for a pedal that does not quite reach its stop. */
@@ -64,10 +66,9 @@ const passed = (placeM: number, event: number | null): boolean => event !== null
 const opens = (placeM: number, event: number | null): boolean => passed(placeM + BLUR_M, event);
 const closes = (placeM: number, event: number | null): boolean => passed(placeM - BLUR_M, event);
 
-/** Without a pick-up a corner is slowed down for until both laps have reached their lowest speed. */
-function slowestM({ driver, reference, apexM, endM }: CornerPlaces): number {
-	const latest = Math.max(driver.minSpeedM ?? apexM, reference.minSpeedM ?? apexM);
-	return Math.min(latest, endM) + 2 * BLUR_M;
+/** Where both laps have reached their lowest speed, within the corner. */
+function bothSlowestM({ driver, reference, apexM, endM }: CornerPlaces): number {
+	return Math.min(Math.max(driver.minSpeedM ?? apexM, reference.minSpeedM ?? apexM), endM);
 }
 
 /** Stage of a loss while the reference has neither lifted nor braked: it is flat here, or its own braking is still to come. */
@@ -84,7 +85,9 @@ function lossStage(place: CornerPlaces, atM: number): StageKind | null {
 		if (pickedUp) return 'ramp';
 		return passed(atM, driver.releaseEndM) ? 'pickUp' : lossWhileReferenceDrives(place, atM);
 	}
-	if (opens(atM, reference.pickUpM ?? slowestM(place))) return pickedUp || driver.pickUpM === null ? 'ramp' : 'pickUp';
+	// without a pick-up a corner is slowed down for until both laps have reached their lowest speed
+	if (opens(atM, reference.pickUpM ?? bothSlowestM(place) + 2 * BLUR_M))
+		return pickedUp || driver.pickUpM === null ? 'ramp' : 'pickUp';
 	const braking = opens(atM, driver.onsetM) && !passed(atM, driver.releaseEndM ?? driver.pickUpM);
 	if (reference.onsetM === null) {
 		if (braking) return 'approach';
@@ -105,6 +108,7 @@ function brakesLater({ driver, reference }: CornerPlaces, atM: number): boolean 
  * @param places  numbered corners in driving order
  * @param entriesM where each corner's entry begins, unwrapped, as in the ledger before it is held to the lap
  * @param idle    for each corner, whether the driver's idle gap towards the next one counts
+ * @param slower  for each corner, whether the driver's minimum speed is lower
  * @param fromM   first whole metre
  * @param toM     last whole metre
  */
@@ -112,6 +116,7 @@ export function planStages(
 	places: readonly CornerPlaces[],
 	entriesM: readonly number[],
 	idle: readonly boolean[],
+	slower: readonly boolean[],
 	driver: LapGrid,
 	reference: LapGrid,
 	fromM: number,
@@ -162,5 +167,10 @@ export function planStages(
 		if (kind) loss[i] = poolOf(k, kind);
 		if (brakesLater(place, atM)) gain[i] = poolOf(k, 'lateBrake');
 	}
-	return { pools: 2 + (places.length + 1) * STAGE_KINDS.length, loss, gain, owner, straight };
+	const slowest = new Map<number, number>();
+	places.forEach((place, at) => {
+		const i = Math.round(bothSlowestM(place)) - fromM;
+		if (slower[at] && i > 0 && i < n) slowest.set(i, at + 1);
+	});
+	return { pools: 2 + (places.length + 1) * STAGE_KINDS.length, loss, gain, owner, straight, slowest };
 }

@@ -45,7 +45,6 @@ const LEAST_OFFSET_M = 0.8;
 /** What is worth a word beside the finding that it belongs to. */
 const LEAST_COASTING_S = 0.1;
 const LEAST_TOLD_M = 2;
-const LEAST_TOLD_KMH = 1;
 /** A peak nearer to the reference's than this explains no earlier onset. */
 const LEAST_PEAK_PCT = 5;
 /** An opening of the throttle longer than the reference's is a cause of its own from this share of the lateness on. */
@@ -84,9 +83,7 @@ export function causesOfEarlyBraking(c: CornerCase): CauseShare[] {
 		return whole(c.pair.driver?.onsetM != null && c.pair.reference ? cause(c, 'brake_early', 'onsetM') : null);
 	// the same onset: what the gap grew by here is the end of an earlier lift, or the beginning of a harder braking
 	if (!less(onset)) return less(differenceOf(c.pair, 'liftM')) ? causesBeforeBrake(c) : causesOfSlowing(c, true);
-	const minimum = differenceOf(c.pair, 'minKmh');
-	const slows = less(minimum) && -minimum.by >= LEAST_TOLD_KMH;
-	const early = cause(c, 'brake_early', 'onsetM', ...(slows ? (['minKmh'] as const) : []));
+	const early = cause(c, 'brake_early', 'onsetM');
 	const weak = weakPeak(c, onset);
 	const slack = Math.max(onset.plusMinus / -onset.by, ONE_CAUSE_SHARE);
 	if (!weak || weak.share <= slack) return whole(early);

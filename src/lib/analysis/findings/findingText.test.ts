@@ -28,11 +28,6 @@ const CASES: { code: FindingCode; evidence: Evidence[]; text: string }[] = [
 		text: 'Brakes at 412 m, where the reference does not brake.'
 	},
 	{
-		code: 'brake_early',
-		evidence: [evidence('onset', 'm', 903, 910, 903), evidence('minSpeed', 'km/h', 98, 101, 1040)],
-		text: 'Brakes 7 m early: at 903 m, not 910 m; slowest at 98 km/h, not 101 km/h.'
-	},
-	{
 		code: 'brake_late',
 		evidence: [evidence('onset', 'm', 425.3, 424.1, 425.3)],
 		text: 'Brakes 1.2 m late: at 425.3 m, not 424.1 m.'

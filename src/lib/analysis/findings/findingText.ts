@@ -53,9 +53,7 @@ const SENTENCES: Record<FindingCode, Sentence> = {
 		const verb = lift ? 'Lifts' : 'Brakes';
 		if (!first.hasReference)
 			return [`${verb} at `, first.driver, `, where the reference does not ${lift ? 'lift' : 'brake'}.`];
-		const slowest = find('minSpeed');
-		const slows = slowest ? ['; slowest at ', ...against(slowest)] : [];
-		return [`${verb} ${first.by} early: at `, ...against(first), ...slows, '.'];
+		return [`${verb} ${first.by} early: at `, ...against(first), '.'];
 	},
 	brake_late: (_, first) => [`Brakes ${first.by} late: at `, ...against(first), '.'],
 	peak_over: (find, first) => {

@@ -93,11 +93,11 @@ describe('nameFindings', () => {
 	});
 
 	it('splits an earlier onset between a weaker braking and the rest', () => {
-		// −8 m/s² needs 125 m for what −10 m/s² does in 100 m; the driver brakes 40 m early and then rolls
+		// −8 m/s² needs 120 m for what −10 m/s² does in under 100 m; the driver brakes 40 m early and then rolls
 		const lap = pointMassLap(
 			2,
 			START_MPS,
-			[{ toM: 260, mps2: 1 }, { toM: 382.5, mps2: -8, brakePct: 64 }, ...REFERENCE.slice(2)],
+			[{ toM: 260, mps2: 1 }, { toM: 380, mps2: -8, brakePct: 64 }, ...REFERENCE.slice(2)],
 			{ 1: { peakPct: 64 } }
 		);
 		const whole = pointMassLap(1, START_MPS, REFERENCE, { 1: { peakPct: 80 } });
@@ -105,6 +105,18 @@ describe('nameFindings', () => {
 		expect([first.code, second.code].sort()).toEqual(['brake_early', 'peak_under']);
 		expect(first.costS + second.costS).toBeCloseTo(compare(lap, whole).deltaS, 2);
 		expect(second.costS).toBeGreaterThan(0.2 * first.costS);
+	});
+
+	it('splits an early braking to a low minimum speed where the lowest speed is reached', () => {
+		// the same deceleration, 12 m early and 15 m longer: 17.3 m/s instead of 20
+		const lap = driven([{ toM: 288, mps2: 1 }, { toM: 392, mps2: -9.9, brakePct: 80 }, ...REFERENCE.slice(2)]);
+		const comparison = compare(lap, reference());
+		const found = said(comparison);
+		expect(found.map(({ code }) => code).sort()).toEqual(['brake_early', 'min_speed_low']);
+		expect(found[0].costS + found[1].costS).toBeCloseTo(comparison.deltaS, 2);
+		// the ledger's entry is what the early braking costs, the rest is carried from the low minimum on
+		const early = found.find(({ code }) => code === 'brake_early')?.costS ?? NaN;
+		expect(early).toBeGreaterThan(0.5 * comparison.ledger[1].entryS);
 	});
 
 	it('calls what a straight costs beyond arrival speed and full throttle the car, a tow or the wind', () => {
