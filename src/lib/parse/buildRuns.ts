@@ -1,21 +1,25 @@
-import type { SourceColumn, SourceSummary, Warning } from '../schemas/analysisDocument.ts';
-import { channelSchema } from '../schemas/channels.ts';
-import type { Channel } from '../schemas/channels.ts';
+import type { SourceSummary, Warning } from '../schemas/analysisDocument.ts';
 import { KerbnoteError } from '../schemas/kerbnoteError.ts';
-import { pick, range, typicalStep } from './columns.ts';
-import type { Column, Columns } from './columns.ts';
+import { pick, rangeOf } from './columns.ts';
+import type { Columns, Ranges } from './columns.ts';
+import { WHEEL_CHANNELS } from './convertWheels.ts';
+import { describeColumns } from './describeColumns.ts';
 import { readClockColumn } from './fileClock.ts';
 import type { FileClock } from './fileClock.ts';
+import { missingColumn } from './missingColumn.ts';
 import type { ColumnPlan } from './planColumns.ts';
 import type { RawRun } from './rawRun.ts';
-import type { RowNotes } from './rowNotes.ts';
 import { resolveUnits } from './resolveUnits.ts';
-import type { ResolvedUnits } from './resolveUnits.ts';
+import type { RowNotes } from './rowNotes.ts';
+import { MOTION_CHANNELS, speedFromWheels } from './speedFromWheels.ts';
+import { MIN_SAMPLES, splitRuns } from './splitRuns.ts';
 import { buildTimeline } from './timeline.ts';
 import type { Timeline } from './timeline.ts';
 
 export interface ReadTable {
 	columns: Columns;
+	/** of the columns as read */
+	ranges: Ranges;
 	/** 1-based line of the file for each row */
 	lines: Int32Array;
 	/** all columns of the file, in its order */
@@ -27,10 +31,6 @@ export interface ReadTable {
 	noteHeaders: readonly string[];
 	warnings: Warning[];
 }
-
-const MIN_SAMPLES = 10;
-const MOTION: readonly Channel[] = ['speed', 'distance', 'lapDistance', 'latitude', 'positionX'];
-const WHEELS: readonly Channel[] = ['wheelSpeedFl', 'wheelSpeedFr', 'wheelSpeedRl', 'wheelSpeedRr'];
 
 /**
  * Turns the columns as read into runs: one clock that runs forward, house units, one run per outing.
@@ -44,9 +44,9 @@ export function buildRuns(table: ReadTable): RawRun[] {
 	for (const plan of plans) if (plan.channel) byChannel.set(plan.channel, plan);
 	const timePlan = byChannel.get('time') ?? byChannel.get('lapTime');
 	const timeColumn = timePlan?.channel ? columns.get(timePlan.channel) : undefined;
-	if (!timePlan || !timeColumn) throw missing('missing_time', 'time', plans);
-	if (!MOTION.some((channel) => columns.has(channel)))
-		throw missing('missing_speed', 'speed, distance or position', plans);
+	if (!timePlan || !timeColumn) throw missingColumn('missing_time', 'time', plans);
+	const moves = [...MOTION_CHANNELS, ...WHEEL_CHANNELS].some((channel) => columns.has(channel));
+	if (!moves) throw missingColumn('missing_speed', 'speed, distance or position', plans);
 	if (timeColumn.length === 0) {
 		throw new KerbnoteError(
 			'no_data_rows',
@@ -82,8 +82,10 @@ export function buildRuns(table: ReadTable): RawRun[] {
 		);
 	}
 	const otherTimes = convertLapTimes(columns, byChannel);
-	const relabelled = relabelRestartingDistance(columns, byChannel);
-	const resolved = resolveUnits(columns, timeline.seconds, byChannel);
+	// Rows that were left out (a footer's maxima) may have set a range.
+	const ranges = timeline.kept ? rangesOf(columns) : table.ranges;
+	relabelRestartingDistance(columns, ranges, byChannel);
+	const resolved = resolveUnits(columns, ranges, timeline.seconds, byChannel);
 	const speedWarnings = speedFromWheels(columns, byChannel, resolved);
 	for (const [channel, label] of otherTimes) resolved.units.set(channel, label);
 	resolved.units.set(timePlan.channel ?? 'time', clock.label);
@@ -99,20 +101,17 @@ export function buildRuns(table: ReadTable): RawRun[] {
 		...resolved.warnings,
 		...speedWarnings
 	];
-	const described = describeColumns(table, byChannel, columns, resolved, relabelled, clock.seconds, timePlan);
-	return splitRuns(table, { timeline, lines, clock, warnings, described, resolved });
-}
-
-function missing(code: 'missing_time' | 'missing_speed', what: string, plans: readonly ColumnPlan[]): KerbnoteError {
-	const headers = plans
-		.slice(0, 12)
-		.map(({ header }) => header.slice(0, 40))
-		.join(', ');
-	return new KerbnoteError(
-		code,
-		`no column for ${what} was recognised among: ${headers}`,
-		`Export the run with ${what}, or say on the upload page which column it is`
-	);
+	return splitRuns({
+		columns,
+		seconds: timeline.seconds,
+		splits: timeline.splits,
+		lines,
+		epochMs: clock.epochMs,
+		source: table.source,
+		described: describeColumns(plans, byChannel, ranges, resolved.units, clock.seconds),
+		resolved,
+		warnings
+	});
 }
 
 function keepRows(columns: Columns, lines: Int32Array, { kept, seconds }: Timeline): Int32Array {
@@ -133,52 +132,24 @@ function convertLapTimes(columns: Columns, plans: ReadonlyMap<string, ColumnPlan
 	return labels;
 }
 
+function rangesOf(columns: Columns): Ranges {
+	return new Map([...columns].map(([channel, column]) => [channel, rangeOf(column)]));
+}
+
 /** A distance that falls back to nothing again and again is counted from the line: a lap distance. */
-function relabelRestartingDistance(columns: Columns, plans: Map<string, ColumnPlan>): boolean {
+function relabelRestartingDistance(columns: Columns, ranges: Ranges, plans: Map<string, ColumnPlan>): void {
 	const distance = columns.get('distance');
-	if (!distance || columns.has('lapDistance')) return false;
-	const { min, max } = range(distance);
-	const span = max - min;
+	if (!distance || columns.has('lapDistance')) return;
+	const range = ranges.get('distance') ?? rangeOf(distance);
+	const span = range.max - range.min;
 	let restarts = 0;
 	for (let i = 1; i < distance.length; i++) if (distance[i] < distance[i - 1] - 0.4 * span) restarts++;
-	if (restarts === 0) return false;
+	if (restarts === 0) return;
 	columns.set('lapDistance', distance);
+	ranges.set('lapDistance', range);
 	columns.delete('distance');
 	const plan = plans.get('distance');
 	if (plan) plans.set('lapDistance', plan);
-	return true;
-}
-
-/** Without any speed the wheels' own stands in: the middle of them, which a single locked or spinning one does not move. */
-function speedFromWheels(columns: Columns, plans: ReadonlyMap<string, ColumnPlan>, resolved: ResolvedUnits): Warning[] {
-	const named = plans.get('speed')?.header;
-	if (named && /wheel|rad|roue|rueda|ruota|roda|wiel|車輪/i.test(named)) {
-		return [
-			{
-				code: 'speed_from_wheel',
-				message: `speed is a wheel's ("${named}"): it is wrong where the wheel slips`,
-				row: null
-			}
-		];
-	}
-	const wheels = WHEELS.flatMap((channel) => columns.get(channel) ?? []);
-	if (MOTION.some((channel) => columns.has(channel)) || wheels.length === 0) return [];
-	if (resolved.wheelUnit !== 'kmh') throw missing('missing_speed', 'speed, distance or position', [...plans.values()]);
-	const speed = new Float32Array(wheels[0].length);
-	const values = new Float64Array(wheels.length);
-	for (let i = 0; i < speed.length; i++) {
-		for (let wheel = 0; wheel < wheels.length; wheel++) values[wheel] = wheels[wheel][i];
-		values.sort();
-		speed[i] = (values[(values.length - 1) >> 1] + values[values.length >> 1]) / 2;
-	}
-	columns.set('speed', speed);
-	return [
-		{
-			code: 'speed_from_wheel',
-			message: 'the file has no speed; the middle of the wheel speeds stands in, which is wrong where they slip',
-			row: null
-		}
-	];
 }
 
 function timeWarnings(timeline: Timeline, lines: Int32Array, allLines: Int32Array, clock: FileClock): Warning[] {
@@ -207,106 +178,4 @@ function duplicateWarnings(plans: readonly ColumnPlan[]): Warning[] {
 					}
 				]
 	);
-}
-
-function describeColumns(
-	table: ReadTable,
-	byChannel: ReadonlyMap<string, ColumnPlan>,
-	columns: Columns,
-	resolved: ResolvedUnits,
-	relabelled: boolean,
-	seconds: Float64Array,
-	timePlan: ColumnPlan
-): SourceColumn[] {
-	return table.plans.map((plan): SourceColumn => {
-		const used = plan.channel !== null && byChannel.get(plan.channel) === plan;
-		const channel = used && relabelled && plan.channel === 'distance' ? 'lapDistance' : plan.channel;
-		const published = channelSchema.safeParse(used ? channel : null);
-		const column = plan === timePlan ? seconds : used && channel ? columns.get(channel) : undefined;
-		const { min, max } = column ? range(column) : { min: NaN, max: NaN };
-		return {
-			header: plan.header,
-			channel: published.success ? published.data : null,
-			unit: (channel && resolved.units.get(channel)) ?? plan.unit?.id ?? '',
-			confidence: Math.round(plan.confidence * 100) / 100,
-			min: Number.isFinite(min) ? min : null,
-			max: Number.isFinite(max) ? max : null,
-			samples: plan.samples
-		};
-	});
-}
-
-interface Parts {
-	timeline: Timeline;
-	lines: Int32Array;
-	clock: FileClock;
-	warnings: Warning[];
-	described: SourceColumn[];
-	resolved: ResolvedUnits;
-}
-
-function splitRuns(table: ReadTable, { timeline, lines, clock, warnings, described, resolved }: Parts): RawRun[] {
-	const starts = [0, ...timeline.splits];
-	const spans = starts
-		.map((from, i) => ({ from, to: starts[i + 1] ?? timeline.seconds.length }))
-		.filter(({ from, to }) => to - from >= MIN_SAMPLES);
-	if (spans.length === 0) {
-		throw new KerbnoteError(
-			'time_not_increasing',
-			'time jumps back again and again, so that no stretch of the file is a run',
-			'Export the run again, sorted by time',
-			{ row: lines[starts[1] ?? 0] }
-		);
-	}
-	if (spans.length > 1) {
-		warnings.push({
-			code: 'more_runs',
-			message: `the file holds ${spans.length} runs; the second begins in row ${lines[spans[1].from]}`,
-			row: lines[spans[1].from]
-		});
-	}
-	return spans.map(({ from, to }): RawRun => {
-		const seconds = timeline.seconds.slice(from, to);
-		const startedAtMs = clock.epochMs === null ? null : clock.epochMs + Math.round(seconds[0] * 1000);
-		const zero = seconds[0];
-		for (let i = 0; i < seconds.length; i++) seconds[i] -= zero;
-		const columns: RawRun['columns'] = {};
-		for (const [channel, column] of table.columns) {
-			const published = channelSchema.exclude(['time']).safeParse(channel);
-			if (published.success) columns[published.data] = cut(column, from, to);
-		}
-		const source: SourceSummary = {
-			...table.source,
-			rows: to - from,
-			sampleRateHz: sampleRate(seconds),
-			columns: described,
-			warnings: [...warnings]
-		};
-		return {
-			source,
-			timeS: seconds,
-			fileRow: lines.slice(from, to),
-			columns,
-			brakeUnit: resolved.brakeUnit,
-			wheelUnit: resolved.wheelUnit,
-			startedAtMs
-		};
-	});
-}
-
-function cut(column: Column, from: number, to: number): Column {
-	return from === 0 && to === column.length ? column : column.slice(from, to);
-}
-
-/** Samples per second, from the steps near the usual one: pauses do not count. */
-function sampleRate(seconds: Float64Array): number {
-	const usual = typicalStep(seconds);
-	let [sum, count] = [0, 0];
-	for (let i = 1; i < seconds.length; i++) {
-		const step = seconds[i] - seconds[i - 1];
-		if (step > 1.5 * usual) continue;
-		sum += step;
-		count++;
-	}
-	return sum > 0 ? Math.round((count / sum) * 1000) / 1000 : 0;
 }

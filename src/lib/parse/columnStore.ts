@@ -1,11 +1,17 @@
-/** Rows per block: 1024 rows × 30 columns × 8 bytes stay inside a second-level cache while a block is turned into columns. */
-export const BLOCK_ROWS = 1024;
+/** Rows per block: 128 rows × 30 columns × 8 bytes stay inside a first-level cache while a block is turned into columns. */
+export const BLOCK_ROWS = 128;
 /** Rows per page: pages are joined once at the end, so nothing is copied while the file grows and the slack is one page a column. */
 const PAGE_ROWS = 65_536;
 /** Room for a wrongly announced size is bounded: a full day at 100 Hz. */
 const MAX_PAGE_ROWS = 8_640_000;
 
 type Column = Float64Array | Float32Array;
+
+/** Least and largest value; both NaN where there is none. */
+export interface Range {
+	min: number;
+	max: number;
+}
 
 /**
  * Takes rows of numbers and keeps them as columns, without knowing how many will come.
@@ -26,6 +32,9 @@ export class ColumnStore {
 	#linePages: Int32Array[] = [];
 
 	readonly #pageRows: number;
+	/** by slot */
+	readonly #least: Float64Array;
+	readonly #largest: Float64Array;
 
 	/**
 	 * @param wide one entry per slot: true keeps 64 bits (time, distances, positions, lap), false 32
@@ -35,6 +44,8 @@ export class ColumnStore {
 		this.#wide = wide;
 		this.#pageRows = Math.min(MAX_PAGE_ROWS, Math.max(PAGE_ROWS, expectedRows));
 		this.#pages = wide.map(() => []);
+		this.#least = new Float64Array(wide.length).fill(Infinity);
+		this.#largest = new Float64Array(wide.length).fill(-Infinity);
 		this.block = new Float64Array(BLOCK_ROWS * Math.max(1, wide.length));
 	}
 
@@ -50,6 +61,7 @@ export class ColumnStore {
 				const column = this.#pages[slot][page];
 				if (column instanceof Float64Array) copyWide(this.block, done, take, this.#wide.length, slot, column, at);
 				else copyNarrow(this.block, done, take, this.#wide.length, slot, column, at);
+				this.#widen(slot, done, take);
 			}
 			this.#linePages[page].set(this.blockLines.subarray(done, done + take), at);
 			done += take;
@@ -58,7 +70,7 @@ export class ColumnStore {
 	}
 
 	/** Joins the pages, or hands the only one over; the store is empty afterwards. */
-	finish(): { columns: Column[]; lines: Int32Array; rows: number } {
+	finish(): { columns: Column[]; ranges: Range[]; lines: Int32Array; rows: number } {
 		const rows = this.rows;
 		const columns = this.#wide.map((wide, slot): Column => {
 			const pages = this.#pages[slot];
@@ -73,7 +85,24 @@ export class ColumnStore {
 				: joinPages(this.#linePages, new Int32Array(rows), this.#pageRows);
 		this.#linePages = [];
 		this.rows = 0;
-		return { columns, lines, rows };
+		const ranges = Array.from(this.#least, (min, slot) =>
+			min <= this.#largest[slot] ? { min, max: this.#largest[slot] } : { min: NaN, max: NaN }
+		);
+		return { columns, ranges, lines, rows };
+	}
+
+	/** Takes the block's values into the slot's range while they are still in the cache. */
+	#widen(slot: number, from: number, count: number): void {
+		const { block } = this;
+		const slots = this.#wide.length;
+		let [least, largest] = [this.#least[slot], this.#largest[slot]];
+		for (let i = 0, at = from * slots + slot; i < count; i++, at += slots) {
+			const value = block[at];
+			if (value < least) least = value;
+			if (value > largest) largest = value;
+		}
+		this.#least[slot] = least;
+		this.#largest[slot] = largest;
 	}
 
 	#addPage(): void {

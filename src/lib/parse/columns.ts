@@ -1,10 +1,14 @@
 import type { Channel } from '../schemas/channels.ts';
+import type { Range } from './columnStore.ts';
 import type { HelperColumn } from './recogniseColumns.ts';
 
 export type Column = Float64Array | Float32Array;
 
 /** The columns of a file by channel while they are worked on; all of one length. */
 export type Columns = Map<Channel | HelperColumn, Column>;
+
+/** Least and largest value by channel, kept in step with the columns. */
+export type Ranges = Map<Channel | HelperColumn, Range>;
 
 /** Channels that need more than the 24 bits of a single: a longitude to a millimetre, an epoch to a millisecond. */
 const WIDE: ReadonlySet<string> = new Set([
@@ -50,13 +54,13 @@ export function quantile(column: ArrayLike<number>, share: number): number {
 	return sorted[Math.min(count - 1, Math.max(0, Math.round(share * (count - 1))))];
 }
 
-/** Least and largest finite value; both NaN where there is none. */
-export function range(column: Column): { min: number; max: number } {
+/** Least and largest value of a column; both NaN where there is none. */
+export function rangeOf(column: Column): Range {
 	let [min, max] = [Infinity, -Infinity];
 	for (let i = 0; i < column.length; i++) {
 		const value = column[i];
-		if (value < min && value !== -Infinity) min = value;
-		if (value > max && value !== Infinity) max = value;
+		if (value < min) min = value;
+		if (value > max) max = value;
 	}
 	return min <= max ? { min, max } : { min: NaN, max: NaN };
 }

@@ -33,7 +33,7 @@ const WORDS = new Map<string, number>([
  */
 export function readNumber(text: string, decimal: '.' | ','): number | undefined {
 	let cell = text.trim();
-	if (decimal === '.' && PLAIN.test(cell)) return Number(cell);
+	if (decimal === '.' && PLAIN.test(cell)) return finite(cell);
 	if (MISSING.test(cell)) return NaN;
 	if (!isAscii(cell))
 		cell = cell.replace(MINUS, '-').replace(GROUP_SPACE, '').normalize('NFKC').replace(MINUS, '-').trim();
@@ -42,14 +42,20 @@ export function readNumber(text: string, decimal: '.' | ','): number | undefined
 		.trim()
 		.replace(GROUP_SPACE, '');
 	cell = withPoint(cell, decimal);
-	if (PLAIN.test(cell)) return Number(cell);
+	if (PLAIN.test(cell)) return finite(cell);
 	const unit = TRAILING_UNIT.exec(cell);
 	const bare = unit && readUnit(unit[1]).length > 0 ? cell.slice(0, unit.index) : cell;
-	if (PLAIN.test(bare)) return Number(bare);
+	if (PLAIN.test(bare)) return finite(bare);
 	const grouped = withPoint(bare, decimal);
-	if (PLAIN.test(grouped)) return Number(grouped);
+	if (PLAIN.test(grouped)) return finite(grouped);
 	if (MISSING.test(cell)) return NaN;
 	return WORDS.get(cell.toLowerCase());
+}
+
+/** Beyond the largest double there is no value. */
+function finite(cell: string): number {
+	const value = Number(cell);
+	return Number.isFinite(value) ? value : NaN;
 }
 
 function isAscii(text: string): boolean {

@@ -109,7 +109,7 @@ describe('RunReader', () => {
 				expect(Array.from(run.columns.steering ?? [])).toEqual(rows.map(({ steering }) => Math.fround(steering / 100)));
 				expect(run.fileRow[0]).toBe(written.preamble + (inHeader ? 2 : 3));
 			}),
-			{ numRuns: 150, seed: 7 }
+			{ numRuns: 100, seed: 7 }
 		);
 	});
 
@@ -158,7 +158,7 @@ describe('RunReader', () => {
 					if (!(error instanceof KerbnoteError)) throw error;
 				}
 			}),
-			{ numRuns: 1500, seed: 11 }
+			{ numRuns: 1000, seed: 11 }
 		);
 		expect(performance.now() - started).toBeLessThan(60_000);
 	});
@@ -210,14 +210,13 @@ describe('ByteScanner', () => {
 					const { columns, rows: count } = store.finish();
 					const expected = Papa.parse<string[]>(text, { delimiter: ',', newline: lineEnd }).data;
 					expect(count).toBe(expected.length);
-					expected.forEach((cells, row) =>
-						cells.forEach((value, column) =>
-							expect(columns[column][row], value).toBe(value.trim() === '' ? NaN : Number(value))
-						)
+					const wrong = expected.flatMap((cells, row) =>
+						cells.filter((value, column) => !Object.is(columns[column][row], value.trim() === '' ? NaN : Number(value)))
 					);
+					expect(wrong).toEqual([]);
 				}
 			),
-			{ numRuns: 300, seed: 3 }
+			{ numRuns: 150, seed: 3 }
 		);
 	});
 
@@ -234,7 +233,7 @@ describe('ByteScanner', () => {
 				reader.end();
 				expect(scanned.finish()).toEqual(parsed.finish());
 			}),
-			{ numRuns: 200, seed: 5 }
+			{ numRuns: 100, seed: 5 }
 		);
 	});
 

@@ -4,7 +4,7 @@ import { KerbnoteError } from '../schemas/kerbnoteError.ts';
 import { buildRuns } from './buildRuns.ts';
 import { ByteScanner } from './byteScanner.ts';
 import { isWide } from './columns.ts';
-import type { Columns } from './columns.ts';
+import type { Columns, Ranges } from './columns.ts';
 import { ColumnStore } from './columnStore.ts';
 import { decoderLabel, detectEncoding } from './encoding.ts';
 import type { DetectedEncoding } from './encoding.ts';
@@ -190,10 +190,13 @@ export class RunReader {
 	}
 
 	#finish({ table, plans, store, notes, kept }: Reading): RawRun[] {
-		const { columns, lines } = store.finish();
+		const { columns, ranges, lines } = store.finish();
 		const byChannel: Columns = new Map();
+		const rangeByChannel: Ranges = new Map();
 		kept.forEach((plan, slot) => {
-			if (plan.channel) byChannel.set(plan.channel, columns[slot]);
+			if (!plan.channel) return;
+			byChannel.set(plan.channel, columns[slot]);
+			rangeByChannel.set(plan.channel, ranges[slot]);
 		});
 		const encoding = this.#encoding?.encoding ?? 'utf-8';
 		const warnings: Warning[] = [];
@@ -202,6 +205,7 @@ export class RunReader {
 		}
 		return buildRuns({
 			columns: byChannel,
+			ranges: rangeByChannel,
 			lines,
 			plans,
 			notes,
