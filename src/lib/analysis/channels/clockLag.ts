@@ -10,7 +10,7 @@ const LEAST_CORRELATION = 0.8;
 /** By how much the best lag must fit better than none. */
 const LEAST_GAIN = 0.01;
 const GAIN_HALF_SPAN_S = 0.1;
-const MAX_SAMPLES = 12_000;
+const MAX_SAMPLES = 5000;
 
 /**
  * By how much one speed's clock lags another's: the shift that lays their accelerations on each other best, with a parabola through the

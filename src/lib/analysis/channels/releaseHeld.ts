@@ -3,6 +3,9 @@ const MIN_STEPS = 40;
 /** Share of the steps that must have the usual length, give or take a sample where it is long. */
 const REGULAR_SHARE = 0.9;
 const LONGEST_STEP = 60;
+/** A staircase of steps of two repeats every second value; fewer repeats, and the runs need not be looked at. */
+const LEAST_REPEATED = 0.4;
+const MAX_LOOKS = 10_000;
 
 /**
  * Finds a channel that was sampled more slowly than the file and repeats its last value in between (a staircase of equal steps), and
@@ -14,6 +17,7 @@ const LONGEST_STEP = 60;
  * @returns the step in samples; 1 where the channel is no staircase
  */
 export function releaseHeld(values: Float64Array): number {
+	if (repeatedShare(values) < LEAST_REPEATED) return 1;
 	const counts = new Int32Array(LONGEST_STEP + 1);
 	let steps = 0;
 	forEachRun(values, (_, length) => {
@@ -40,6 +44,16 @@ export function releaseHeld(values: Float64Array): number {
 		for (let i = from; i < end; i++) values[i] = NaN;
 	});
 	return usual;
+}
+
+function repeatedShare(values: Float64Array): number {
+	const stride = Math.max(1, Math.floor(values.length / MAX_LOOKS));
+	let [repeated, looks] = [0, 0];
+	for (let i = 1; i < values.length; i += stride) {
+		looks++;
+		if (values[i] === values[i - 1]) repeated++;
+	}
+	return repeated / Math.max(1, looks);
 }
 
 /** Calls back for each run of equal values. */
