@@ -44,7 +44,8 @@ export function layoutName({ name, circuit }: Named) {
 	return isOwn ? `${circuit.name}, ${name}` : circuit.name;
 }
 
-/** As `layoutName`, for the middle of a sentence: what nobody has named yet is said to be that. */
-export function layoutInSentence(layout: Named) {
-	return layout.circuit.name.toLowerCase() === UNNAMED_CIRCUIT ? 'a circuit without a name yet' : layoutName(layout);
+/** Where, within a sentence: "at Vallmere Park, short"; what nobody has named yet is said to be that. */
+export function atLayout(layout: Named) {
+	const isUnnamed = layout.circuit.name.toLowerCase() === UNNAMED_CIRCUIT;
+	return isUnnamed ? 'on a circuit without a name yet' : `at ${layoutName(layout)}`;
 }

@@ -3,7 +3,7 @@ import { channelSchema } from '../schemas/channels.ts';
 import { CHANNEL_ORDER } from './channels.ts';
 import { deviceName } from './device.ts';
 import { describeLap } from './laps.ts';
-import { layoutInSentence, layoutName, runName } from './runs.ts';
+import { atLayout, layoutName, runName } from './runs.ts';
 import { describeSource } from './source.ts';
 import { describeUpload, isSettled } from './uploads.ts';
 import { warningText } from './warnings.ts';
@@ -52,13 +52,11 @@ describe('names of runs and layouts', () => {
 	});
 });
 
-describe('layoutInSentence', () => {
+describe('atLayout', () => {
 	it('does not set a stand-in as if it were a name', () => {
 		const circuit = { id: 'x', name: 'Unnamed circuit' };
-		expect(layoutInSentence({ name: 'Full layout', circuit })).toBe('a circuit without a name yet');
-		expect(layoutInSentence({ name: 'short', circuit: { id: 'x', name: 'Vallmere Park' } })).toBe(
-			'Vallmere Park, short'
-		);
+		expect(atLayout({ name: 'Full layout', circuit })).toBe('on a circuit without a name yet');
+		expect(atLayout({ name: 'short', circuit: { id: 'x', name: 'Vallmere Park' } })).toBe('at Vallmere Park, short');
 	});
 });
 

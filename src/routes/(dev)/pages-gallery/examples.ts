@@ -1,3 +1,4 @@
+import type { Channel } from '$lib/schemas/channels';
 import type {
 	LapHead,
 	LapRow,
@@ -229,9 +230,7 @@ export const emptyNotebook: NotebookView = { ...notebook, pages: [], latestRuns:
 
 const column = (
 	header: string,
-	channel: UploadView['runs'][number] extends never
-		? never
-		: 'time' | 'speed' | 'brake' | 'throttle' | 'steering' | 'gear' | 'lap' | null,
+	channel: Channel | null,
 	unit: string,
 	samples: string,
 	min: number,

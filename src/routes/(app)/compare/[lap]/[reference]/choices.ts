@@ -47,16 +47,20 @@ export function referenceChoices(
 	});
 }
 
-/** The other laps of the driver's run. */
+/** The laps of the driver's run; the best clean one and the median one are said, for they answer different questions. */
 export function lapChoices({ driver, reference, runLaps }: ComparisonView): LapChoice[] {
+	const clean = runLaps.filter((lap) => lap.clean).sort((a, b) => a.timeS - b.timeS);
+	const best = clean[0];
+	const median = clean.length > 2 ? clean[Math.floor((clean.length - 1) / 2)] : undefined;
 	return runLaps
 		.filter((lap) => lap.id !== reference.id)
 		.map((lap) => {
 			const label = driverLabel(lap);
+			const role = lap.id === best?.id ? ', the best' : lap.id === median?.id ? ', the median' : '';
 			return {
 				key: lap.id,
 				href: compareHref(lap, reference),
-				name: label.which,
+				name: label.which + role,
 				time: label.time,
 				state: label.state,
 				current: lap.id === driver.id

@@ -1,0 +1,54 @@
+import { describe, expect, it } from 'vitest';
+import type { ComparisonView, LapHead } from '$lib/schemas/views';
+import { exampleComparison } from '$lib/view/example/exampleComparison';
+import { compareKick, lapChoices, referenceChoices } from './choices';
+
+const example = exampleComparison();
+const lap = (number: number, timeS: number, changes: Partial<LapHead> = {}): LapHead => ({
+	...example.driver,
+	id: `lap-${number}`,
+	number,
+	timeS,
+	...changes
+});
+const view: ComparisonView = {
+	...example,
+	driver: lap(4, 99),
+	runLaps: [lap(2, 101), lap(3, 98.5), lap(4, 99), lap(5, 98, { clean: false })]
+};
+
+describe('choices of laps', () => {
+	it('say which lap is the best clean one and which the median', () => {
+		expect(lapChoices(view).map(({ name, current }) => [name, current])).toEqual([
+			['lap\u00a02', false],
+			['lap\u00a03, the best', false],
+			['lap\u00a04, the median', true],
+			['lap\u00a05', false]
+		]);
+	});
+	it('keep the reference where the lap changes, and the lap where the reference does', () => {
+		expect(lapChoices(view)[0].href).toBe(`/compare/lap-2/${view.reference.id}`);
+		expect(referenceChoices(view, {})[0].href).toBe(`/compare/lap-4/${view.reference.id}`);
+	});
+	it('never offer a lap against itself', () => {
+		const own = { ...view, reference: view.runLaps[1] };
+		expect(lapChoices(own).map(({ key }) => key)).not.toContain('lap-3');
+		expect(referenceChoices({ ...view, otherReferences: [view.driver] }, {}).map(({ key }) => key)).toEqual([
+			view.reference.id
+		]);
+	});
+	it('put the present reference first, and say so', () => {
+		const others = { ...view, otherReferences: [lap(9, 97, { driver: example.reference.driver })] };
+		expect(referenceChoices(others, {}).map(({ current }) => current)).toEqual([true, false]);
+	});
+});
+
+describe('compareKick', () => {
+	it('says where the driver’s lap was driven, and leaves out what is not known', () => {
+		const now = new Date('2026-06-01T00:00:00Z');
+		expect(compareKick(view, { now })).toBe('Vallmere Park, grand prix · 3\u00a0621\u00a0m · Brindle GT · 14\u00a0May');
+		expect(compareKick({ ...view, driver: { ...view.driver, car: null, startedAt: null } }, {})).toBe(
+			'Vallmere Park, grand prix · 3\u00a0621\u00a0m'
+		);
+	});
+});
