@@ -21,7 +21,8 @@ export interface EvidenceTag {
 	narrow: [number, number];
 }
 
-const ROW_OF: Record<FindingCode, readonly RowKey[]> = {
+/** Rows that show a finding, the best first; a finding that is not named here is seen in the speed. */
+const ROW_OF: Partial<Record<FindingCode, readonly RowKey[]>> = {
 	brake_early: ['brake', 'speed'],
 	brake_late: ['brake', 'speed'],
 	peak_over: ['brake'],
@@ -32,13 +33,6 @@ const ROW_OF: Record<FindingCode, readonly RowKey[]> = {
 	release_long: ['brake'],
 	hold_missing: ['brake'],
 	lock_up: ['brake', 'speed'],
-	min_speed_low: ['speed'],
-	entry_fast: ['speed'],
-	exit_speed_low: ['speed'],
-	grip_unused: ['speed'],
-	line: ['speed'],
-	car_or_wind: ['speed'],
-	carried_in: ['speed'],
 	pick_up_late: ['throttle', 'speed'],
 	second_lift: ['throttle', 'speed'],
 	coasting: ['throttle', 'speed'],
@@ -134,7 +128,8 @@ export function evidencePlace(
 	closed: boolean
 ): { row: TraceRow; atM: number } | null {
 	// Braking that begins with a lift alone is seen at the throttle.
-	const rowKeys: readonly RowKey[] = evidence[0]?.quantity === 'lift' ? ['throttle', 'speed'] : ROW_OF[code];
+	const rowKeys: readonly RowKey[] =
+		evidence[0]?.quantity === 'lift' ? ['throttle', 'speed'] : (ROW_OF[code] ?? ['speed']);
 	const row = rowKeys.map((key) => rows.find((r) => r.key === key && r.driver !== '')).find(Boolean);
 	const field = POINTS_AT[code];
 	const measured = field ? driver?.[field] : null;

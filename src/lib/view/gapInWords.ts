@@ -107,7 +107,7 @@ export function clause(finding: Finding, speedUnit: SpeedUnit = 'kmh'): string |
 	const apart = first ? Math.abs((first.driver ?? 0) - (first.reference ?? 0)) : null;
 	const metres = first?.unit === 'm' && apart !== null && apart >= 0.5 ? ` ${formatDistance(apart)}` : '';
 	const slower = first?.unit === 'km/h' && apart !== null ? ` ${formatSpeed(apart, speedUnit)}` : '';
-	const clauses: Record<FindingCode, string | null> = {
+	const clauses: Partial<Record<FindingCode, string>> = {
 		brake_early: `the brake comes${metres} early`,
 		brake_late: `the brake comes${metres} late`,
 		peak_over: 'the brake is pressed harder than the reference’s',
@@ -126,9 +126,7 @@ export function clause(finding: Finding, speedUnit: SpeedUnit = 'kmh'): string |
 		idle_gap: 'the car neither turns nor accelerates for a while',
 		lock_up: 'a wheel locks',
 		line: 'the line differs',
-		grip_unused: 'there is grip that goes unused',
-		car_or_wind: null,
-		carried_in: null
+		grip_unused: 'there is grip that goes unused'
 	};
-	return clauses[finding.code];
+	return clauses[finding.code] ?? null;
 }
