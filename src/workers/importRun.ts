@@ -88,7 +88,7 @@ async function* inflated(source: NodeJS.ReadableStream): AsyncIterable<Uint8Arra
 			total += bytes.length;
 			if (total > LARGEST_INFLATED_BYTES) {
 				throw new KerbnoteError(
-					'too_large',
+					'file_too_large',
 					'the compressed file requires at most 2 GB of text, got more',
 					'Cut the recording into runs'
 				);

@@ -216,7 +216,7 @@ describe('the door for uploads', () => {
 			});
 			expect(response.status).toBe(413);
 			expect(response.headers.get('content-type')).toBe('application/problem+json');
-			expect(await response.json()).toMatchObject({ code: 'too_large', status: 413 });
+			expect(await response.json()).toMatchObject({ code: 'file_too_large', status: 413 });
 			expect(await database()('uploads').where({ owner_id: owner.id })).toEqual([]);
 		} finally {
 			Object.assign(environment(), { KERBNOTE_UPLOAD_LIMIT_BYTES: limit });

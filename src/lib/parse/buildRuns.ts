@@ -9,6 +9,7 @@ import type { FileClock } from './fileClock.ts';
 import { missingColumn } from './missingColumn.ts';
 import type { ColumnPlan } from './planColumns.ts';
 import type { RawRun } from './rawRun.ts';
+import { refuseStill } from './refuseStill.ts';
 import { resolveUnits } from './resolveUnits.ts';
 import type { RowNotes } from './rowNotes.ts';
 import { MOTION_CHANNELS, speedFromWheels } from './speedFromWheels.ts';
@@ -36,7 +37,7 @@ export interface ReadTable {
  * Turns the columns as read into runs: one clock that runs forward, house units, one run per outing.
  *
  * @returns at least one run
- * @throws {KerbnoteError} `missing_time`, `missing_speed`, `no_data_rows`, `unreadable_time`, `unreadable_position`, `too_few_samples`
+ * @throws {KerbnoteError} `missing_time`, `missing_speed`, `no_data_rows`, `time_not_increasing`, `too_few_samples`, `no_movement`
  */
 export function buildRuns(table: ReadTable): RawRun[] {
 	const { columns, plans } = table;
@@ -44,9 +45,9 @@ export function buildRuns(table: ReadTable): RawRun[] {
 	for (const plan of plans) if (plan.channel) byChannel.set(plan.channel, plan);
 	const timePlan = byChannel.get('time') ?? byChannel.get('lapTime');
 	const timeColumn = timePlan?.channel ? columns.get(timePlan.channel) : undefined;
-	if (!timePlan || !timeColumn) throw missingColumn('missing_time', 'time', plans);
+	if (!timePlan || !timeColumn) throw missingColumn('missing_time', 'time', plans, table.source.headerRow);
 	const moves = [...MOTION_CHANNELS, ...WHEEL_CHANNELS].some((channel) => columns.has(channel));
-	if (!moves) throw missingColumn('missing_speed', 'speed, distance or position', plans);
+	if (!moves) throw missingColumn('missing_speed', 'speed, distance or position', plans, table.source.headerRow);
 	if (timeColumn.length === 0) {
 		throw new KerbnoteError(
 			'no_data_rows',
@@ -58,7 +59,7 @@ export function buildRuns(table: ReadTable): RawRun[] {
 	const clock = readClockColumn(timeColumn, timePlan);
 	if (!clock.seconds.some(Number.isFinite)) {
 		throw new KerbnoteError(
-			'unreadable_time',
+			'missing_time',
 			`no cell of the time column "${timePlan.header}" can be read as a time`,
 			'Export time as seconds, h:mm:ss.sss or ISO 8601',
 			{
@@ -67,6 +68,7 @@ export function buildRuns(table: ReadTable): RawRun[] {
 			}
 		);
 	}
+	refuseStandingTime(clock.seconds, table.lines, timePlan.header);
 	const isLapTime = timePlan.channel === 'lapTime';
 	columns.delete('time');
 	if (isLapTime) columns.delete('lapTime');
@@ -86,7 +88,8 @@ export function buildRuns(table: ReadTable): RawRun[] {
 	const ranges = timeline.kept ? rangesOf(columns) : table.ranges;
 	relabelRestartingDistance(columns, ranges, byChannel);
 	const resolved = resolveUnits(columns, ranges, timeline.seconds, byChannel);
-	const speedWarnings = speedFromWheels(columns, byChannel, resolved);
+	const speedWarnings = speedFromWheels(columns, byChannel, resolved, table.source.headerRow);
+	refuseStill(columns, { row: lines[0], column: byChannel.get('speed')?.header ?? null });
 	for (const [channel, label] of otherTimes) resolved.units.set(channel, label);
 	resolved.units.set(timePlan.channel ?? 'time', clock.label);
 	const warnings = [
@@ -112,6 +115,18 @@ export function buildRuns(table: ReadTable): RawRun[] {
 		resolved,
 		warnings
 	});
+}
+
+/** Time that never goes forward is no time. */
+function refuseStandingTime(seconds: Float64Array, lines: Int32Array, column: string): void {
+	if (seconds.length < MIN_SAMPLES) return;
+	for (let i = 1; i < seconds.length; i++) if (seconds[i] > seconds[i - 1]) return;
+	throw new KerbnoteError(
+		'time_not_increasing',
+		`time in column "${column}" never goes forward`,
+		'Export the run again with the time of each sample, earliest first',
+		{ row: lines[0], column }
+	);
 }
 
 function keepRows(columns: Columns, lines: Int32Array, { kept, seconds }: Timeline): Int32Array {

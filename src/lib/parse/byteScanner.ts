@@ -49,7 +49,7 @@ export class ByteScanner {
 	 * Reads all complete rows; keeps the rest for the next call.
 	 *
 	 * @returns null, or the bytes from the first quoted row on (then this scanner is done; `line` is that row's line)
-	 * @throws {KerbnoteError} `too_large` for a row beyond MAX_ROW_BYTES
+	 * @throws {KerbnoteError} `line_too_long` for a row beyond MAX_ROW_BYTES
 	 */
 	push(chunk: Uint8Array): Uint8Array | null {
 		// A subclass (Node's Buffer) would make every byte access of the hot loop look at two shapes.

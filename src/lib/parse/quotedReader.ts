@@ -41,7 +41,7 @@ export class QuotedReader {
 		this.line = line;
 	}
 
-	/** @throws {KerbnoteError} `unclosed_quote`, `too_large` */
+	/** @throws {KerbnoteError} `unclosed_quote`, `line_too_long` */
 	push(chunk: Uint8Array): void {
 		for (let at = 0; at < chunk.length; at += SLICE_BYTES) {
 			this.#append(this.#decoder.decode(chunk.subarray(at, at + SLICE_BYTES), { stream: true }));

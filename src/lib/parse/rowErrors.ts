@@ -1,5 +1,5 @@
 import { KerbnoteError } from '../schemas/kerbnoteError.ts';
-import { MAX_ROW_BYTES } from './rowPlan.ts';
+import { MAX_COLUMNS, MAX_ROW_BYTES } from './rowPlan.ts';
 
 /** A quote that swallows the rest of the file. */
 export function unclosedQuote(line: number): KerbnoteError {
@@ -14,9 +14,20 @@ export function unclosedQuote(line: number): KerbnoteError {
 /** A row without end. */
 export function tooLong(line: number): KerbnoteError {
 	return new KerbnoteError(
-		'too_large',
-		`row ${line} is longer than ${MAX_ROW_BYTES} bytes`,
-		'Check that the file has line ends and is a CSV of one run',
+		'line_too_long',
+		`row ${line} does not end within ${MAX_ROW_BYTES} bytes, so this is no table`,
+		'Check that the file has line ends, and export the run as CSV with one row per sample',
+		{ row: line }
+	);
+}
+
+/** A table wider than any run. */
+export function tooManyColumns(line: number, columns: number | null): KerbnoteError {
+	const had = columns === null ? `more than ${MAX_COLUMNS}` : String(columns);
+	return new KerbnoteError(
+		'too_many_columns',
+		`row ${line} has ${had} columns, at most ${MAX_COLUMNS} can be read`,
+		'Export only the channels of the run, one row per sample',
 		{ row: line }
 	);
 }

@@ -16,8 +16,8 @@ export interface RowPlan {
 	decoder: string;
 }
 
-/** A row longer than this is no row of a run; it bounds what is ever held back. */
-export const MAX_ROW_BYTES = 1 << 20;
+/** A row longer than this is no row of a run (a thousand columns of a hundred characters); it bounds what is ever held back. */
+export const MAX_ROW_BYTES = 1 << 17;
 
 /** More columns than any run has channels. */
-export const MAX_COLUMNS = 2000;
+export const MAX_COLUMNS = 1000;

@@ -10,6 +10,7 @@ import { decoderLabel, detectEncoding } from './encoding.ts';
 import type { DetectedEncoding } from './encoding.ts';
 import { findTable } from './findTable.ts';
 import type { Table } from './findTable.ts';
+import { askAboutNames } from './askForColumns.ts';
 import { cellReader, isPlain, planColumns } from './planColumns.ts';
 import type { ColumnPlan } from './planColumns.ts';
 import { QuotedReader } from './quotedReader.ts';
@@ -17,6 +18,7 @@ import type { RawRun } from './rawRun.ts';
 import { refuseEndlessLine, refuseForeignBytes, refuseForeignText } from './refuseForeign.ts';
 import { RowNotes } from './rowNotes.ts';
 import type { RowPlan } from './rowPlan.ts';
+import { SpaceSqueezer } from './splitSpaced.ts';
 
 export interface ReadOptions {
 	/** name of the file, for messages */
@@ -29,7 +31,7 @@ export interface ReadOptions {
 
 /** Bytes that are looked at before a decision: past any usual preamble, and hundreds of rows. */
 const HEAD_BYTES = 1 << 17;
-/** A first row longer than this has no place in a run. */
+/** A preamble that fills more than this is none. */
 const MAX_HEAD_BYTES = 1 << 20;
 
 interface Reading {
@@ -60,6 +62,7 @@ export class RunReader {
 	#encoding: DetectedEncoding | null = null;
 	#transcoder: TextDecoder | null = null;
 	readonly #encoder = new TextEncoder();
+	#squeezer: SpaceSqueezer | null = null;
 	#reading: Reading | null = null;
 
 	constructor(options: ReadOptions) {
@@ -72,6 +75,10 @@ export class RunReader {
 	 * @throws {KerbnoteError} where the file is no table of a run; nothing may be pushed after that
 	 */
 	push(chunk: Uint8Array): void {
+		this.#named(() => this.#push(chunk));
+	}
+
+	#push(chunk: Uint8Array): void {
 		if (this.#reading) {
 			this.#feed(this.#reading, this.#toScan(chunk));
 			return;
@@ -90,9 +97,22 @@ export class RunReader {
 	 * @throws {KerbnoteError} where it holds none
 	 */
 	end(): RawRun[] {
+		return this.#named(() => this.#end());
+	}
+
+	/** Every error of the file bears its name. */
+	#named<T>(work: () => T): T {
+		try {
+			return work();
+		} catch (error) {
+			throw error instanceof KerbnoteError ? error.inFile(this.#options.fileName) : error;
+		}
+	}
+
+	#end(): RawRun[] {
 		const reading = this.#reading ?? this.#begin(true);
 		if (!reading) throw new RangeError('a whole file must begin a reading or throw');
-		if (this.#transcoder) this.#feed(reading, this.#encoder.encode(this.#transcoder.decode()));
+		if (this.#transcoder) this.#feed(reading, this.#squeezed(this.#encoder.encode(this.#transcoder.decode())));
 		const rest = reading.quoted ? null : reading.scanner.end();
 		const quoted = rest ? this.#handOver(reading, rest) : reading.quoted;
 		quoted?.end();
@@ -116,7 +136,6 @@ export class RunReader {
 		const decoder = new TextDecoder(decoderLabel(encoding));
 		const text = decoder.decode(head, { stream: true }).replaceAll('\0', '');
 		if (!wholeFile && !/[\r\n]/.test(text)) {
-			if (this.#headBytes < MAX_HEAD_BYTES) return null;
 			refuseEndlessLine(text);
 		}
 		refuseForeignText(text);
@@ -124,6 +143,7 @@ export class RunReader {
 		if (!table) return null;
 		this.#reading = this.#plan(table, encoding);
 		this.#head = [];
+		if (table.delimiter === ' ') this.#squeezer = new SpaceSqueezer();
 		if (wide) this.#transcoder = new TextDecoder(encoding);
 		this.#feed(this.#reading, this.#toScan(head));
 		return this.#reading;
@@ -142,11 +162,12 @@ export class RunReader {
 
 	#plan(table: Table, encoding: DetectedEncoding['encoding']): Reading {
 		const plans = planColumns(table, this.#options.mapping);
+		askAboutNames(table, plans);
 		const kept = plans.filter(({ channel }) => channel !== null);
 		const slotOf = Int16Array.from(plans, (plan) => kept.indexOf(plan));
 		const wide = encoding === 'utf-16le' || encoding === 'utf-16be';
 		const rowPlan: RowPlan = {
-			delimiter: table.delimiter,
+			delimiter: table.delimiter === ' ' ? '\t' : table.delimiter,
 			decimal: table.decimal,
 			width: table.headers.length,
 			slotOf,
@@ -170,7 +191,13 @@ export class RunReader {
 	}
 
 	#toScan(chunk: Uint8Array): Uint8Array {
-		return this.#transcoder ? this.#encoder.encode(this.#transcoder.decode(chunk, { stream: true })) : chunk;
+		return this.#squeezed(
+			this.#transcoder ? this.#encoder.encode(this.#transcoder.decode(chunk, { stream: true })) : chunk
+		);
+	}
+
+	#squeezed(bytes: Uint8Array): Uint8Array {
+		return this.#squeezer ? this.#squeezer.squeeze(bytes) : bytes;
 	}
 
 	#feed(reading: Reading, bytes: Uint8Array): void {

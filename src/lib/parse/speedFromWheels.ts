@@ -15,7 +15,8 @@ export const MOTION_CHANNELS: readonly Channel[] = ['speed', 'distance', 'lapDis
 export function speedFromWheels(
 	columns: Columns,
 	plans: ReadonlyMap<string, ColumnPlan>,
-	resolved: ResolvedUnits
+	resolved: ResolvedUnits,
+	headerRow: number | null
 ): Warning[] {
 	const named = plans.get('speed')?.header;
 	if (named && readHeaderWords(readHeaderText(named).words).parts.some((part) => part.has('wheel'))) {
@@ -30,7 +31,7 @@ export function speedFromWheels(
 	const wheels = WHEEL_CHANNELS.flatMap((channel) => columns.get(channel) ?? []);
 	if (MOTION_CHANNELS.some((channel) => columns.has(channel)) || wheels.length === 0) return [];
 	if (resolved.wheelUnit !== 'kmh')
-		throw missingColumn('missing_speed', 'speed, distance or position', [...plans.values()]);
+		throw missingColumn('missing_speed', 'speed, distance or position', [...plans.values()], headerRow);
 	const speed = new Float32Array(wheels[0].length);
 	const values = new Float64Array(wheels.length);
 	for (let i = 0; i < speed.length; i++) {

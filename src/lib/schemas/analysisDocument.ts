@@ -1,6 +1,7 @@
 import { z } from 'zod';
 import { channelSchema } from './channels.ts';
 import { errorCodeSchema, findingCodeSchema, lapReasonSchema, metricReasonSchema, warningCodeSchema } from './codes.ts';
+import { importQuestionSchema } from './importQuestion.ts';
 
 /** The JSON document of `analyse`, "kerbnote.analysis/1". Field names are fixed: add, never rename. */
 
@@ -222,9 +223,13 @@ export const errorDocumentSchema = z.object({
 	error: z.object({
 		code: errorCodeSchema,
 		message: z.string(),
+		/** name of the file, where the error speaks of one */
+		file: z.string().nullable().optional(),
 		row: z.number().int().nullable(),
 		column: z.string().nullable(),
-		remedy: z.string()
+		remedy: z.string(),
+		/** with `needs_answer` only */
+		question: importQuestionSchema.optional()
 	})
 });
 export type ErrorDocument = z.infer<typeof errorDocumentSchema>;

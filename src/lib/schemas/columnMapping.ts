@@ -16,6 +16,6 @@ export const columnMappingSchema = z.object({
 				unit: z.string().max(20).optional()
 			})
 		)
-		.max(2000)
+		.max(1000)
 });
 export type ColumnMapping = z.infer<typeof columnMappingSchema>;

@@ -1,11 +1,16 @@
 import type { ErrorDocument } from './analysisDocument.ts';
 import type { ErrorCode } from './codes.ts';
+import type { ImportQuestion } from './importQuestion.ts';
 
 export interface ErrorPlace {
 	/** 1-based line of the file */
 	row?: number | null;
 	/** header of the column */
 	column?: string | null;
+	/** name of the file, where the message speaks of one */
+	file?: string | null;
+	/** what a person is asked, with `needs_answer` */
+	question?: ImportQuestion;
 }
 
 /**
@@ -20,6 +25,8 @@ export class KerbnoteError extends Error {
 	readonly remedy: string;
 	readonly row: number | null;
 	readonly column: string | null;
+	readonly file: string | null;
+	readonly question: ImportQuestion | undefined;
 
 	constructor(code: ErrorCode, message: string, remedy: string, place: ErrorPlace = {}, options?: ErrorOptions) {
 		super(message, options);
@@ -28,11 +35,22 @@ export class KerbnoteError extends Error {
 		this.remedy = remedy;
 		this.row = place.row ?? null;
 		this.column = place.column ?? null;
+		this.file = place.file ?? null;
+		this.question = place.question;
+	}
+
+	/** The same error, said of a file; a name that it already bears stays. */
+	inFile(file: string): KerbnoteError {
+		if (this.file !== null) return this;
+		const { row, column, question, cause } = this;
+		const named = new KerbnoteError(this.code, this.message, this.remedy, { row, column, question, file }, { cause });
+		named.stack = this.stack;
+		return named;
 	}
 
 	/** The shape that `analyse` prints and the API sends. */
 	toDocument(): ErrorDocument {
-		const { code, message, row, column, remedy } = this;
-		return { error: { code, message, row, column, remedy } };
+		const { code, message, file, row, column, remedy, question } = this;
+		return { error: { code, message, file, row, column, remedy, ...(question && { question }) } };
 	}
 }

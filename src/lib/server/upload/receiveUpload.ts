@@ -19,7 +19,7 @@ const LONGEST_NAME = 255;
  * @param fileName as the browser says it; only its last part is kept
  * @param body the bytes, in chunks; gzip is kept as it came
  * @returns the upload's public id
- * @throws {RequestProblem} `throttled`, `too_large`, `upload_interrupted`, `unavailable`; nothing is kept then
+ * @throws {RequestProblem} `throttled`, `file_too_large`, `upload_interrupted`, `unavailable`; nothing is kept then
  */
 export async function receiveUpload(
 	viewer: Viewer,
@@ -74,7 +74,7 @@ export function cleanName(fileName: string): string {
 function problemOfWrite(error: unknown): unknown {
 	if (error instanceof FileTooLarge) {
 		const limitMb = Math.floor(error.limitBytes / 1024 / 1024);
-		return new RequestProblem(413, 'too_large', `a file requires at most ${limitMb} MB`, {
+		return new RequestProblem(413, 'file_too_large', `a file requires at most ${limitMb} MB`, {
 			remedy: 'Cut the recording into runs, or compress it with gzip'
 		});
 	}

@@ -305,7 +305,7 @@ export const refusedUpload: UploadView = {
 	runIds: [],
 	fileName: 'warmup.csv',
 	error: {
-		code: 'missing_motion',
+		code: 'missing_speed',
 		message: 'the file has neither speed nor distance nor position',
 		row: 14,
 		column: null,
