@@ -15,6 +15,7 @@ interface RouteModule {
 	POST?: Handler;
 	PATCH?: Handler;
 	DELETE?: Handler;
+	HEAD?: Handler;
 	load?: (event: unknown) => unknown;
 	actions?: Record<string, (event: RequestEvent) => unknown>;
 }
@@ -42,7 +43,8 @@ function findRoutes(): Route[] {
 	const folders = new Set(
 		[...Object.keys(modules), ...pages].filter((file) => !file.includes('+layout')).map(folderOf)
 	);
-	return [...folders].sort().map((folder) => {
+	// As SvelteKit does: a name that is written out comes before one that stands for any.
+	return [...folders].sort((a, b) => (a.replaceAll('[', '~') < b.replaceAll('[', '~') ? -1 : 1)).map((folder) => {
 		const id = folder.slice('/src/routes'.length) || '/';
 		const segments = id.split('/').filter((part) => part !== '' && !/^\(.*\)$/.test(part));
 		const params: string[] = [];
@@ -90,7 +92,7 @@ const SITE = 'http://localhost';
 export async function operationsOf(route: Route): Promise<string[]> {
 	const endpoint = route.endpoint ? await modules[route.endpoint]() : {};
 	const page = route.page ? await modules[route.page]() : {};
-	const methods = ['GET', 'PUT', 'POST', 'PATCH', 'DELETE'].filter((method) => method in endpoint);
+	const methods = ['GET', 'HEAD', 'PUT', 'POST', 'PATCH', 'DELETE'].filter((method) => method in endpoint);
 	const actions = Object.keys(page.actions ?? {}).map((name) => (name === 'default' ? 'POST' : `POST ?/${name}`));
 	return [...methods, ...(route.isPage ? ['GET'] : []), ...actions];
 }
@@ -99,7 +101,7 @@ export async function operationsOf(route: Route): Promise<string[]> {
 export async function testRequest(path: string, options: RequestOptions = {}): Promise<Response> {
 	const { method = 'GET', body = null, jar = new CookieJar(), origin = SITE, address = '127.0.0.1' } = options;
 	const headers = new Headers(options.headers);
-	if (origin !== null && method !== 'GET') headers.set('origin', origin);
+	if (origin !== null && method !== 'GET' && method !== 'HEAD') headers.set('origin', origin);
 	if (jar.header !== '') headers.set('cookie', jar.header);
 	const url = new URL(path, SITE);
 	const request = new Request(url, { method, body, headers, ...(body && { duplex: 'half' }) });

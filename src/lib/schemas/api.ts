@@ -1,7 +1,7 @@
 import { z } from 'zod';
 import { columnMappingSchema } from './columnMapping.ts';
 import { errorCodeSchema } from './codes.ts';
-import { conditionsSchema, intentSchema, placeSchema, publicIdSchema } from './views.ts';
+import { conditionsSchema, intentSchema, placeSchema, publicIdSchema, rememberSchema } from './views.ts';
 
 /** What a token may be made for. */
 export const tokenScopeSchema = z.enum(['laps:read', 'uploads:write', 'runs:write']);
@@ -52,8 +52,15 @@ const emptyIsNull = (text: string) => (text === '' ? null : text);
 /** `PUT /api/v1/uploads`: the query; the body is the file. */
 export const uploadQuerySchema = z.object({ name: z.string().min(1).max(1000) });
 
-/** `PUT /api/v1/uploads/{id}/mapping`: how the file is to be read; null, as the product understands it by itself. */
-export const mappingInputSchema = z.object({ mapping: columnMappingSchema.nullable() });
+/** `PUT` and `POST /api/v1/uploads/{id}/mapping`: how the file is to be read; null, as the product understands it by itself. */
+export const mappingInputSchema = z.object({
+	mapping: columnMappingSchema.nullable(),
+	/** for whom it is kept, for files with the same header; `no` changes nothing that was kept before */
+	remember: rememberSchema.optional(),
+	/** with `organisation`; may be left out by who is in one only */
+	organisation: publicIdSchema.optional()
+});
+export type MappingInput = z.infer<typeof mappingInputSchema>;
 
 /** `GET /api/v1/runs`: the query. */
 export const runsQuerySchema = z.object({
@@ -73,7 +80,9 @@ export const runDescriptionSchema = z.object({
 	tyreSet: z.string().trim().max(60, 'a name has at most 60 characters').transform(emptyIsNull).nullable().optional(),
 	/** kg at the start of the run */
 	fuelKg: z.number('write the fuel in kg, as a number').min(0).max(2000).nullable().optional(),
-	startedAt: z.iso.datetime({ offset: true }).nullable().optional()
+	startedAt: z.iso.datetime({ offset: true }).nullable().optional(),
+	/** the layout that it was driven on, of those that the viewer may see; the file is read again */
+	layout: publicIdSchema.optional()
 });
 export type RunDescription = z.infer<typeof runDescriptionSchema>;
 

@@ -12,6 +12,7 @@ import {
 	type Comparison
 } from './analysisDocument.ts';
 import { lapReasonSchema } from './codes.ts';
+import { columnMappingSchema } from './columnMapping.ts';
 
 /**
  * What the services hand to pages and to the API. Names are the field's, units stand in the names, times are seconds, instants
@@ -204,13 +205,21 @@ export type UploadStage = z.infer<typeof uploadStageSchema>;
 export const uploadHeadSchema = z.object({
 	id: publicIdSchema,
 	fileName: z.string(),
+	/** a zip becomes an upload of each file in it, and holds no run itself */
+	kind: z.enum(['file', 'archive']),
+	/** the archive that it came out of */
+	archive: z.object({ id: publicIdSchema, fileName: z.string() }).nullable(),
 	sizeBytes: z.number().int(),
+	/** bytes that are here; while it is received fewer than `sizeBytes` */
+	receivedBytes: z.number().int(),
 	state: uploadStateSchema,
 	stage: uploadStageSchema,
 	/** 0–1 within the whole import */
 	progress: z.number(),
+	/** rows of the file that were read so far; null before the first */
+	rowsRead: z.number().int().nullable(),
 	createdAt: instant,
-	/** why it was refused, in the words of the core */
+	/** why it was refused, in the words of the core; in the state `needs_answer`, what has to be answered */
 	error: errorDocumentSchema.shape.error.nullable(),
 	runIds: z.array(publicIdSchema)
 });
@@ -236,8 +245,38 @@ export const uploadRunSchema = z.object({
 });
 export type UploadRun = z.infer<typeof uploadRunSchema>;
 
+/** One file of an archive. */
+export const archiveFileSchema = z.object({
+	name: z.string(),
+	/** the upload that it became; null for what is no table of text, and for what was deleted since */
+	upload: z.object({ id: publicIdSchema, state: uploadStateSchema }).nullable(),
+	/** was the same file here before, so that it was not taken twice */
+	knownBefore: z.boolean()
+});
+export type ArchiveFile = z.infer<typeof archiveFileSchema>;
+
+/** For whom an answer about columns is kept, for files with the same header. */
+export const rememberSchema = z.enum(['me', 'organisation', 'no']);
+export type Remember = z.infer<typeof rememberSchema>;
+
 export const uploadViewSchema = uploadHeadSchema.extend({
 	sha256: z.string().nullable(),
+	/** what a person said of the columns, for this file or by an answer that is remembered */
+	mapping: columnMappingSchema.nullable(),
+	/** the remembered answer for files with this header that is the viewer's to use; null where there is none */
+	remembered: z
+		.object({
+			scope: z.enum(['me', 'organisation']),
+			/** was this file read by it */
+			used: z.boolean(),
+			/** may the viewer forget it */
+			mayForget: z.boolean()
+		})
+		.nullable(),
+	/** organisations in which the viewer may share an answer */
+	shareableWith: z.array(z.object({ id: publicIdSchema, name: z.string() })),
+	/** what an archive holds, in its order; empty for a file */
+	files: z.array(archiveFileSchema),
 	/** what was understood of the file; null until it was read */
 	understood: sourceSchema.nullable(),
 	/** channels that the file has no column for, and what is used in their place, if anything */

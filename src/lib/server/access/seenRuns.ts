@@ -70,11 +70,15 @@ export async function keptPeople(db: Knex, viewer: Viewer): Promise<number[]> {
 
 /** `uploads` that the viewer may see: raw files stay with their owner (or guardian); no grant opens them. */
 export function seenUploads(db: Knex, viewer: Viewer): Knex.Raw {
+	return db.raw('(uploads.deleted_at IS NULL AND ?)', [keptUploads(db, viewer)]);
+}
+
+/** `uploads` that are the viewer's to keep, also those that they took out of sight and may bring back. */
+export function keptUploads(db: Knex, viewer: Viewer): Knex.Raw {
 	return db.raw(
-		`(uploads.deleted_at IS NULL AND (
-			uploads.owner_id = ?
+		`(uploads.owner_id = ?
 			OR EXISTS (SELECT 1 FROM guardian_links
-				WHERE guardian_links.minor_id = uploads.owner_id AND guardian_links.guardian_id = ? AND guardian_links.ended_at IS NULL)))`,
+				WHERE guardian_links.minor_id = uploads.owner_id AND guardian_links.guardian_id = ? AND guardian_links.ended_at IS NULL))`,
 		[viewer.personId, viewer.personId]
 	);
 }

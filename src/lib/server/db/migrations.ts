@@ -31,6 +31,12 @@ import * as m29 from '../../../../migrations/20261001000029_link_runs_to_analyse
 import * as m30 from '../../../../migrations/20261001000030_link_runs_to_best_laps.ts';
 import * as m31 from '../../../../migrations/20261001000031_check_grants_have_one_grantee.ts';
 import * as m32 from '../../../../migrations/20261001000032_check_grants_name_their_scope.ts';
+import * as m101 from '../../../../migrations/20261201000101_extend_uploads.ts';
+import * as m102 from '../../../../migrations/20261201000102_create_locks.ts';
+import * as m103 from '../../../../migrations/20261201000103_create_remembered_mappings.ts';
+import * as m104 from '../../../../migrations/20261201000104_let_people_choose_layouts_of_runs.ts';
+import * as m105 from '../../../../migrations/20261201000105_know_stored_files_again.ts';
+import * as m201 from '../../../../migrations/20261201181001_add_metrics_of_causes.ts';
 
 interface Migration {
 	up(knex: Knex): Promise<void>;
@@ -72,7 +78,13 @@ export const migrations: readonly (readonly [name: string, migration: Migration]
 	['20261001000029_link_runs_to_analyses.ts', m29],
 	['20261001000030_link_runs_to_best_laps.ts', m30],
 	['20261001000031_check_grants_have_one_grantee.ts', m31],
-	['20261001000032_check_grants_name_their_scope.ts', m32]
+	['20261001000032_check_grants_name_their_scope.ts', m32],
+	['20261201000101_extend_uploads.ts', m101],
+	['20261201000102_create_locks.ts', m102],
+	['20261201000103_create_remembered_mappings.ts', m103],
+	['20261201000104_let_people_choose_layouts_of_runs.ts', m104],
+	['20261201000105_know_stored_files_again.ts', m105],
+	['20261201181001_add_metrics_of_causes.ts', m201]
 ];
 
 /** The list as Knex wants it. */

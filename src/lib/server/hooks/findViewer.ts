@@ -11,6 +11,9 @@ import { hasBearer } from './guardRequest.ts';
  */
 export const findViewer: Handle = async ({ event, resolve }) => {
 	event.locals.viewer = await whoAsks(event);
+	if (!event.locals.viewer && !hasBearer(event) && (await readSessionCookie(event))) {
+		event.cookies.delete(sessionCookieName(event.url), { path: '/' });
+	}
 	if (!event.locals.viewer && event.route.id?.startsWith('/(app)')) {
 		const here = event.url.pathname + event.url.search;
 		redirect(303, `/sign-in?redirectTo=${encodeURIComponent(here)}`);
@@ -18,7 +21,8 @@ export const findViewer: Handle = async ({ event, resolve }) => {
 	return await resolve(event);
 };
 
-async function whoAsks(event: RequestEvent): Promise<Viewer | null> {
+/** The viewer by the request's cookie or token, looked up anew; null where neither holds. */
+export async function whoAsks(event: RequestEvent): Promise<Viewer | null> {
 	if (hasBearer(event)) {
 		// A token opens the API alone; a page's forms are not for programs.
 		if (!event.url.pathname.startsWith('/api/')) return null;
@@ -27,7 +31,5 @@ async function whoAsks(event: RequestEvent): Promise<Viewer | null> {
 	}
 	const secret = await readSessionCookie(event);
 	if (!secret) return null;
-	const viewer = await findViewerBySession(database(), secret);
-	if (!viewer) event.cookies.delete(sessionCookieName(event.url), { path: '/' });
-	return viewer;
+	return await findViewerBySession(database(), secret);
 }

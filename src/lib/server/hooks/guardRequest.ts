@@ -4,8 +4,10 @@ import { problemResponse } from '../http/problem.ts';
 const SAFE_METHODS = new Set(['GET', 'HEAD', 'OPTIONS']);
 /** Forms and JSON. */
 const LARGEST_BODY_BYTES = 512 * 1024;
-/** Raw files, which are never held in memory, have a limit of their own in their one route. */
+/** Raw files, which are never held in memory, have a limit of their own in their routes: whole, and in pieces. */
 const RAW_UPLOAD_PATH = '/api/v1/uploads';
+const PIECES_PATH = '/api/v1/uploads/resumable';
+const PIECE_TYPE = 'application/offset+octet-stream';
 /** A file as a form, from a browser without script, is held in memory. */
 const FORM_UPLOAD_PATH = '/upload';
 const LARGEST_FORM_UPLOAD_BYTES = 32 * 1024 * 1024;
@@ -39,7 +41,7 @@ export function hasBearer(event: Pick<RequestEvent, 'request'>): boolean {
 /** Every body but a raw upload states its length, so that the limit holds before a byte is read. */
 function refuseBody(event: RequestEvent): Response | null {
 	const { request } = event;
-	if (request.body === null || (request.method === 'PUT' && event.url.pathname === RAW_UPLOAD_PATH)) return null;
+	if (request.body === null || isRawUpload(event)) return null;
 	const stated = request.headers.get('content-length');
 	if (stated === null) {
 		return problemResponse({ status: 411, code: 'length_required', detail: 'the request requires a Content-Length' });
@@ -53,4 +55,13 @@ function refuseBody(event: RequestEvent): Response | null {
 		});
 	}
 	return null;
+}
+
+function isRawUpload({ request, url }: RequestEvent): boolean {
+	if (request.method === 'PUT') return url.pathname === RAW_UPLOAD_PATH;
+	return (
+		(request.method === 'PATCH' || request.method === 'POST') &&
+		url.pathname.startsWith(PIECES_PATH) &&
+		request.headers.get('content-type') === PIECE_TYPE
+	);
 }

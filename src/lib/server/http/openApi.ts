@@ -22,12 +22,12 @@ interface Operation {
 	summary: string;
 	scope: TokenScope;
 	query?: z.ZodType;
-	body?: z.ZodType | 'file';
+	body?: z.ZodType | 'file' | 'piece';
 	/** status and what it carries; null for an answer without a body */
-	answer: readonly [status: number, schema: z.ZodType | 'file' | 'frame' | null];
+	answer: readonly [status: number, schema: z.ZodType | 'file' | 'frame' | 'events' | null];
 }
 
-type Method = 'get' | 'put' | 'patch' | 'delete';
+type Method = 'get' | 'head' | 'put' | 'post' | 'patch' | 'delete';
 
 /** Every operation of the API, by path; a test holds this list against the routes. */
 export const OPERATIONS: Readonly<Record<string, Partial<Record<Method, Operation>>>> = {
@@ -45,12 +45,49 @@ export const OPERATIONS: Readonly<Record<string, Partial<Record<Method, Operatio
 			answer: [202, uploadHeadSchema]
 		}
 	},
+	'/api/v1/uploads/resumable': {
+		post: {
+			summary:
+				'Make an upload that goes on after a break (tus 1.0.0: Upload-Length, Upload-Metadata with filename); Location names it',
+			scope: 'uploads:write',
+			answer: [201, null]
+		}
+	},
+	'/api/v1/uploads/resumable/{upload}': {
+		head: { summary: 'How much of the file is here (tus 1.0.0)', scope: 'uploads:write', answer: [200, null] },
+		patch: {
+			summary:
+				'The next piece (tus 1.0.0); after the last, Kerbnote-Upload names the upload, an earlier one for a file that was here before',
+			scope: 'uploads:write',
+			body: 'piece',
+			answer: [204, null]
+		},
+		delete: { summary: 'Give an unfinished upload up (tus 1.0.0)', scope: 'uploads:write', answer: [204, null] }
+	},
+	'/api/v1/events': {
+		get: {
+			summary: 'What becomes of the uploads, as server-sent events: upload (a head), gone (an id), end',
+			scope: 'laps:read',
+			answer: [200, 'events']
+		}
+	},
 	'/api/v1/uploads/{upload}': {
 		get: {
 			summary: 'How far an upload is, what was understood, and its runs',
 			scope: 'laps:read',
 			answer: [200, uploadViewSchema]
+		},
+		delete: {
+			summary: 'Take an upload and its runs out of sight; it can be brought back for 30 days',
+			scope: 'uploads:write',
+			answer: [204, null]
 		}
+	},
+	'/api/v1/uploads/{upload}/restore': {
+		post: { summary: 'Bring a deleted upload back', scope: 'uploads:write', answer: [200, uploadHeadSchema] }
+	},
+	'/api/v1/uploads/{upload}/again': {
+		post: { summary: 'Read and analyse the kept file again', scope: 'uploads:write', answer: [202, uploadHeadSchema] }
 	},
 	'/api/v1/uploads/{upload}/mapping': {
 		put: {
@@ -58,6 +95,17 @@ export const OPERATIONS: Readonly<Record<string, Partial<Record<Method, Operatio
 			scope: 'uploads:write',
 			body: mappingInputSchema,
 			answer: [202, uploadHeadSchema]
+		},
+		post: {
+			summary: 'Answer what the file was asked for; it is read again',
+			scope: 'uploads:write',
+			body: mappingInputSchema,
+			answer: [202, uploadHeadSchema]
+		},
+		delete: {
+			summary: 'Forget the answer that is kept for files with this header',
+			scope: 'uploads:write',
+			answer: [204, null]
 		}
 	},
 	'/api/v1/uploads/{upload}/file': {
@@ -70,6 +118,9 @@ export const OPERATIONS: Readonly<Record<string, Partial<Record<Method, Operatio
 		get: { summary: 'One run with its laps and corners', scope: 'laps:read', answer: [200, runViewSchema] },
 		patch: { summary: 'Describe a run', scope: 'runs:write', body: runDescriptionSchema, answer: [200, runViewSchema] },
 		delete: { summary: 'Take a run out of sight; its file stays', scope: 'runs:write', answer: [204, null] }
+	},
+	'/api/v1/runs/{run}/restore': {
+		post: { summary: 'Bring a deleted run back', scope: 'runs:write', answer: [200, runViewSchema] }
 	},
 	'/api/v1/laps/{lap}/trace': {
 		get: {
@@ -150,8 +201,12 @@ function describe(
 	};
 }
 
-function contentOf(schema: z.ZodType | 'file' | 'frame', side: 'input' | 'output'): Record<string, unknown> {
+type Content = z.ZodType | 'file' | 'piece' | 'frame' | 'events';
+
+function contentOf(schema: Content, side: 'input' | 'output'): Record<string, unknown> {
 	if (schema === 'file') return { 'application/octet-stream': {} };
+	if (schema === 'piece') return { 'application/offset+octet-stream': {} };
+	if (schema === 'events') return { 'text/event-stream': {} };
 	if (schema === 'frame') return { 'application/vnd.kerbnote.trace': {} };
 	return { 'application/json': { schema: jsonSchema(schema, side) } };
 }

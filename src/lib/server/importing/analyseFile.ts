@@ -21,11 +21,16 @@ import { speedStrip } from './speedStrip.ts';
 
 export interface AnalyseFileOptions extends Pick<ImportRequest, 'fileName' | 'mapping' | 'sizeBytes'> {
 	/** how far the import is, 0–1 */
-	progress(stage: UploadStage, share: number): void;
+	progress(stage: UploadStage, share: number, rowsRead: number): void;
 	/** what is known of the brake of the car that the file's preamble names; null: nothing */
 	brake(metadata: Record<string, string>): Promise<KnownBrake | null>;
 	/** stored layouts that a run may have been driven on */
-	candidates(fingerprint: LayoutFingerprint): Promise<LayoutCandidate[]>;
+	candidates(fingerprint: LayoutFingerprint, runIndex: number): Promise<LayoutCandidate[]>;
+}
+
+/** A layout that a run may have been driven on: a stored one, or that of an earlier run of the same file. */
+interface Place extends Pick<LayoutCandidate, 'path' | 'corners' | 'cells' | 'chosen'> {
+	layout: AnalysedRun['layout'];
 }
 
 /** Shares of the whole import, as it takes its time: reading most, then the analysis. */
@@ -43,45 +48,56 @@ export async function analyseFile(
 	bytes: AsyncIterable<Uint8Array>,
 	options: AnalyseFileOptions
 ): Promise<AnalysedRun[]> {
-	options.progress('reading', 0);
-	const raws = await readRuns(bytes, options);
+	options.progress('reading', 0, 0);
+	const { raws, rows } = await readRuns(bytes, options);
 	const analysed: AnalysedRun[] = [];
+	const found: Place[] = [];
 	for (const [i, raw] of raws.entries()) {
 		const done = READING_SHARE + (ANALYSIS_SHARE * i) / raws.length;
-		options.progress('laps', done);
-		const { analysis, layout } = await analyseOnLayout(raw, options);
-		options.progress('corners', done + ANALYSIS_SHARE / 2 / raws.length);
+		options.progress('laps', done, rows);
+		const { analysis, layout } = await analyseOnLayout(raw, i + 1, found, options);
+		const { corners, cells } = analysis.document;
+		if ('path' in layout) found.push({ path: layout.path, corners, cells, layout: { sameAs: i } });
+		options.progress('corners', done + ANALYSIS_SHARE / 2 / raws.length, rows);
 		analysed.push(readyToStore(raw, analysis, layout));
 	}
-	options.progress('storing', READING_SHARE + ANALYSIS_SHARE);
+	options.progress('storing', READING_SHARE + ANALYSIS_SHARE, rows);
 	return analysed;
 }
 
-async function readRuns(bytes: AsyncIterable<Uint8Array>, options: AnalyseFileOptions): Promise<RawRun[]> {
+async function readRuns(
+	bytes: AsyncIterable<Uint8Array>,
+	options: AnalyseFileOptions
+): Promise<{ raws: RawRun[]; rows: number }> {
 	const reader = new RunReader({ fileName: options.fileName, mapping: options.mapping ?? undefined });
 	let readBytes = 0;
 	for await (const chunk of bytes) {
 		reader.push(chunk);
 		readBytes += chunk.length;
 		// A compressed file is longer than its size says; the share then only stays where it is.
-		options.progress('reading', READING_SHARE * Math.min(1, readBytes / Math.max(1, options.sizeBytes)));
+		const share = Math.min(1, readBytes / Math.max(1, options.sizeBytes));
+		options.progress('reading', READING_SHARE * share, reader.rows);
 	}
-	return reader.end();
+	const raws = reader.end();
+	return { raws, rows: reader.rows };
 }
 
 /** On the known layout that the run was driven on, else on a path of its own. */
 async function analyseOnLayout(
 	raw: RawRun,
+	runIndex: number,
+	found: readonly Place[],
 	options: AnalyseFileOptions
 ): Promise<{ analysis: RunAnalysis; layout: AnalysedRun['layout'] }> {
 	const brake = await options.brake(raw.source.metadata);
 	const brakeFull = brake?.unit === raw.brakeUnit ? brake.full : null;
 	const { path } = buildPath(prepareChannels(raw, { brakeFull }));
-	for (const { layoutId, pathVersion, mapVersion, ...layout } of await options.candidates(fingerprintOf(path))) {
-		if (!matchesLayout(path, layout.path)) continue;
+	const known = await options.candidates(fingerprintOf(path), runIndex);
+	for (const place of [...known.map(placeOf), ...found]) {
+		if (!place.chosen && !matchesLayout(path, place.path)) continue;
 		try {
-			const analysis = analyseRun([raw], { layout, brakeFull });
-			return { analysis, layout: { known: { layoutId, pathVersion, mapVersion } } };
+			const analysis = analyseRun([raw], { layout: place, brakeFull });
+			return { analysis, layout: place.layout };
 		} catch (error) {
 			// It looked like this layout and is not; another may be it.
 			if (!(error instanceof KerbnoteError && error.code === 'reference_mismatch')) throw error;
@@ -89,6 +105,10 @@ async function analyseOnLayout(
 	}
 	const analysis = analyseRun([raw], { brakeFull });
 	return { analysis, layout: { path: analysis.path } };
+}
+
+function placeOf({ layoutId, pathVersion, mapVersion, ...place }: LayoutCandidate): Place {
+	return { ...place, layout: { known: { layoutId, pathVersion, mapVersion } } };
 }
 
 /** What a path says of its circuit, to look for candidates by. */

@@ -3,15 +3,18 @@ import { join, resolve } from 'node:path';
 import { MessageChannel } from 'node:worker_threads';
 import Piscina from 'piscina';
 import type { ImportAnswer, ImportMail } from '../../../workers/importRun.ts';
+import type { ColumnMapping } from '../../schemas/columnMapping.ts';
 import type { UploadStage } from '../../schemas/views.ts';
 import { environment } from '../environment.ts';
 import type { ImportReport, ImportRequest, KnownBrake, LayoutCandidate, LayoutFingerprint } from './importMessages.ts';
 
 /** What the thread reports and asks while it works. */
 export interface ImportListener {
-	progress(stage: UploadStage, share: number): void;
+	progress(stage: UploadStage, share: number, rowsRead: number): void;
+	/** what is remembered for files with this header */
+	mapping(headers: string[]): Promise<ColumnMapping | null>;
 	brake(metadata: Record<string, string>): Promise<KnownBrake | null>;
-	candidates(fingerprint: LayoutFingerprint): Promise<LayoutCandidate[]>;
+	candidates(fingerprint: LayoutFingerprint, runIndex: number): Promise<LayoutCandidate[]>;
 }
 
 /** Threads that read and analyse. One for each job at a time, so that the process itself stays free to say that it lives. */
@@ -40,15 +43,15 @@ export class AnalysisPool {
 		const { port1, port2 } = new MessageChannel();
 		let fault: unknown;
 		port1.on('message', (report: ImportReport) => {
-			if (report.kind === 'progress') return listener.progress(report.stage, report.progress);
-			const answer =
-				report.kind === 'brake' ? listener.brake(report.metadata) : listener.candidates(report.fingerprint);
-			answer.then(
+			if (report.kind === 'progress') {
+				return listener.progress(report.stage, report.progress, report.rowsRead);
+			}
+			answerTo(report, listener).then(
 				(found) => port1.postMessage(found),
 				(error: unknown) => {
 					// The thread must get an answer; the job fails by what is kept here.
 					fault = error;
-					port1.postMessage(report.kind === 'brake' ? null : []);
+					port1.postMessage(report.kind === 'candidates' ? [] : null);
 				}
 			);
 		});
@@ -64,4 +67,13 @@ export class AnalysisPool {
 	async close(): Promise<void> {
 		await this.#pool.destroy();
 	}
+}
+
+async function answerTo(
+	report: Exclude<ImportReport, { kind: 'progress' }>,
+	listener: ImportListener
+): Promise<KnownBrake | ColumnMapping | LayoutCandidate[] | null> {
+	if (report.kind === 'brake') return await listener.brake(report.metadata);
+	if (report.kind === 'mapping') return await listener.mapping(report.headers);
+	return await listener.candidates(report.fingerprint, report.runIndex);
 }

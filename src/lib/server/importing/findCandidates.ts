@@ -57,23 +57,34 @@ export async function findCandidates(
 				)
 		);
 	} else if (lengthM === null) return [];
-	const rows = await query
-		.limit(MOST)
-		.select<{ id: number; path_version: number; map_version: number }[]>(
-			'layouts.id',
-			'layouts.path_version',
-			'layouts.map_version'
-		);
+	const rows = await query.limit(MOST).select<LayoutRow[]>('layouts.id', 'layouts.path_version', 'layouts.map_version');
 	const candidates: LayoutCandidate[] = [];
-	for (const row of rows) {
-		const version = { layoutId: row.id, pathVersion: row.path_version, mapVersion: row.map_version };
-		const { corners, cells } = await getCornerMap(db, version);
-		candidates.push({
-			...version,
-			path: await getPath(db, version),
-			corners: corners.map(({ corner }) => cornerSchema.parse(corner)),
-			cells
-		});
-	}
+	for (const row of rows) candidates.push(await loadCandidate(db, row));
 	return candidates;
+}
+
+/** The layout that a person chose for a run of an upload; null where nobody did. */
+export async function findChosenLayout(db: Knex, uploadId: number, runIndex: number): Promise<LayoutCandidate | null> {
+	const row = await db('runs')
+		.join('layouts', 'layouts.id', 'runs.chosen_layout_id')
+		.where({ 'runs.upload_id': uploadId, 'runs.run_index': runIndex })
+		.first<LayoutRow | undefined>('layouts.id', 'layouts.path_version', 'layouts.map_version');
+	return row ? { ...(await loadCandidate(db, row)), chosen: true } : null;
+}
+
+interface LayoutRow {
+	id: number;
+	path_version: number;
+	map_version: number;
+}
+
+async function loadCandidate(db: Knex, row: LayoutRow): Promise<LayoutCandidate> {
+	const version = { layoutId: row.id, pathVersion: row.path_version, mapVersion: row.map_version };
+	const { corners, cells } = await getCornerMap(db, version);
+	return {
+		...version,
+		path: await getPath(db, version),
+		corners: corners.map(({ corner }) => cornerSchema.parse(corner)),
+		cells
+	};
 }

@@ -13,6 +13,8 @@ export interface ImportRequest {
 	sizeBytes: number;
 	fileName: string;
 	mapping: ColumnMapping | null;
+	/** is there any answer about columns that may be remembered for this file's header */
+	looksForMapping: boolean;
 }
 
 /** What a run says of the circuit that it was driven on; candidates are looked up by it. */
@@ -32,6 +34,8 @@ export interface LayoutCandidate {
 	path: ReferencePath;
 	corners: Corner[];
 	cells: Cell[];
+	/** a person says that it was this one: no likeness is asked for */
+	chosen?: boolean;
 }
 
 /** What is known of the brake of the car that the file names. */
@@ -43,9 +47,10 @@ export interface KnownBrake {
 
 /** From the thread; it waits for an answer to each but the first kind. */
 export type ImportReport =
-	| { kind: 'progress'; stage: UploadStage; progress: number }
+	| { kind: 'progress'; stage: UploadStage; progress: number; rowsRead: number }
+	| { kind: 'mapping'; headers: string[] }
 	| { kind: 'brake'; metadata: Record<string, string> }
-	| { kind: 'candidates'; fingerprint: LayoutFingerprint };
+	| { kind: 'candidates'; fingerprint: LayoutFingerprint; runIndex: number };
 
 /** One channel of a lap, ready for the table `lap_traces`. */
 export interface TraceColumn {
@@ -65,8 +70,11 @@ export interface AnalysedLap {
 /** One run of the file, ready to be stored. */
 export interface AnalysedRun {
 	document: Omit<AnalysisDocument, 'path' | 'comparison'>;
-	/** the known layout that the run lies on, else a new one's path */
-	layout: { known: Pick<LayoutCandidate, 'layoutId' | 'pathVersion' | 'mapVersion'> } | { path: ReferencePath };
+	/** the known layout that the run lies on, else a new one's path, else the 0-based run of this file whose new one it is */
+	layout:
+		| { known: Pick<LayoutCandidate, 'layoutId' | 'pathVersion' | 'mapVersion'> }
+		| { path: ReferencePath }
+		| { sameAs: number };
 	laps: AnalysedLap[];
 	fullThrottle: FullThrottleModel | null;
 	brake: { unit: BrakeUnit | null; full: number | null; scaleAssumed: boolean };

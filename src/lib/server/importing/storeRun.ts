@@ -23,13 +23,19 @@ export interface RunPlace {
 	runIndex: number;
 	storedAt: Date;
 	mapping: ColumnMapping | null;
+	/** layouts of the earlier runs of this file */
+	earlier?: readonly LayoutVersion[];
+	/** a run that was deleted stays so: nobody asked for it to be read again */
+	staysDeleted?: boolean;
 }
 
 /**
  * Stores one run, or puts a new reading in the place of an earlier one: laps keep their ids where their number is the same, so
  * that links, references and notes go on to point at them.
+ *
+ * @returns the layout that the run lies on
  */
-export async function storeRun(trx: Knex.Transaction, place: RunPlace, analysed: AnalysedRun): Promise<void> {
+export async function storeRun(trx: Knex.Transaction, place: RunPlace, analysed: AnalysedRun): Promise<LayoutVersion> {
 	const before = await trx('runs')
 		.where({ upload_id: place.uploadId, run_index: place.runIndex })
 		.first<{ id: number; layout_id: number; car_id: number | null; started_at: Date | null } | undefined>(
@@ -38,7 +44,7 @@ export async function storeRun(trx: Knex.Transaction, place: RunPlace, analysed:
 			'car_id',
 			'started_at'
 		);
-	const version = await storeLayout(trx, place.ownerId, analysed);
+	const version = await storeLayout(trx, place, analysed);
 	const carId = before?.car_id ?? (await carOfMetadata(trx, place.ownerId, analysed.document.source.metadata));
 	if (carId !== null) await freezeBrake(trx, carId, analysed);
 	const startedAt = before?.started_at ?? (analysed.startedAtMs === null ? null : new Date(analysed.startedAtMs));
@@ -47,7 +53,7 @@ export async function storeRun(trx: Knex.Transaction, place: RunPlace, analysed:
 		car_id: carId,
 		started_at: startedAt,
 		sort_at: startedAt ?? place.storedAt,
-		deleted_at: null
+		...(!place.staysDeleted && { deleted_at: null })
 	};
 	let runId: number;
 	if (before) {
@@ -73,16 +79,22 @@ export async function storeRun(trx: Knex.Transaction, place: RunPlace, analysed:
 		.where({ id: runId })
 		.update({ analysis_id: analysisId, ...summaryOf(analysed, lapIds) });
 	if (before && before.layout_id !== version.layoutId) await removeUnusedLayout(trx, before.layout_id);
+	return version;
 }
 
 async function storeLayout(
 	trx: Knex.Transaction,
-	ownerId: number,
+	place: RunPlace,
 	{ layout, document }: AnalysedRun
 ): Promise<LayoutVersion> {
 	if ('known' in layout) return layout.known;
+	if ('sameAs' in layout) {
+		const version = place.earlier?.[layout.sameAs];
+		if (!version) throw new RangeError(`storeRun requires the layout of run ${layout.sameAs + 1} of the file`);
+		return version;
+	}
 	const { corners, cells } = document;
-	return await insertLayout(trx, { path: layout.path, corners, cells, createdBy: ownerId });
+	return await insertLayout(trx, { path: layout.path, corners, cells, createdBy: place.ownerId });
 }
 
 /** A pressure without a known full value is scaled by the car's first run, and from then on by the same value. */

@@ -3,11 +3,18 @@ import { z } from 'zod';
 /** Everything that is done outside a request, with what it needs to know. */
 export const jobPayloadSchemas = {
 	/** read, analyse and store an upload; an older revision than the upload's stores nothing */
-	importRun: z.object({ uploadId: z.number().int(), revision: z.number().int() }),
+	importRun: z.object({
+		uploadId: z.number().int(),
+		revision: z.number().int(),
+		/** `version`: nobody asked; the analysis has become better. What cannot be read again stays as it was. */
+		cause: z.enum(['person', 'version']).optional()
+	}),
+	/** queue files that an earlier version of the analysis read, a few at a time */
+	reanalyse: z.object({}),
 	/** tidy up: writes that never ended, counters and sessions that ran out */
 	sweep: z.object({})
 };
 
 export type JobKind = keyof typeof jobPayloadSchemas;
 export type JobPayload<Kind extends JobKind> = z.infer<(typeof jobPayloadSchemas)[Kind]>;
-export const JOB_KINDS: readonly JobKind[] = ['importRun', 'sweep'];
+export const JOB_KINDS: readonly JobKind[] = ['importRun', 'reanalyse', 'sweep'];

@@ -48,7 +48,7 @@ export async function enqueue<Kind extends JobKind>(
 
 const rowSchema = z.object({
 	id: z.number(),
-	kind: z.enum(['importRun', 'sweep']),
+	kind: z.enum(['importRun', 'reanalyse', 'sweep']),
 	payload: z.unknown(),
 	attempts: z.number(),
 	max_attempts: z.number()
@@ -140,6 +140,17 @@ export async function fail(db: Knex, job: ClaimedJob, fault: { code: string; mes
 /** Gives a job back untouched, as when the worker is told to stop; the attempt does not count. */
 export async function release(db: Knex, job: ClaimedJob): Promise<void> {
 	await heldJob(db, job).update({ status: 'waiting', claimed_by: null, attempts: db.raw('attempts - 1') });
+}
+
+/**
+ * Takes a job that a person no longer wants out of the queue. A worker that has it finds out with its next beat, and stores
+ * nothing.
+ */
+export async function cancel(trx: Knex | Knex.Transaction, uniqueKey: string): Promise<void> {
+	await trx('jobs')
+		.where({ unique_key: uniqueKey })
+		.whereIn('status', ['waiting', 'running'])
+		.update({ status: 'cancelled', unique_key: null, finished_at: trx.raw('CURRENT_TIMESTAMP(3)') });
 }
 
 /** Returns jobs whose worker is gone to the queue. A job that took its worker with it every time is given up by its next claim. */

@@ -5,6 +5,7 @@ import type { Viewer } from '../access/viewer.ts';
 import { recordAudit } from '../db/auditRepository.ts';
 import { findOrMakeCar } from '../db/carRepository.ts';
 import { database } from '../db/database.ts';
+import { decodePublicId } from '../db/publicId.ts';
 import { retryOnDeadlock } from '../db/retryOnDeadlock.ts';
 import type { FoundRun } from '../db/runRepository.ts';
 import { notFound } from '../http/notFound.ts';
@@ -53,6 +54,25 @@ export async function deleteRun(viewer: Viewer, runId: string): Promise<void> {
 			.update({ deleted_at: trx.raw('CURRENT_TIMESTAMP(3)') });
 		await recordAudit(trx, { actorId: viewer.personId, action: 'run_deleted', subject: { kind: 'run', id: runId } });
 	});
+}
+
+/**
+ * Brings back a run that was deleted by itself or with its upload; not one whose upload is still deleted.
+ *
+ * @throws 404 when there is nothing to bring back
+ */
+export async function restoreRun(viewer: Viewer, runId: string): Promise<void> {
+	const db = database();
+	const publicId = decodePublicId(runId) ?? notFound();
+	const kept = await keptPeople(db, viewer);
+	const run = await db('runs')
+		.leftJoin('uploads', 'uploads.id', 'runs.upload_id')
+		.where({ 'runs.public_id': publicId })
+		.whereIn('runs.owner_id', kept)
+		.whereNull('uploads.deleted_at')
+		.first<{ id: number } | undefined>('runs.id');
+	if (!run) notFound();
+	await retryOnDeadlock(db, (trx) => trx('runs').where({ id: run.id }).update({ deleted_at: null }));
 }
 
 async function getKeptRun(db: Knex, viewer: Viewer, runId: string): Promise<FoundRun> {

@@ -10,14 +10,17 @@ import { listLayoutHeads } from '../db/layoutHeads.ts';
 import { encodePublicId } from '../db/publicId.ts';
 import {
 	findUpload,
-	getUnderstood,
+	getReading,
 	listFoundUploads,
 	listRunIds,
 	seenUploadRows,
-	toUploadHead
+	toUploadHead,
+	type UploadReading
 } from '../db/uploadRepository.ts';
 import { notFound } from '../http/notFound.ts';
+import { findRemembered, shareableWith } from '../upload/rememberedMappings.ts';
 import { absentChannels } from './absentChannels.ts';
+import { loadArchiveFiles } from './loadArchiveFiles.ts';
 
 /** How far an upload is: cheap, for it is asked again and again. */
 export async function loadUploadHead(viewer: Viewer, uploadId: string): Promise<UploadHead> {
@@ -53,9 +56,14 @@ export async function loadUploads(viewer: Viewer): Promise<UploadHead[]> {
 export async function loadUpload(viewer: Viewer, uploadId: string): Promise<UploadView> {
 	const db = database();
 	const upload = (await findUpload(db, viewer, uploadId)) ?? notFound();
-	const [understood, runs] = await Promise.all([
-		getUnderstood(db, upload.id),
+	const [about, runs] = await Promise.all([
+		getReading(db, upload.id),
 		listUploadRuns(db, viewer, upload.id, upload.created_at)
+	]);
+	const { understood } = about;
+	const [remembered, files] = await Promise.all([
+		loadRemembered(db, viewer, upload.owner_id, about),
+		loadArchiveFiles(db, about.archive_files ?? [])
 	]);
 	return {
 		...toUploadHead(
@@ -63,10 +71,25 @@ export async function loadUpload(viewer: Viewer, uploadId: string): Promise<Uplo
 			runs.map(({ id }) => id)
 		),
 		sha256: upload.sha256?.toString('hex') ?? null,
+		mapping: about.mapping,
+		remembered,
+		shareableWith: shareableWith(viewer),
+		files,
 		understood,
 		absent: understood ? absentChannels(understood) : [],
 		runs
 	};
+}
+
+async function loadRemembered(
+	db: Knex,
+	viewer: Viewer,
+	ownerId: number,
+	about: UploadReading
+): Promise<UploadView['remembered']> {
+	if (!about.header_key) return null;
+	const kept = await findRemembered(db, { ...viewer, personId: ownerId }, about.header_key);
+	return kept && { scope: kept.scope, used: about.remembered_mapping_used === 1, mayForget: kept.mayForget };
 }
 
 const runRowSchema = z.object({

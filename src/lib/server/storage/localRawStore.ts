@@ -42,6 +42,16 @@ export class LocalRawStore implements RawStore {
 		return { sizeBytes, sha256: hash.digest() };
 	}
 
+	async adopt(key: string, path: string): Promise<KeptFile> {
+		const place = this.localPath(key);
+		await mkdir(dirname(place), { recursive: true, mode: 0o700 });
+		const kept = await measureFile(path);
+		await makeDurable(path);
+		await rename(path, place);
+		await makeDurable(dirname(place));
+		return kept;
+	}
+
 	async read(key: string): Promise<Readable> {
 		if (!(await this.has(key))) throw new FileMissing(key);
 		return createReadStream(this.localPath(key), { highWaterMark: 1 << 20 });
@@ -52,19 +62,7 @@ export class LocalRawStore implements RawStore {
 	}
 
 	async measure(key: string): Promise<KeptFile | null> {
-		const hash = createHash('sha256');
-		let sizeBytes = 0;
-		try {
-			for await (const chunk of await this.read(key)) {
-				const bytes: Uint8Array = chunk;
-				sizeBytes += bytes.length;
-				hash.update(bytes);
-			}
-		} catch (error) {
-			if (error instanceof FileMissing) return null;
-			throw error;
-		}
-		return { sizeBytes, sha256: hash.digest() };
+		return (await this.has(key)) ? await measureFile(this.localPath(key)) : null;
 	}
 
 	async remove(key: string): Promise<void> {
@@ -102,9 +100,20 @@ async function namesIn(folder: string): Promise<string[]> {
 	}
 }
 
-/** A rename is durable once its folder is. */
-async function makeDurable(folder: string): Promise<void> {
-	const handle = await open(folder, 'r');
+async function measureFile(path: string): Promise<KeptFile> {
+	const hash = createHash('sha256');
+	let sizeBytes = 0;
+	for await (const chunk of createReadStream(path, { highWaterMark: 1 << 20 })) {
+		const bytes: Uint8Array = chunk;
+		sizeBytes += bytes.length;
+		hash.update(bytes);
+	}
+	return { sizeBytes, sha256: hash.digest() };
+}
+
+/** A file, or a folder: a rename is durable once its folder is. */
+async function makeDurable(path: string): Promise<void> {
+	const handle = await open(path, 'r');
 	try {
 		await handle.sync();
 	} finally {

@@ -1,14 +1,13 @@
+import type { Knex } from 'knex';
 import type { Viewer } from '../access/viewer.ts';
 import { mayUpload } from '../auth/throttle.ts';
 import { database } from '../db/database.ts';
 import { encodePublicId, newPublicId } from '../db/publicId.ts';
-import { retryOnDeadlock } from '../db/retryOnDeadlock.ts';
 import { environment } from '../environment.ts';
 import { RequestProblem } from '../http/problem.ts';
-import { enqueue } from '../jobs/jobQueue.ts';
 import { FileTooLarge, type KeptFile } from '../storage/rawStore.ts';
 import { rawStore, storageKeyOf } from '../storage/store.ts';
-import { importKey } from './importKey.ts';
+import { settleReceived, type Settled } from './settleReceived.ts';
 
 const LONGEST_NAME = 255;
 
@@ -18,23 +17,18 @@ const LONGEST_NAME = 255;
  *
  * @param fileName as the browser says it; only its last part is kept
  * @param body the bytes, in chunks; gzip is kept as it came
- * @returns the upload's public id
+ * @returns the upload's public id, that of an earlier upload where the person had handed over the same file before
  * @throws {RequestProblem} `throttled`, `file_too_large`, `upload_interrupted`, `unavailable`; nothing is kept then
  */
 export async function receiveUpload(
 	viewer: Viewer,
 	fileName: string,
 	body: AsyncIterable<Uint8Array>
-): Promise<string> {
+): Promise<Settled> {
 	const db = database();
-	if (!(await mayUpload(db, viewer.personId))) {
-		throw new RequestProblem(429, 'throttled', 'an hour holds at most 200 uploads of one person', {
-			remedy: 'Wait a while, then hand over the rest'
-		});
-	}
+	await countUpload(db, viewer);
 	const publicId = newPublicId();
-	const id = encodePublicId(publicId);
-	const storageKey = storageKeyOf(id);
+	const storageKey = storageKeyOf(encodePublicId(publicId));
 	const [uploadId]: number[] = await db('uploads').insert({
 		public_id: publicId,
 		owner_id: viewer.personId,
@@ -50,18 +44,7 @@ export async function receiveUpload(
 		await db('uploads').where({ id: uploadId }).delete();
 		throw problemOfWrite(error);
 	}
-	await retryOnDeadlock(db, async (trx) => {
-		await trx('uploads')
-			.where({ id: uploadId })
-			.update({
-				state: 'stored',
-				size_bytes: kept.sizeBytes,
-				sha256: kept.sha256,
-				stored_at: trx.raw('CURRENT_TIMESTAMP(3)')
-			});
-		await enqueue(trx, 'importRun', { uploadId, revision: 1 }, { uniqueKey: importKey(uploadId, 1) });
-	});
-	return id;
+	return await settleReceived(db, rawStore(), { id: uploadId, publicId, ownerId: viewer.personId, storageKey }, kept);
 }
 
 /** The last part of a path, without characters that steer a terminal or a header. */
@@ -71,7 +54,20 @@ export function cleanName(fileName: string): string {
 	return [...clean].slice(0, LONGEST_NAME).join('') || 'run.csv';
 }
 
-function problemOfWrite(error: unknown): unknown {
+/**
+ * Counts an upload of a person.
+ *
+ * @throws {RequestProblem} `throttled` beyond what one person hands over
+ */
+export async function countUpload(db: Knex, viewer: Viewer): Promise<void> {
+	if (await mayUpload(db, viewer.personId)) return;
+	throw new RequestProblem(429, 'throttled', 'an hour holds at most 200 uploads of one person', {
+		remedy: 'Wait a while, then hand over the rest'
+	});
+}
+
+/** What a person can do about it that a file could not be kept; anything else stays what it is. */
+export function problemOfWrite(error: unknown): unknown {
 	if (error instanceof FileTooLarge) {
 		const limitMb = Math.floor(error.limitBytes / 1024 / 1024);
 		return new RequestProblem(413, 'file_too_large', `a file requires at most ${limitMb} MB`, {

@@ -17,6 +17,9 @@ export const GET = apiRoute(async (event) => {
 export const PUT = apiRoute(async (event) => {
 	const viewer = requireViewer(event, 'uploads:write');
 	const { name } = readQuery(event.url, uploadQuerySchema);
-	const id = await receiveUpload(viewer, name, bodyChunks(event.request));
-	return jsonResponse(JSON.stringify(await loadUploadHead(viewer, id)), 202, { location: `/api/v1/uploads/${id}` });
+	const { id, sameFile } = await receiveUpload(viewer, name, bodyChunks(event.request));
+	return jsonResponse(JSON.stringify(await loadUploadHead(viewer, id)), sameFile ? 200 : 202, {
+		location: `/api/v1/uploads/${id}`,
+		...(sameFile && { 'kerbnote-same-file': 'true' })
+	});
 });
