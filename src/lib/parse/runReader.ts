@@ -69,6 +69,11 @@ export class RunReader {
 		this.#options = options;
 	}
 
+	/** Rows that were read so far. */
+	get rows(): number {
+		return this.#reading?.store.rows ?? 0;
+	}
+
 	/**
 	 * Takes the next bytes; the chunk may be used again afterwards.
 	 *
