@@ -126,6 +126,22 @@ export const metricsSchema = z.object({
 	idleGapS: nullable,
 	lockUps: z.number().int().nullable(),
 	timeS: nullable,
+	/** coasting's three shares: before the brake, between brakings, after the brake; absent in older analyses */
+	coastBeforeS: nullable.optional(),
+	coastBetweenS: nullable.optional(),
+	coastAfterS: nullable.optional(),
+	/** level of the longest level stretch of 2–25 % after the peak while the car turns */
+	holdPct: nullable.optional(),
+	/** mean deceleration while the brake is above 80 % of its peak */
+	brakedMps2: nullable.optional(),
+	/** time with a driven wheel turning over 10 % faster than the ground, on the throttle, from the apex on */
+	spinS: nullable.optional(),
+	/** back-and-forth movements of the steering from turn-in to the corner's end */
+	steerCorrections: z.number().int().nullable().optional(),
+	/** lock-ups of a rear wheel that begin at a downshift */
+	rearLocks: z.number().int().nullable().optional(),
+	/** wheels that locked, as "fl fr"; null for none */
+	lockWheels: z.string().nullable().optional(),
 	/** ± by field, where sampling or noise limits it */
 	plusMinus: z.record(z.string(), z.number()),
 	reasons: z.record(z.string(), metricReasonSchema)
@@ -140,7 +156,9 @@ export const lockUpSchema = z.object({
 	endS: z.number(),
 	lowestSlip: z.number(),
 	lap: z.number().int().nullable(),
-	corner: z.number().int().nullable()
+	corner: z.number().int().nullable(),
+	/** a rear wheel that locks at a downshift; null where gears are not known */
+	atDownshift: z.boolean().nullable().optional()
 });
 export type LockUp = z.infer<typeof lockUpSchema>;
 
@@ -169,7 +187,11 @@ export const findingSchema = z.object({
 	 */
 	shares: z.array(z.object({ corner: z.number().int(), costS: z.number() })),
 	evidence: z.array(evidenceSchema),
-	text: z.string()
+	text: z.string(),
+	/** the exercise that goes with it, before circumstances are looked at (see the advice gates); null where there is none */
+	drill: z.string().nullable().optional(),
+	/** a clean lap of the driver's own run that did not show it; null where there is none */
+	ownLap: z.number().int().nullable().optional()
 });
 export type Finding = z.infer<typeof findingSchema>;
 

@@ -15,7 +15,10 @@ export interface NumberRow {
 	difference: string;
 }
 
-type Field = Exclude<keyof CornerMetrics, 'lap' | 'corner' | 'plusMinus' | 'reasons' | 'releaseProgressive'>;
+type Field = Exclude<
+	keyof CornerMetrics,
+	'lap' | 'corner' | 'plusMinus' | 'reasons' | 'releaseProgressive' | 'lockWheels'
+>;
 
 interface Quantity {
 	field: Field;

@@ -1,5 +1,6 @@
 import type { Comparison, Corner, CornerMetrics } from '../../schemas/analysisDocument.ts';
 import type { FullThrottleModel } from '../car/fullThrottle.ts';
+import { gripEnvelope, type GripEnvelope } from '../car/gripEnvelope.ts';
 import { countsOnce } from '../findings/countsOnce.ts';
 import { differenceOf, type MetricField } from '../findings/difference.ts';
 import { nameFindings } from '../findings/nameFindings.ts';
@@ -24,7 +25,13 @@ export interface CompareInput {
 	reference: CompareSide;
 	corners: Corner[];
 	/** the driver's whole run, for habits and for the car at full throttle */
-	run: { metrics: CornerMetrics[]; cleanLaps: number[]; fullThrottle: FullThrottleModel | null };
+	run: {
+		metrics: CornerMetrics[];
+		cleanLaps: number[];
+		fullThrottle: FullThrottleModel | null;
+		/** grip that the whole run has shown; undefined: what this lap shows stands for it */
+		grip?: GripEnvelope | null;
+	};
 }
 
 /** Room before the first braking, so that the gap there is read before it changes. */
@@ -72,7 +79,12 @@ export function compareLaps(input: CompareInput): Comparison {
 		gap,
 		driver,
 		reference,
-		cleanMetrics: run.metrics.filter((m) => clean.has(m.lap))
+		cleanMetrics: run.metrics.filter((m) => clean.has(m.lap)),
+		corners,
+		grip: {
+			driver: run.grip === undefined ? gripEnvelope([driver.grid]) : run.grip,
+			reference: gripEnvelope([reference.grid])
+		}
 	});
 	const unexplained = ledger.map(({ corner, totalS }) => {
 		const explained = findings

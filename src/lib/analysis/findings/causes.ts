@@ -1,8 +1,10 @@
-import type { Evidence } from '../../schemas/analysisDocument.ts';
+import type { CornerMetrics, Evidence } from '../../schemas/analysisDocument.ts';
 import type { FindingCode } from '../../schemas/codes.ts';
 import type { CornerPlaces } from '../compare/cornerPlaces.ts';
+import type { LapGrid } from '../model.ts';
 import type { BrakingStrength } from './brakingStrength.ts';
 import type { Cornering } from './cornering.ts';
+import { scrub } from './scrub.ts';
 import { differenceOf, evidenceOf, type Difference, type MetricField, type MetricsPair } from './difference.ts';
 
 /** A named cause in one corner before its seconds are known. */
@@ -19,6 +21,12 @@ export interface CornerCase {
 	pair: MetricsPair;
 	strength: BrakingStrength | null;
 	cornering: Cornering | null;
+	/** share of the run's own grip used in the middle of the corner; null where not known */
+	gripShare: { driver: number; reference: number } | null;
+	/** metrics of the run's clean laps in this corner */
+	ownLaps: readonly CornerMetrics[];
+	driverGrid: LapGrid;
+	referenceGrid: LapGrid;
 }
 
 /** A share of the loss of one stage that goes to a cause. */
@@ -42,9 +50,15 @@ const TIGHTER_RADIUS = 0.93;
 const GRIP_USED = 0.97;
 const GRIP_LEFT = 0.93;
 const LEAST_OFFSET_M = 0.8;
+/** Share of the run's own acceleration envelope under which grip is left, and how far under the reference's. */
+const LEAST_GRIP_SHARE = 0.85;
+const LEAST_GRIP_APART = 0.08;
 /** What is worth a word beside the finding that it belongs to. */
 const LEAST_COASTING_S = 0.1;
 const LEAST_TOLD_M = 2;
+export const LEAST_SPIN_S = 0.15;
+/** From here on full throttle is late by hesitation where the pick-up is not. */
+const LEAST_HESITATION_M = 8;
 /** A peak nearer to the reference's than this explains no earlier onset. */
 const LEAST_PEAK_PCT = 5;
 /** An opening of the throttle longer than the reference's is a cause of its own from this share of the lateness on. */
@@ -69,8 +83,23 @@ export function causesBeforeBrake(c: CornerCase): CauseShare[] {
 	const liftsAlone = c.pair.driver?.liftM != null && c.place.reference.flat;
 	const liftCounts = less(lift) || liftsAlone;
 	if (!liftCounts) return [];
+	if (liftsAlone && c.pair.driver?.onsetM == null) return whole(extraLift(c));
 	const coasts = more(differenceOf(c.pair, 'coastingS'));
-	return whole(coasts ? cause(c, 'coasting', 'coastingS', 'liftM') : cause(c, 'brake_early', 'liftM'));
+	return whole(coasts ? coasted(c, 'liftM') : cause(c, 'brake_early', 'liftM'));
+}
+
+/** A lift for a corner that the reference takes at full throttle. */
+function extraLift(c: CornerCase): Cause {
+	const opening = c.pair.driver?.smallestOpeningPct == null ? [] : (['smallestOpeningPct'] as const);
+	return cause(c, 'lift_extra', 'liftM', ...opening);
+}
+
+/** Coasting with those of its three shares that are longer than the reference's. */
+function coasted(c: CornerCase, ...further: MetricField[]): Cause {
+	const shares = (['coastBeforeS', 'coastBetweenS', 'coastAfterS'] as const).filter((field) =>
+		moreBy(differenceOf(c.pair, field), LEAST_COASTING_S)
+	);
+	return cause(c, 'coasting', 'coastingS', ...further, ...shares);
 }
 
 /**
@@ -121,7 +150,8 @@ function strengthEvidence({ driverMps2, referenceMps2 }: BrakingStrength, atM: n
 
 /** Slowing down more than the reference, on the brake or off it, before the reference picks the throttle up. */
 export function causesOfSlowing(c: CornerCase, onBrake: boolean): CauseShare[] {
-	if (more(differenceOf(c.pair, 'lockUps'))) return whole(cause(c, 'lock_up', 'lockUps'));
+	const lock = locked(c);
+	if (lock) return whole(lock);
 	const minimum = differenceOf(c.pair, 'minKmh');
 	const coasting = differenceOf(c.pair, 'coastingS');
 	if (less(minimum)) {
@@ -132,12 +162,29 @@ export function causesOfSlowing(c: CornerCase, onBrake: boolean): CauseShare[] {
 		return whole(cause(c, 'min_speed_low', 'minKmh', ...longer, ...rolls));
 	}
 	if (onBrake) {
-		if (more(differenceOf(c.pair, 'peakPct'))) return whole(overPeak(c));
+		if (more(differenceOf(c.pair, 'peakPct')) && knowsFullBrake(c)) return whole(overPeak(c));
 		if (more(differenceOf(c.pair, 'releaseS'))) return whole(cause(c, 'release_long', 'releaseS', 'releaseEndM'));
 		if (more(differenceOf(c.pair, 'dabs'))) return whole(cause(c, 'second_dab', 'dabs'));
 	}
-	if (more(coasting)) return whole(cause(c, 'coasting', 'coastingS'));
+	if (more(coasting)) return whole(coasted(c));
 	return whole(unusedGrip(c));
+}
+
+/** A wheel that locks more often than the reference's; a rear one at a downshift is its own cause. */
+export function locked(c: CornerCase): Cause | null {
+	const atDownshift = more(differenceOf(c.pair, 'rearLocks'));
+	if (!atDownshift && !more(differenceOf(c.pair, 'lockUps'))) return null;
+	const named = atDownshift ? cause(c, 'rear_lock', 'rearLocks') : cause(c, 'lock_up', 'lockUps');
+	const atM = c.pair.driver?.peakM ?? null;
+	for (const wheel of c.pair.driver?.lockWheels?.split(' ') ?? [])
+		named.evidence.push({ quantity: `lock_${wheel}`, unit: '', driver: 1, reference: null, atM, plusMinus: null });
+	return named;
+}
+
+/** Is full brake known, or only guessed from the run? A guess allows no word about too much. */
+export function knowsFullBrake({ pair }: CornerCase): boolean {
+	const guessed = (metrics: CornerMetrics | undefined) => metrics?.reasons.peakPct === 'brake_scale_assumed';
+	return !guessed(pair.driver) && !guessed(pair.reference);
 }
 
 /** A peak over the reference's; that it slows no harder is said where it was measured. */
@@ -173,8 +220,26 @@ function unusedGrip(c: CornerCase): Cause | null {
 	return {
 		code: 'grip_unused',
 		field: null,
-		evidence: [{ quantity: 'lateralAcceleration', unit: 'm/s²', driver, reference, atM, plusMinus: null }]
+		evidence: [
+			{ quantity: 'lateralAcceleration', unit: 'm/s²', driver, reference, atM, plusMinus: null },
+			...gripEvidence(c, atM)
+		]
 	};
+}
+
+/** Much less of the run's own grip is used than in the reference lap, on the same radius. */
+export function unusedShare(c: CornerCase): Cause | null {
+	const { gripShare, cornering } = c;
+	if (!gripShare || !cornering) return null;
+	if (!(gripShare.driver < LEAST_GRIP_SHARE && gripShare.reference - gripShare.driver > LEAST_GRIP_APART)) return null;
+	return unusedGrip(c);
+}
+
+/** Share of the run's own grip envelope at that speed, where it is known. */
+function gripEvidence({ gripShare }: CornerCase, atM: number): Evidence[] {
+	if (!gripShare) return [];
+	const [driver, reference] = [100 * gripShare.driver, 100 * gripShare.reference];
+	return [{ quantity: 'gripShare', unit: '%', driver, reference, atM, plusMinus: null }];
 }
 
 /** Off the throttle after the reference picked it up. */
@@ -183,13 +248,15 @@ export function causesOfLatePickUp(c: CornerCase): CauseShare[] {
 	if (root) return whole(root);
 	const pickUp = differenceOf(c.pair, 'pickUpM');
 	const picksUpAlone = pickUp === null && c.place.reference.flat && c.pair.driver?.pickUpM != null;
+	if (picksUpAlone && c.pair.driver?.onsetM == null) return whole(extraLift(c));
 	if (more(pickUp) || picksUpAlone) return whole(cause(c, 'pick_up_late', 'pickUpM'));
-	return whole(more(differenceOf(c.pair, 'coastingS')) ? cause(c, 'coasting', 'coastingS') : slowExit(c));
+	return whole(more(differenceOf(c.pair, 'coastingS')) ? coasted(c) : slowExit(c));
 }
 
 /** A locked wheel, or a brake that is held so long that the pick-up had to wait for it, explains the lateness. */
 function rootOfLatePickUp(c: CornerCase): Cause | null {
-	if (more(differenceOf(c.pair, 'lockUps'))) return cause(c, 'lock_up', 'lockUps');
+	const lock = locked(c);
+	if (lock) return lock;
 	const pickUp = differenceOf(c.pair, 'pickUpM');
 	const release = differenceOf(c.pair, 'releaseEndM');
 	if (!more(pickUp) || !more(release) || !less(differenceOf(c.pair, 'minKmh'))) return null;
@@ -230,6 +297,12 @@ function shareOfShift(c: CornerCase, lateM: number): number {
 
 function slowExit(c: CornerCase): Cause | null {
 	if (!less(differenceOf(c.pair, 'exitKmh'))) return null;
+	if (moreBy(differenceOf(c.pair, 'spinS'), LEAST_SPIN_S)) return cause(c, 'wheelspin', 'spinS', 'exitKmh');
+	const scrubs = scrub(c);
+	if (scrubs) return scrubs;
+	const later = differenceOf(c.pair, 'fullThrottleM');
+	const asEarly = !more(differenceOf(c.pair, 'pickUpM')) && c.pair.driver?.pickUpM != null;
+	if (asEarly && moreBy(later, LEAST_HESITATION_M)) return cause(c, 'pick_up_hesitant', 'fullThrottleM', 'exitKmh');
 	const full = moreBy(differenceOf(c.pair, 'fullThrottleM'), LEAST_TOLD_M) ? (['fullThrottleM'] as const) : [];
 	return cause(c, 'exit_speed_low', 'exitKmh', ...full);
 }

@@ -11,7 +11,7 @@ export interface MetricsPair {
 }
 
 type NumericField = {
-	[F in keyof CornerMetrics]: CornerMetrics[F] extends number | null ? F : never;
+	[F in keyof CornerMetrics]-?: NonNullable<CornerMetrics[F]> extends number ? F : never;
 }[keyof CornerMetrics];
 export type MetricField = Exclude<NumericField, 'lap' | 'corner' | 'onsetS'>;
 
@@ -25,7 +25,7 @@ interface FieldFacts {
 	place?: true;
 }
 
-/** What findings are judged by. Places are also compared with 1 m of slack, the step of the path. */
+/** What findings are judged by. Places are never told apart by less than this, the step of the path and the jitter of positions. */
 export const FIELD_FACTS: Record<MetricField, FieldFacts> = {
 	onsetM: { quantity: 'onset', unit: 'm', plusMinus: 1, place: true },
 	peakPct: { quantity: 'peak', unit: '%', plusMinus: 2 },
@@ -54,7 +54,15 @@ export const FIELD_FACTS: Record<MetricField, FieldFacts> = {
 	exitKmh: { quantity: 'exitSpeed', unit: 'km/h', plusMinus: 0.7 },
 	idleGapS: { quantity: 'idleGap', unit: 's', plusMinus: 0.1 },
 	lockUps: { quantity: 'lockUps', unit: '', plusMinus: 0 },
-	timeS: { quantity: 'cornerTime', unit: 's', plusMinus: 0.002 }
+	timeS: { quantity: 'cornerTime', unit: 's', plusMinus: 0.002 },
+	coastBeforeS: { quantity: 'coastBefore', unit: 's', plusMinus: 0.05 },
+	coastBetweenS: { quantity: 'coastBetween', unit: 's', plusMinus: 0.05 },
+	coastAfterS: { quantity: 'coastAfter', unit: 's', plusMinus: 0.05 },
+	holdPct: { quantity: 'holdLevel', unit: '%', plusMinus: 1 },
+	brakedMps2: { quantity: 'deceleration', unit: 'm/s²', plusMinus: 0.15 },
+	spinS: { quantity: 'wheelspin', unit: 's', plusMinus: 0.1 },
+	steerCorrections: { quantity: 'corrections', unit: '', plusMinus: 0 },
+	rearLocks: { quantity: 'rearLocks', unit: '', plusMinus: 0 }
 };
 
 /** One metric of both laps. */
@@ -80,10 +88,11 @@ export function differenceOf(pair: MetricsPair, field: MetricField): Difference 
 	const reference = pair.reference?.[field] ?? null;
 	if (driver === null || reference === null) return null;
 	const facts = FIELD_FACTS[field];
-	const plusMinus = Math.hypot(
-		pair.driver?.plusMinus[field] ?? facts.plusMinus,
-		pair.reference?.plusMinus[field] ?? facts.plusMinus
-	);
+	const plusMinusOf = (metrics: CornerMetrics | undefined): number => {
+		const own = metrics?.plusMinus[field];
+		return own === undefined ? facts.plusMinus : facts.place ? Math.max(own, facts.plusMinus) : own;
+	};
+	const plusMinus = Math.hypot(plusMinusOf(pair.driver), plusMinusOf(pair.reference));
 	const by = facts.place ? nearestPlace(0, driver - reference, pair.lengthM) : driver - reference;
 	return { field, driver, reference, by, plusMinus, counts: Math.abs(by) > plusMinus };
 }

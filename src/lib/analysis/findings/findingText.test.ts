@@ -117,7 +117,7 @@ const CASES: { code: FindingCode; evidence: Evidence[]; text: string }[] = [
 	{
 		code: 'line',
 		evidence: [evidence('radius', 'm', 31, 36, 510), evidence('offset', 'm', -2.1, 0, 510)],
-		text: 'Turns a radius of 31 m, not 36 m, at 510 m, 2 m beside the reference’s line.'
+		text: 'Takes a tighter line: turns a radius of 31 m, not 36 m, at 510 m.'
 	},
 	{
 		code: 'grip_unused',
@@ -139,6 +139,124 @@ const CASES: { code: FindingCode; evidence: Evidence[]; text: string }[] = [
 		code: 'carried_in',
 		evidence: [evidence('lineSpeed', 'km/h', 171, 176, 0)],
 		text: 'Brought along from the lap before: crosses the line at 171 km/h, not 176 km/h.'
+	},
+	{
+		code: 'harder_no_gain',
+		evidence: [
+			evidence('peak', '%', 92, 75),
+			evidence('deceleration', 'm/s²', 9.5, 9.6),
+			evidence('laps', '', 4, null)
+		],
+		text: 'Peaks at 92 %, not 75 % in 4 laps, and slows no harder: 9.5 m/s². The tyres, a system or the brakes give no more.'
+	},
+	{
+		code: 'pedal_change_slow',
+		evidence: [evidence('coastBefore', 's', 0.31, 0.12)],
+		text: 'Takes 0.31 s, not 0.12 s, to change from throttle to brake.'
+	},
+	{
+		code: 'pedal_overlap',
+		evidence: [evidence('overlap', 's', 0.6, 0.1)],
+		text: 'Both pedals pressed for 0.6 s, not 0.1 s.'
+	},
+	{
+		code: 'release_uneven',
+		evidence: [evidence('release', 's', 0.8, 0.9)],
+		text: 'Lets the brake go unevenly, over 0.80 s, where the reference eases it off ever more gently.'
+	},
+	{
+		code: 'hold_short',
+		evidence: [evidence('lightHold', 's', 0.21, 0.6)],
+		text: 'Holds the brake lightly for only 0.2 s, not 0.6 s.'
+	},
+	{
+		code: 'hold_strong',
+		evidence: [evidence('holdLevel', '%', 18, 7), evidence('lightHold', 's', 0, 0.6)],
+		text: 'Holds the brake at 18 %, not 7 %, while turning, where the reference holds it lightly for 0.6 s.'
+	},
+	{
+		code: 'pick_up_hesitant',
+		evidence: [evidence('fullThrottle', 'm', 612, 590), evidence('exitSpeed', 'km/h', 96, 101)],
+		text: 'Opens the throttle slowly: full at 612 m, not 590 m; leaves at 96 km/h, not 101 km/h.'
+	},
+	{
+		code: 'lift_extra',
+		evidence: [evidence('lift', 'm', 760, null), evidence('smallestOpening', '%', 40, null)],
+		text: 'Lifts at 760 m, to 40 %, where the reference does not lift.'
+	},
+	{
+		code: 'coasting',
+		evidence: [
+			evidence('coasting', 's', 0.9, 0.2),
+			evidence('coastBefore', 's', 0.5, 0.1),
+			evidence('coastAfter', 's', 0.4, 0.1)
+		],
+		text: 'Coasts 0.9 s, not 0.2 s; of it 0.5 s before the brake, 0.4 s after the brake.'
+	},
+	{
+		code: 'exit_speed_low',
+		evidence: [evidence('exitSpeed', 'km/h', 96, 101, 520), evidence('straight', 'm', 640, null)],
+		text: 'Leaves at 96 km/h, not 101 km/h, before 640 m of straight.'
+	},
+	{
+		code: 'wheelspin',
+		evidence: [evidence('wheelspin', 's', 0.7, 0), evidence('exitSpeed', 'km/h', 96, 101)],
+		text: 'Spins a wheel for 0.7 s, not 0.0 s; leaves at 96 km/h, not 101 km/h.'
+	},
+	{
+		code: 'scrub',
+		evidence: [evidence('steering', '°', 130, 95)],
+		text: 'Steers 130 °, not 95 °, and turns no tighter. The front tyres scrub.'
+	},
+	{
+		code: 'steering_corrections',
+		evidence: [evidence('corrections', '', 3, 0)],
+		text: 'Corrects the steering 3 times in the corner, not 0.'
+	},
+	{
+		code: 'turn_in_early',
+		evidence: [evidence('turnIn', 'm', 490, 502)],
+		text: 'Turns in 12 m early: at 490 m, not 502 m.'
+	},
+	{
+		code: 'turn_in_late',
+		evidence: [evidence('turnIn', 'm', 514, 502)],
+		text: 'Turns in 12 m late: at 514 m, not 502 m.'
+	},
+	{
+		code: 'chain_exit_low',
+		evidence: [
+			evidence('chainFound', 's', 0.08, null),
+			evidence('chainLost', 's', 0.21, null),
+			evidence('fromCorner', '', 3, null)
+		],
+		text: 'Finds 0.1 s in the linked corners from 3 on, and loses 0.2 s out of the last one.'
+	},
+	{
+		code: 'lock_up',
+		evidence: [evidence('lockUps', '', 1, 0), evidence('lock_fl', '', 1, null), evidence('lock_fr', '', 1, null)],
+		text: 'Locks the front left and the front right. Lock-ups: 1, not 0. Check for a flat spot.'
+	},
+	{
+		code: 'rear_lock',
+		evidence: [evidence('rearLocks', '', 1, 0), evidence('lock_rl', '', 1, null)],
+		text: 'Locks the rear left at a downshift: 1, not 0 times. Check for a flat spot.'
+	},
+	{ code: 'gear_other', evidence: [evidence('gear', '', 3, 2)], text: 'Takes the corner in gear 3, not 2.' },
+	{
+		code: 'short_shift',
+		evidence: [evidence('shiftSpeed', '1/min', 6100, 7000, 520)],
+		text: 'Shifts up at 6100 1/min, not 7000 1/min, at 520 m.'
+	},
+	{
+		code: 'spread_onset',
+		evidence: [evidence('onsetSpread', 'm', 8.4, null)],
+		text: 'Brakes at places that differ by 8 m from lap to lap (standard deviation).'
+	},
+	{
+		code: 'spread_min_speed',
+		evidence: [evidence('minSpeedSpread', 'km/h', 3.6, null)],
+		text: 'The lowest speed differs by 4 km/h from lap to lap (standard deviation).'
 	},
 	{
 		code: 'brake_early',

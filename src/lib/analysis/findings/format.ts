@@ -15,7 +15,7 @@ export function digitsFor(unit: string, driver: number | null, reference: number
 	const apart = driver !== null && reference !== null ? Math.abs(driver - reference) : Infinity;
 	if (unit === 's') return apart < 0.25 ? 2 : 1;
 	if (unit === 'm/s²') return 1;
-	if (unit === '') return 0;
+	if (unit === '' || unit === '1/min' || unit === '°') return 0;
 	return apart < 2 ? 1 : 0;
 }
 

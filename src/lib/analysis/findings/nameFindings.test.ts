@@ -45,12 +45,12 @@ function driven(stretches: Stretch[], startMps = START_MPS): CompareSide {
 }
 
 describe('nameFindings', () => {
-	it('charges a slow opening of the throttle to the exit', () => {
+	it('charges a slow opening of the throttle to hesitation where the pick-up is not late', () => {
 		const lap = driven([...REFERENCE.slice(0, 3), { toM: 480, mps2: 1, throttlePct: 30 }, { toM: 1000, mps2: 2 }]);
 		const comparison = compare(lap, reference());
 		expect(said(comparison)[0]).toEqual({
 			corner: 1,
-			code: 'exit_speed_low',
+			code: 'pick_up_hesitant',
 			costS: expect.closeTo(comparison.deltaS, 2)
 		});
 	});
@@ -158,7 +158,7 @@ describe('nameFindings', () => {
 			{ toM: 1000, mps2: 2 }
 		];
 		const comparison = compare(driven(lifting), reference());
-		expect(said(comparison)).toEqual([{ corner: 2, code: 'brake_early', costS: expect.closeTo(comparison.deltaS, 2) }]);
+		expect(said(comparison)).toEqual([{ corner: 2, code: 'lift_extra', costS: expect.closeTo(comparison.deltaS, 2) }]);
 		expect(comparison.findings[0].text).toMatch(/^Lifts at 760.m, where the reference does not lift\.$/);
 	});
 

@@ -6,9 +6,11 @@ import type { CornerPlaces } from '../compare/cornerPlaces.ts';
 import { gapIndex, type SpeedGap } from '../compare/speedGap.ts';
 import { CARRIED_IN, poolOf, type StageKind } from '../compare/stages.ts';
 import type { LapGrid } from '../model.ts';
+import { gripShareAt, type GripEnvelope } from '../car/gripEnvelope.ts';
 import { brakingStrength } from './brakingStrength.ts';
 import * as causes from './causes.ts';
 import type { Cause, CauseShare, CornerCase } from './causes.ts';
+import { chainCause, judgeChains } from './chains.ts';
 import { corneringAt } from './cornering.ts';
 import { differenceOf, evidenceOf } from './difference.ts';
 import { findingText } from './findingText.ts';
@@ -35,6 +37,10 @@ export interface FindingsInput {
 	reference: { grid: LapGrid; metrics: readonly CornerMetrics[] };
 	/** metrics of the driver's clean laps, for habits */
 	cleanMetrics: readonly CornerMetrics[];
+	/** the corner map, for chains of linked corners */
+	corners: readonly Corner[];
+	/** what each lap's run has shown of the car's grip; null where not known */
+	grip: { driver: GripEnvelope | null; reference: GripEnvelope | null };
 }
 
 /** A cause with what it costs in each ledger row. */
@@ -68,13 +74,18 @@ export function nameFindings(input: FindingsInput): Finding[] {
 	const { lengthM } = reference.grid;
 	const charged: Charged[] = runUpCauses(input);
 	const techniques: Charged[] = [];
+	const chains = judgeChains(input.corners, rows);
 	places.forEach((place, k) => {
 		const of = (metrics: readonly CornerMetrics[]) => metrics.find((m) => m.corner === place.number);
 		const c: CornerCase = {
 			place,
 			pair: { driver: of(driver.metrics), reference: of(reference.metrics), apexM: place.apexM, lengthM },
 			strength: brakingStrength(driver.grid, reference.grid, place),
-			cornering: corneringAt(driver.grid, reference.grid, place)
+			cornering: corneringAt(driver.grid, reference.grid, place),
+			gripShare: gripShares(input, place),
+			ownLaps: input.cleanMetrics.filter((m) => m.corner === place.number),
+			driverGrid: driver.grid,
+			referenceGrid: reference.grid
 		};
 		const here: Charged[] = [];
 		for (const kind of KINDS) {
@@ -84,14 +95,41 @@ export function nameFindings(input: FindingsInput): Finding[] {
 		}
 		const named = blameEntry(c, here).filter(({ byRow }) => Math.abs(total(byRow)) >= LEAST_COST_S);
 		charged.push(...named, ...straightCause(input, k + 1, place.corner));
-		for (const cause of techniquesOf(c)) {
-			if (!named.some((other) => other.cause.code === cause.code))
+		const chain = chains.find(({ corners }) => corners.at(-1) === place.number);
+		const inChain = chain ? chainCause(chain, c.pair) : null;
+		for (const cause of [...(inChain ? [inChain] : []), ...techniquesOf(c)]) {
+			if (!named.some((other) => isSaidBy(cause.code, other.cause.code)))
 				techniques.push({ corner: place.number, cause, byRow: new Float64Array(rows.length) });
 		}
 	});
 	const findings = charged.map((one) => toFinding(one, input));
 	const costless = techniques.map((one) => toFinding(one, input));
 	return [...findings, ...carriedIn(findings, rows), ...costless].sort((a, b) => (b.costS ?? 0) - (a.costS ?? 0));
+}
+
+/** A technique that a charged cause tells already. */
+const TOLD_BY: Partial<Record<FindingCode, readonly FindingCode[]>> = {
+	pedal_change_slow: ['coasting'],
+	peak_over: ['harder_no_gain'],
+	lock_up: ['rear_lock'],
+	chain_exit_low: []
+};
+
+const isSaidBy = (technique: FindingCode, charged: FindingCode): boolean =>
+	technique === charged || (TOLD_BY[technique]?.includes(charged) ?? false);
+
+/** Half of the stretch about the apex over which grip is read, by the corner's length. */
+const GRIP_SHARE_HALF = 0.2;
+
+function gripShares({ grip, driver, reference }: FindingsInput, place: CornerPlaces): CornerCase['gripShare'] {
+	if (!grip.driver || !grip.reference) return null;
+	const half = GRIP_SHARE_HALF * (place.endM - place.startM);
+	const of = (envelope: GripEnvelope, grid: LapGrid) =>
+		gripShareAt(envelope, grid, place.apexM - half, place.apexM + half);
+	const shares = { driver: of(grip.driver, driver.grid), reference: of(grip.reference, reference.grid) };
+	return shares.driver === null || shares.reference === null
+		? null
+		: { driver: shares.driver, reference: shares.reference };
 }
 
 function charge(into: Charged[], corner: number, cause: Cause, byRow: Float64Array, share: number): void {
@@ -111,6 +149,7 @@ const CONSEQUENCES: readonly FindingCode[] = [
 	'pick_up_late',
 	'coasting',
 	'exit_speed_low',
+	'pick_up_hesitant',
 	'line',
 	'grip_unused',
 	'release_long',

@@ -1,9 +1,11 @@
+import { KMH_PER_MPS } from '../../units.ts';
 import { placeAtTime } from '../trace/placeTime.ts';
 import type { Span } from './coasting.ts';
 import type { CornerPassage } from './cornerPassages.ts';
 import type { Braking } from './measureBraking.ts';
 import type { MeasuredRun } from './measuredRun.ts';
 import type { MetricsSheet } from './metricsSheet.ts';
+import { speedAt } from './steadySpeed.ts';
 
 const BRAKE_FIELDS = [
 	'onsetM',
@@ -18,6 +20,8 @@ const BRAKE_FIELDS = [
 	'releaseProgressive',
 	'dabs',
 	'lightHoldS',
+	'holdPct',
+	'brakedMps2',
 	'trailS',
 	'trailM'
 ] as const;
@@ -31,9 +35,15 @@ const SHAPE_FIELDS = [
 	'releaseS',
 	'releaseProgressive',
 	'dabs',
-	'lightHoldS'
+	'lightHoldS',
+	'holdPct',
+	'brakedMps2'
 ] as const;
 const LIGHT_HOLD_LEAST_S = 0.2;
+/** Over less time a drop of speed says nothing of the strength of a braking. */
+const STRENGTH_LEAST_S = 0.25;
+/** Slope and bumps leave a deceleration this uncertain. */
+const STRENGTH_PLUS_MINUS_MPS2 = 0.15;
 
 /** Onset and off of a corner's braking, from the brake or, without one, from the car's slowing; NaN where a hole swallowed it. */
 export interface BrakingSpan extends Span {
@@ -111,7 +121,32 @@ function fillShape(
 	sheet.metrics.releaseProgressive = last.releaseProgressive;
 	if (last.releaseProgressive === null) sheet.explain(['releaseProgressive'], 'too_coarse');
 	sheet.set('lightHoldS', lightHold(passage, brakings), 'gap', Math.max(run.speed.sampleS / 2, noise / 10));
+	const hold = longestHold(passage, brakings);
+	sheet.set('holdPct', hold, 'no_hold', noise);
+	fillStrength(sheet, run, strongest);
 	if (run.placed.channels.brakeScaleAssumed) sheet.explain(['peakPct', 'peakRawPct'], 'brake_scale_assumed');
+}
+
+/** Level of the longest level stretch while the car turns, light or not; null for none. */
+function longestHold({ startS, endS }: CornerPassage, brakings: Braking[]): number | null {
+	let longest = LIGHT_HOLD_LEAST_S - 1e-9;
+	let level: number | null = null;
+	for (const hold of brakings.flatMap((one) => one.holds)) {
+		const turningS = Math.min(hold.endS, endS) - Math.max(hold.startS, startS);
+		if (turningS < longest) continue;
+		longest = turningS;
+		level = hold.level;
+	}
+	return level;
+}
+
+/** Mean deceleration while the strongest braking is at full strength: what a harder one would have to raise. */
+function fillStrength(sheet: MetricsSheet, { speed }: MeasuredRun, { heldS: [fromS, toS] }: Braking): void {
+	const heldS = toS - fromS;
+	if (!(heldS >= STRENGTH_LEAST_S)) return sheet.explain(['brakedMps2'], 'too_coarse');
+	const dropMps = (speedAt(speed, fromS) - speedAt(speed, toS)) / KMH_PER_MPS;
+	const plusMinus = (speed.noiseKmh * Math.SQRT2) / KMH_PER_MPS / heldS;
+	sheet.set('brakedMps2', dropMps / heldS, 'gap', Math.max(plusMinus, STRENGTH_PLUS_MINUS_MPS2));
 }
 
 /** The longest light hold while the car turns, s; 0 for none. */

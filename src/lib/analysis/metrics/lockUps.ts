@@ -1,7 +1,7 @@
 import type { LockUp, Wheel } from '../../schemas/analysisDocument.ts';
-import { KMH_PER_MPS } from '../../units.ts';
 import type { Channels } from '../model.ts';
-import { fitWheels, WHEELS, type WheelFit } from './wheelFit.ts';
+import { sampleBefore } from '../trace/placeTime.ts';
+import { wheelSlips } from './wheelSlip.ts';
 
 /** Domain: a wheel turns this much slower than the ground passes under it … */
 const LOCK_SLIP = -0.3;
@@ -9,9 +9,9 @@ const LOCK_SLIP = -0.3;
 const LEAST_S = 0.05;
 /** … while braking above this. */
 const SLOWEST_KMH = 20;
-const BRAKING_PCT = 2;
-/** Without a brake channel, slowing by more than this is braking. */
-const BRAKED_MPS2 = 4;
+/** A downshift this long before a rear lock, or this shortly after its begin, belongs to it. */
+const SHIFT_BEFORE_S = 0.4;
+const SHIFT_AFTER_S = 0.1;
 /** A lock that began under braking may outlast the brake by this. */
 const OUTLASTS_S = 0.5;
 /** A wheel that rolls for less than this between two locks never got its grip back. */
@@ -27,30 +27,31 @@ export type WheelLock = Omit<LockUp, 'lap' | 'corner'>;
 /**
  * Lock-ups of a run: every stretch in which a wheel's slip (v_wheel − v)/v is below −0.3 for 0.05 s while the car brakes above 20 km/h.
  *
- * v is the ground's speed at that wheel: left wheels are slower in a left turn by yaw rate × half of the track. Rolling radii, track and the
- * lag between the clocks of wheels and speed are fitted. Begin and end are interpolated. O(n).
+ * v is the ground's speed at that wheel (see `wheelSlips`). Begin and end are interpolated; a rear lock at a downshift is marked. O(n).
  *
  * @param channels the run; `wheelKmh` may be off by a constant factor per wheel
  * @param curvaturePerM of the car's own line, where known: stands in for a missing yaw rate
  * @returns in order of time; empty without wheel speeds
  */
 export function lockUps(channels: Channels, curvaturePerM: Float64Array | null = null): WheelLock[] {
-	const { wheelKmh, timeS, speedKmh, brakePct, sampleRateHz } = channels;
-	if (!wheelKmh) return [];
-	const yawRateRadps = channels.yawRateRadps ?? yawRate(speedKmh, curvaturePerM);
-	const isBraking = brakePct
-		? (i: number) => brakePct[i] > BRAKING_PCT
-		: (i: number) => i > 0 && (speedKmh[i - 1] - speedKmh[i]) / KMH_PER_MPS > BRAKED_MPS2 * (timeS[i] - timeS[i - 1]);
-	const fit = fitWheels({ timeS, speedKmh, wheelKmh, yawRateRadps, sampleRateHz }, isBraking);
-	if (!fit) return [];
-	const braking = brakingSamples(timeS, speedKmh, isBraking);
-	return WHEELS.flatMap((wheel) => locksOf(channels, wheel, fit, yawRateRadps, braking)).sort(
-		(a, b) => a.startS - b.startS || a.wheel.localeCompare(b.wheel)
-	);
+	const slips = wheelSlips(channels, curvaturePerM);
+	if (!slips) return [];
+	const { timeS, speedKmh } = channels;
+	const braking = brakingSamples(timeS, speedKmh, slips.isBraking);
+	return slips.wheels
+		.flatMap((wheel) => locksOf(channels, wheel, (i) => slips.slipAt(wheel, i), braking))
+		.map((lock) => ({ ...lock, atDownshift: atDownshift(channels, lock) }))
+		.sort((a, b) => a.startS - b.startS || a.wheel.localeCompare(b.wheel));
 }
 
-function yawRate(speedKmh: Float64Array, curvaturePerM: Float64Array | null): Float64Array | null {
-	return curvaturePerM && curvaturePerM.map((curvature, i) => (curvature * speedKmh[i]) / KMH_PER_MPS);
+/** Does a rear wheel lock where the gear goes down; null where gears are not known. */
+function atDownshift({ timeS, gear }: Channels, { wheel, startS }: WheelLock): boolean | null {
+	if (!gear) return null;
+	if (wheel !== 'rl' && wheel !== 'rr') return false;
+	const last = Math.min(sampleBefore(timeS, startS + SHIFT_AFTER_S), timeS.length - 2);
+	for (let i = Math.max(0, sampleBefore(timeS, startS - SHIFT_BEFORE_S)); i <= last; i++)
+		if (gear[i + 1] < gear[i]) return true;
+	return false;
 }
 
 /** 2: the brake is on; 1: it was within the last half second; 0: neither, or too slow. */
@@ -67,27 +68,8 @@ function brakingSamples(timeS: Float64Array, speedKmh: Float64Array, isBraking: 
 	return state;
 }
 
-function locksOf(
-	channels: Channels,
-	wheel: Wheel,
-	fit: WheelFit,
-	yawRateRadps: Float64Array | null,
-	braking: Uint8Array
-): WheelLock[] {
-	const { timeS, speedKmh, wheelKmh, sampleRateHz } = channels;
-	const values = wheelKmh?.[wheel];
-	if (!values || !(fit.scale[wheel] > 0)) return [];
-	const lag = fit.lagS * sampleRateHz;
-	const whole = Math.floor(lag);
-	const part = lag - whole;
-	const side = ((wheel === 'fl' || wheel === 'rl' ? -1 : 1) * fit.trackM * KMH_PER_MPS) / 2;
-	const slipAt = (i: number) => {
-		const a = i + whole;
-		if (!(a >= 0 && a + 1 < values.length)) return NaN;
-		const wheelSpeed = (values[a] + (part > 0 ? part * (values[a + 1] - values[a]) : 0)) * fit.scale[wheel];
-		const ground = speedKmh[i] + (yawRateRadps ? side * yawRateRadps[i] : 0);
-		return (wheelSpeed - ground) / ground;
-	};
+function locksOf(channels: Channels, wheel: Wheel, slipAt: (i: number) => number, braking: Uint8Array): WheelLock[] {
+	const { timeS, sampleRateHz } = channels;
 	const found: WheelLock[] = [];
 	let current: (WheelLock & { firstIndex: number; lastIndex: number }) | null = null;
 	const close = () => {

@@ -25,6 +25,10 @@ export interface Braking {
 	dabs: number;
 	/** levels of 2–12 % after the peak */
 	lightHolds: LevelStretch[];
+	/** levels of 2–25 % after the peak: a hold that is too strong to be a light one is among them */
+	holds: LevelStretch[];
+	/** first and last moment with more than 80 % of the peak */
+	heldS: [number, number];
 }
 
 const PEAK_HELD_S = 0.05;
@@ -37,6 +41,10 @@ const RELEASE_LEVEL_S = 0.3;
 const RISE_TO_SHARE = 0.9;
 const PEAK_REACHED_SHARE = 0.98;
 const HOLD = { low: 2, high: 12, steepest: 15, leastS: 0.2 };
+/** A level above this is braking on, no hold that lets the car rotate. */
+const STRONGEST_HOLD_PCT = 25;
+/** Above this share of its peak a braking is at full strength. */
+const HELD_SHARE = 0.8;
 /** A pulse or dab is a fall and a new rise of at least this share of the peak, and at least that much. */
 const DAB_SHARE = 0.2;
 const DAB_LEAST_PCT = 10;
@@ -82,6 +90,8 @@ export function measureBraking(
 	const risenS = firstReached(brake, first, last, RISE_TO_SHARE * peakPct, rise);
 	const releaseStartS = startOfRelease(brake, first, last, peakPct, sampleS);
 	const afterPeak = indexAfter(timeS, first, last, peakS);
+	const levels = (high: number) =>
+		levelStretches(brake, afterPeak, Math.min(last + 1, timeS.length - 1), { ...HOLD, high, sampleS });
 	return {
 		application,
 		onset,
@@ -94,7 +104,9 @@ export function measureBraking(
 		releaseStartS,
 		releaseProgressive: off ? isProgressive(brake, releaseStartS, endS, peakPct) : null,
 		dabs,
-		lightHolds: levelStretches(brake, afterPeak, Math.min(last + 1, timeS.length - 1), { ...HOLD, sampleS })
+		lightHolds: levels(HOLD.high),
+		holds: levels(STRONGEST_HOLD_PCT),
+		heldS: [peakS, lastAbove(brake, first, last, HELD_SHARE * peakPct)]
 	};
 }
 
@@ -180,6 +192,11 @@ function startOfRelease(brake: Signal, first: number, last: number, peakPct: num
 				: timeS[i];
 		}
 	}
+	return timeS[first];
+}
+
+function lastAbove({ timeS, values }: Signal, first: number, last: number, level: number): number {
+	for (let i = last; i >= first; i--) if (values[i] >= level) return timeS[i];
 	return timeS[first];
 }
 

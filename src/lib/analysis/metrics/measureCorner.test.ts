@@ -81,7 +81,9 @@ describe('measureCorner', () => {
 		expect(m.overlapS).toBe(0);
 		expect(m.secondLiftS).toBe(0);
 		expect(m.timeS).toBeCloseTo(3, 6);
-		expect(m.reasons).toEqual({ idleGapS: 'not_linked', lockUps: 'no_channel' });
+		const { idleGapS, holdPct, ...others } = m.reasons;
+		expect([idleGapS, holdPct]).toEqual(['not_linked', 'no_hold']);
+		expect(new Set(Object.values(others))).toEqual(new Set(['no_channel']));
 	});
 
 	it('gives what the schema asks for, and never a number that is none', () => {

@@ -8,7 +8,12 @@ import { touchesHole, type MeasuredRun } from './measuredRun.ts';
 import { MetricsSheet } from './metricsSheet.ts';
 import { minimumSpeed, speedAt } from './steadySpeed.ts';
 import { fillThrottle } from './throttleMetrics.ts';
+import { steerCorrections } from './steerCorrections.ts';
 import { turnIn } from './turnIn.ts';
+import { wheelSpin } from './wheelSpin.ts';
+
+/** Wheels may still spin this long behind the corner's end. */
+const SPIN_AFTER_S = 1;
 
 /**
  * Every metric of one corner in one lap, from the run's own samples. Places count from the line of the lap and run on across it, so
@@ -32,6 +37,7 @@ export function measureCorner(run: MeasuredRun, index: number): CornerMetrics {
 	const nextOnsetS = (next && brakingsOf(run, next).at(0)?.onset?.timeS) ?? null;
 	fillThrottle(sheet, run, { before, passage, next }, brakings, span, nextOnsetS);
 	fillIdleGap(sheet, run, passage, next);
+	fillHandling(sheet, run, passage, turnInS);
 	return sheet.metrics;
 }
 
@@ -69,6 +75,20 @@ function spanBySlowing(
 	const fromS = before?.apexS || run.placed.channels.timeS[0];
 	const seen = decelerationBraking(run.speed, fromS, (passage.apexS + passage.endS) / 2);
 	return seen && { startS: seen.onsetS, endS: seen.offS, plusMinusS: seen.plusMinusS, endPlusMinusS: seen.plusMinusS };
+}
+
+/** What the driven wheels and the hands did: spinning out of the corner, corrections in it. */
+function fillHandling(sheet: MetricsSheet, run: MeasuredRun, passage: CornerPassage, turnInS: number | null): void {
+	const { channels, curvaturePerM } = run.placed;
+	const { corner, startS, apexS, endS } = passage;
+	if (Number.isNaN(startS + apexS + endS)) return sheet.explain(['spinS', 'steerCorrections'], 'not_reached');
+	const fromS = turnInS ?? startS;
+	if (touchesHole(run, fromS, endS + SPIN_AFTER_S)) return sheet.explain(['spinS', 'steerCorrections'], 'gap');
+	sheet.set('spinS', wheelSpin(channels, curvaturePerM, apexS, endS + SPIN_AFTER_S), 'no_channel');
+	const steering = channels.steeringDeg && run.turning;
+	const sign = corner.direction === 'left' ? 1 : -1;
+	const corrections = steering && corner.direction ? steerCorrections(steering, sign, fromS, endS) : null;
+	sheet.set('steerCorrections', corrections, 'no_channel');
 }
 
 function fillIdleGap(

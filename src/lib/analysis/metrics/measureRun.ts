@@ -5,6 +5,7 @@ import type { CornerPassage } from './cornerPassages.ts';
 import { lockUps, type WheelLock } from './lockUps.ts';
 import { measureCorner } from './measureCorner.ts';
 import { prepareRun, type MeasuredRun } from './measuredRun.ts';
+import { WHEELS } from './wheelFit.ts';
 
 /**
  * Every metric of every timed lap and numbered corner of a run, and its lock-ups.
@@ -29,8 +30,7 @@ export function measureRun(placed: PlacedRun, corners: Corner[]): { metrics: Cor
 	run.passages.forEach((passage, index) => {
 		if (!passage.lap) return;
 		const measured = measureCorner(run, index);
-		if (placed.channels.wheelKmh) measured.lockUps = countMoments(byPassage.get(passage) ?? []);
-		else measured.reasons.lockUps = 'no_channel';
+		fillLocks(measured, placed, byPassage.get(passage) ?? []);
 		metrics.push(measured);
 	});
 	return { metrics, lockUps: locks };
@@ -39,6 +39,18 @@ export function measureRun(placed: PlacedRun, corners: Corner[]): { metrics: Cor
 function passageOf({ passages, placed }: MeasuredRun, { startS }: WheelLock): CornerPassage | undefined {
 	const placeM = placeAtTime(placed, startS);
 	return passages.find(({ endM }) => endM > placeM);
+}
+
+function fillLocks(measured: CornerMetrics, { channels }: PlacedRun, locks: WheelLock[]): void {
+	if (!channels.wheelKmh) {
+		for (const field of ['lockUps', 'rearLocks', 'lockWheels'] as const) measured.reasons[field] = 'no_channel';
+		return;
+	}
+	measured.lockUps = countMoments(locks);
+	const wheels = WHEELS.filter((wheel) => locks.some((lock) => lock.wheel === wheel));
+	measured.lockWheels = wheels.length ? wheels.join(' ') : null;
+	if (channels.gear) measured.rearLocks = countMoments(locks.filter((lock) => lock.atDownshift));
+	else measured.reasons.rearLocks = 'no_channel';
 }
 
 /** Locks of several wheels that overlap in time are one moment. */

@@ -10,7 +10,7 @@ import { speedAt } from './steadySpeed.ts';
 /** Fields of a corner that are numbers or null. */
 export type MetricField = Exclude<
 	keyof CornerMetrics,
-	'lap' | 'corner' | 'releaseProgressive' | 'plusMinus' | 'reasons'
+	'lap' | 'corner' | 'releaseProgressive' | 'lockWheels' | 'plusMinus' | 'reasons'
 >;
 
 /** The metrics of one passage while they are being filled in: every field null until it is set, or explained. */
@@ -84,6 +84,15 @@ function emptyMetrics({ lap, corner }: CornerPassage): CornerMetrics {
 		idleGapS: null,
 		lockUps: null,
 		timeS: null,
+		coastBeforeS: null,
+		coastBetweenS: null,
+		coastAfterS: null,
+		holdPct: null,
+		brakedMps2: null,
+		spinS: null,
+		steerCorrections: null,
+		rearLocks: null,
+		lockWheels: null,
 		plusMinus: {},
 		reasons: {}
 	};

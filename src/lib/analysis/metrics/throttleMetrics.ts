@@ -8,6 +8,7 @@ import { touchesHole, type MeasuredRun } from './measuredRun.ts';
 import type { MetricsSheet } from './metricsSheet.ts';
 import { throttleEvents, type ThrottleEvents } from './throttleEvents.ts';
 
+const COASTING_FIELDS = ['coastingS', 'coastBeforeS', 'coastBetweenS', 'coastAfterS'] as const;
 const THROTTLE_FIELDS = [
 	'liftM',
 	'smallestOpeningPct',
@@ -16,7 +17,7 @@ const THROTTLE_FIELDS = [
 	'fullThrottleM',
 	'secondLiftS',
 	'overlapS',
-	'coastingS'
+	...COASTING_FIELDS
 ] as const;
 /** A lifted corner is lifted for at most this long before its start. */
 const LIFT_BEFORE_S = 1;
@@ -89,20 +90,23 @@ function fillBoth(
 	span: BrakingSpan | null
 ): void {
 	const { brake } = run;
-	if (!brake) return sheet.explain(['overlapS', 'coastingS'], 'no_channel');
+	if (!brake) return sheet.explain(['overlapS', ...COASTING_FIELDS], 'no_channel');
 	let overlapS = 0;
 	for (const { onset, off } of brakings) {
 		if (onset && off) overlapS += overlap(throttle, brake, { startS: onset.timeS, endS: off.timeS });
 	}
 	sheet.set('overlapS', overlapS, 'gap');
 	const { lift, pickUp } = events;
-	if (events.kind === 'flat') sheet.explain(['coastingS'], 'flat');
-	else if (events.kind === 'steady' || !lift) sheet.explain(['coastingS'], 'no_lift_here');
-	else if (events.kind === 'partly') sheet.set('coastingS', 0, 'gap');
-	else if (!pickUp) sheet.explain(['coastingS'], sheet.metrics.reasons.pickUpM);
-	else if (touchesHole(run, lift.timeS, pickUp.timeS)) sheet.explain(['coastingS'], 'gap');
+	if (events.kind === 'flat') sheet.explain(COASTING_FIELDS, 'flat');
+	else if (events.kind === 'steady' || !lift) sheet.explain(COASTING_FIELDS, 'no_lift_here');
+	else if (events.kind === 'partly') for (const field of COASTING_FIELDS) sheet.set(field, 0, 'gap');
+	else if (!pickUp) sheet.explain(COASTING_FIELDS, sheet.metrics.reasons.pickUpM);
+	else if (touchesHole(run, lift.timeS, pickUp.timeS)) sheet.explain(COASTING_FIELDS, 'gap');
 	else {
 		const coasted = coasting(throttle, { startS: lift.timeS, endS: pickUp.timeS }, run.brakeSpans, run.quickestLift);
 		sheet.set('coastingS', coasted.totalS, 'gap', (span?.endPlusMinusS ?? 0) + pickUp.plusMinusS);
+		sheet.set('coastBeforeS', coasted.beforeS, 'gap', lift.plusMinusS + (span?.plusMinusS ?? 0));
+		sheet.set('coastBetweenS', coasted.betweenS, 'gap');
+		sheet.set('coastAfterS', coasted.afterS, 'gap', (span?.endPlusMinusS ?? 0) + pickUp.plusMinusS);
 	}
 }

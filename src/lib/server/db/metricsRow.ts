@@ -31,7 +31,16 @@ export const METRIC_COLUMNS = {
 	timeS: 'time_s',
 	releaseProgressive: 'release_progressive',
 	dabs: 'dabs',
-	lockUps: 'lock_ups'
+	lockUps: 'lock_ups',
+	coastBeforeS: 'coast_before_s',
+	coastBetweenS: 'coast_between_s',
+	coastAfterS: 'coast_after_s',
+	holdPct: 'hold_pct',
+	brakedMps2: 'braked_mps2',
+	spinS: 'spin_s',
+	steerCorrections: 'steer_corrections',
+	rearLocks: 'rear_locks',
+	lockWheels: 'lock_wheels'
 } as const satisfies Record<Exclude<keyof CornerMetrics, 'lap' | 'corner' | 'plusMinus' | 'reasons'>, string>;
 
 type MetricName = keyof typeof METRIC_COLUMNS;
@@ -44,7 +53,7 @@ export function toMetricsRow(metrics: CornerMetrics): Record<string, number | bo
 		plus_minus: JSON.stringify(metrics.plusMinus),
 		reasons: JSON.stringify(metrics.reasons)
 	};
-	for (const name of NAMES) row[METRIC_COLUMNS[name]] = metrics[name];
+	for (const name of NAMES) row[METRIC_COLUMNS[name]] = metrics[name] ?? null;
 	return row;
 }
 

@@ -81,5 +81,10 @@ function scaleGrid(grid: LapGrid, factor: number): LapGrid {
 function scaleMetrics(metrics: CornerMetrics[], factor: number): CornerMetrics[] {
 	if (factor === 1) return metrics;
 	const scaled = (value: number | null) => (value === null ? null : value * factor);
-	return metrics.map((entry) => ({ ...entry, peakPct: scaled(entry.peakPct), peakRawPct: scaled(entry.peakRawPct) }));
+	return metrics.map((entry) => ({
+		...entry,
+		peakPct: scaled(entry.peakPct),
+		peakRawPct: scaled(entry.peakRawPct),
+		holdPct: scaled(entry.holdPct ?? null)
+	}));
 }
