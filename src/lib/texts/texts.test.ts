@@ -1,11 +1,13 @@
 import { describe, expect, it } from 'vitest';
 import { channelSchema } from '../schemas/channels.ts';
+import { targetKindSchema, type Target } from '../schemas/target.ts';
 import { CHANNEL_ORDER } from './channels.ts';
 import { deviceName } from './device.ts';
 import { describeLap } from './laps.ts';
 import { atLayout, layoutName, runName } from './runs.ts';
 import { describeSource } from './source.ts';
 import { describeUpload, isSettled } from './uploads.ts';
+import { TARGET_KIND_TEXT, targetScopeText, targetText } from './targets.ts';
 import { warningText } from './warnings.ts';
 
 describe('describeLap', () => {
@@ -142,5 +144,42 @@ describe('deviceName', () => {
 		[null, 'a program']
 	])('calls %s "%s"', (userAgent, expected) => {
 		expect(deviceName(userAgent)).toBe(expected);
+	});
+});
+
+describe('targetText', () => {
+	const target = (fields: Partial<Target>): Target => ({
+		kind: 'peak_brake',
+		least: null,
+		most: null,
+		base: 'value',
+		scope: { dryOnly: false, afterLap: null, holdsOver: null },
+		notSlower: true,
+		text: '',
+		...fields
+	});
+
+	it.each([
+		[{ most: 75 }, 'peak brake at most 75 %'],
+		[{ kind: 'onset', least: 405, most: 415 }, 'brake point between 405 m and 415 m'],
+		[{ kind: 'pick_up', most: 455 }, 'throttle pick-up not after 455 m'],
+		[{ kind: 'trail_until', least: 440 }, 'brake off not before 440 m'],
+		[{ kind: 'light_hold', least: 0.5, most: 0.7 }, 'light hold between 0.50 s and 0.70 s'],
+		[{ kind: 'minimum_speed', least: 3, base: 'own_median' }, 'minimum speed at least +3 km/h against your usual'],
+		[{ kind: 'lap_time', most: -0.5, base: 'reference' }, 'lap time at most −0.500 s against the reference'],
+		[{ kind: 'no_lock_up' }, 'no lock-up'],
+		[{ kind: 'free', text: 'Look to the exit' }, 'Look to the exit']
+	] as Array<[Partial<Target>, string]>)('tells %j', (fields, expected) => {
+		expect(targetText(target(fields)).replaceAll('\u00a0', ' ')).toBe(expected);
+	});
+
+	it('tells when it counts', () => {
+		expect(targetScopeText(target({}))).toBeNull();
+		const scope = { dryOnly: true, afterLap: 2, holdsOver: { laps: 4, of: 5 } };
+		expect(targetScopeText(target({ scope }))).toBe('dry laps only, after lap 2, 4 of 5 laps');
+	});
+
+	it('has words for every kind', () => {
+		for (const kind of targetKindSchema.options) expect(TARGET_KIND_TEXT[kind].trim(), kind).not.toBe('');
 	});
 });
