@@ -47,6 +47,7 @@ const LICENCES = [
 	'BlueOak-1.0.0',
 	'ISC',
 	'MIT',
+	'MIT-0',
 	'MPL-2.0',
 	'OFL-1.1'
 ];
