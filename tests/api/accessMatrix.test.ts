@@ -1,11 +1,13 @@
 import '../helpers/server.ts';
 import { randomUUID } from 'node:crypto';
-import { rm } from 'node:fs/promises';
+import { mkdir, rm, writeFile } from 'node:fs/promises';
+import { dirname } from 'node:path';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { OPERATIONS } from '../../src/lib/server/http/openApi.ts';
 import { closeDatabase, database } from '../../src/lib/server/db/database.ts';
-import { newPublicId } from '../../src/lib/server/db/publicId.ts';
+import { encodePublicId, newPublicId } from '../../src/lib/server/db/publicId.ts';
 import { environment } from '../../src/lib/server/environment.ts';
+import { partPath } from '../../src/lib/server/upload/resumable/partStore.ts';
 import { CookieJar } from '../helpers/cookieJar.ts';
 import {
 	addGuardian,
@@ -93,6 +95,23 @@ const json = (method: string, body: unknown): RequestOptions => ({
 });
 const pair = ({ lapPublicIds: [reference, driver] }: StoredRun) => `${driver}/${reference}`;
 const RUN = ({ runPublicId }: StoredRun) => `/runs/${runPublicId}`;
+
+/** Goes on with a file of which three of ten bytes are here; made new by `restore`. */
+const piece = (method: 'HEAD' | 'PATCH' | 'DELETE'): Omit<Entry, 'ok'> => ({
+	access: 'keeps the run',
+	scope: 'uploads:write',
+	path: ({ runId }) => `/api/v1/uploads/resumable/${pieces.get(runId)}`,
+	request: () => ({
+		method,
+		headers: {
+			'tus-resumable': '1.0.0',
+			...(method === 'PATCH' && { 'upload-offset': '3', 'content-type': 'application/offset+octet-stream' })
+		},
+		...(method === 'PATCH' && { body: new Uint8Array([1]) })
+	})
+});
+/** Id of an unfinished upload, by the run of its owner. */
+const pieces = new Map<number, string>();
 
 const ENTRIES: Record<string, Record<string, Entry>> = {
 	'/': { GET: { access: 'everybody', path: () => '/', ok: 200 } },
@@ -199,16 +218,57 @@ const ENTRIES: Record<string, Record<string, Entry>> = {
 			access: 'signed in',
 			scope: 'uploads:write',
 			path: () => '/api/v1/uploads?name=a.csv',
-			request: () => ({ method: 'PUT', body: new Uint8Array([1]) }),
+			// Each time another file: one that was here before is answered otherwise.
+			request: () => ({ method: 'PUT', body: new TextEncoder().encode(randomUUID()) }),
 			ok: 202
 		}
 	},
+	'/api/v1/uploads/resumable': {
+		POST: {
+			access: 'signed in',
+			scope: 'uploads:write',
+			path: () => '/api/v1/uploads/resumable',
+			request: () => ({ method: 'POST', headers: { 'tus-resumable': '1.0.0', 'upload-length': '10' } }),
+			ok: 201
+		}
+	},
+	'/api/v1/uploads/resumable/[upload]': {
+		HEAD: { ...piece('HEAD'), ok: 200 },
+		PATCH: { ...piece('PATCH'), ok: 204 },
+		DELETE: { ...piece('DELETE'), ok: 204 }
+	},
+	'/api/v1/events': { GET: { access: 'signed in', scope: 'laps:read', path: () => '/api/v1/events', ok: 200 } },
 	'/api/v1/uploads/[upload]': {
 		GET: {
 			access: 'keeps the run',
 			scope: 'laps:read',
 			path: ({ uploadPublicId }) => `/api/v1/uploads/${uploadPublicId}`,
 			ok: 200
+		},
+		DELETE: {
+			access: 'keeps the run',
+			scope: 'uploads:write',
+			path: ({ uploadPublicId }) => `/api/v1/uploads/${uploadPublicId}`,
+			request: () => ({ method: 'DELETE' }),
+			ok: 204
+		}
+	},
+	'/api/v1/uploads/[upload]/restore': {
+		POST: {
+			access: 'keeps the run',
+			scope: 'uploads:write',
+			path: ({ uploadPublicId }) => `/api/v1/uploads/${uploadPublicId}/restore`,
+			request: () => ({ method: 'POST' }),
+			ok: 200
+		}
+	},
+	'/api/v1/uploads/[upload]/again': {
+		POST: {
+			access: 'keeps the run',
+			scope: 'uploads:write',
+			path: ({ uploadPublicId }) => `/api/v1/uploads/${uploadPublicId}/again`,
+			request: () => ({ method: 'POST' }),
+			ok: 202
 		}
 	},
 	'/api/v1/uploads/[upload]/file': {
@@ -226,6 +286,20 @@ const ENTRIES: Record<string, Record<string, Entry>> = {
 			path: ({ uploadPublicId }) => `/api/v1/uploads/${uploadPublicId}/mapping`,
 			request: () => json('PUT', { mapping: null }),
 			ok: 202
+		},
+		POST: {
+			access: 'keeps the run',
+			scope: 'uploads:write',
+			path: ({ uploadPublicId }) => `/api/v1/uploads/${uploadPublicId}/mapping`,
+			request: () => json('POST', { mapping: null, remember: 'no' }),
+			ok: 202
+		},
+		DELETE: {
+			access: 'keeps the run',
+			scope: 'uploads:write',
+			path: ({ uploadPublicId }) => `/api/v1/uploads/${uploadPublicId}/mapping`,
+			request: () => ({ method: 'DELETE' }),
+			ok: 204
 		}
 	},
 	'/api/v1/runs': { GET: { access: 'signed in', scope: 'laps:read', path: () => '/api/v1/runs', ok: 200 } },
@@ -244,6 +318,15 @@ const ENTRIES: Record<string, Record<string, Entry>> = {
 			path: (own) => `/api/v1${RUN(own)}`,
 			request: () => ({ method: 'DELETE' }),
 			ok: 204
+		}
+	},
+	'/api/v1/runs/[run]/restore': {
+		POST: {
+			access: 'keeps the run',
+			scope: 'runs:write',
+			path: (own) => `/api/v1${RUN(own)}/restore`,
+			request: () => ({ method: 'POST' }),
+			ok: 200
 		}
 	},
 	'/api/v1/laps/[lap]/trace': {
@@ -339,6 +422,7 @@ beforeAll(async () => {
 	await person('other driver');
 	await person('site operator', async (who) => db('site_operators').insert({ person_id: who.id }));
 	await makeGrant(mira, { to: team });
+	await prepare();
 }, 120_000);
 
 afterAll(async () => {
@@ -366,6 +450,15 @@ function expected(actor: Actor, routeId: string, operation: string, entry: Entry
 	return (entry.access === 'reads the run' ? READERS : KEEPERS).includes(actor) ? entry.ok : 404;
 }
 
+/** An event stream never ends by itself: its first piece. */
+async function textOf(response: Response): Promise<string> {
+	if (response.headers.get('content-type') !== 'text/event-stream') return await response.text();
+	const reader = response.body?.getReader();
+	const { value } = (await reader?.read()) ?? {};
+	await reader?.cancel();
+	return new TextDecoder().decode(value);
+}
+
 async function send(actor: Actor, entry: Entry, at: StoredRun): Promise<Response> {
 	const who = await sends.get(actor)?.();
 	const request = entry.request?.(at) ?? {};
@@ -376,7 +469,40 @@ async function send(actor: Actor, entry: Entry, at: StoredRun): Promise<Response
 async function restore(actor: Actor, entry: Entry): Promise<void> {
 	if (entry.endsSignIn) jars.delete(actor);
 	if (entry.access !== 'keeps the run') return;
-	await database()('runs').whereIn('id', [own.runId, foreign.runId]).update({ deleted_at: null });
+	const db = database();
+	await db('runs').whereIn('id', [own.runId, foreign.runId]).update({ deleted_at: null });
+	await db('uploads').whereIn('id', [own.uploadId, foreign.uploadId]).update({ deleted_at: null });
+	await prepare();
+}
+
+/** What one request takes away or goes on with, made anew: an unfinished upload, an answer that is remembered. */
+async function prepare(): Promise<void> {
+	const db = database();
+	for (const [at, who] of [
+		[own, mira],
+		[foreign, tomas]
+	] as const) {
+		const publicId = newPublicId();
+		const id = encodePublicId(publicId);
+		pieces.set(at.runId, id);
+		await db('uploads').insert({
+			public_id: publicId,
+			owner_id: who.id,
+			file_name: 'pieces.csv',
+			storage_key: `${id.slice(-2)}/${id}`,
+			size_bytes: 10,
+			is_resumable: true,
+			state: 'receiving'
+		});
+		await mkdir(dirname(partPath(id)), { recursive: true });
+		await writeFile(partPath(id), 'abc');
+		const headerKey = Buffer.alloc(32, 7);
+		await db('uploads').where({ id: at.uploadId }).update({ header_key: headerKey });
+		await db('remembered_mappings')
+			.insert({ person_id: who.id, header_key: headerKey, mapping: JSON.stringify({ columns: [] }) })
+			.onConflict()
+			.ignore();
+	}
 }
 
 describe('the matrix', () => {
@@ -413,7 +539,7 @@ describe.each(
 	it.each(ACTORS)("answers %s about Mira's data as it should, and about Tomas's never", async (actor) => {
 		try {
 			const response = await send(actor, entry, own);
-			const text = await response.text();
+			const text = await textOf(response);
 			expect(response.status, text.slice(0, 300)).toBe(expected(actor, id, operation, entry));
 			if (id.startsWith('/api/') && response.status >= 400) {
 				expect(response.headers.get('content-type')).toBe('application/problem+json');

@@ -14,6 +14,12 @@ const environmentSchema = z.object({
 		.string()
 		.default('var/storage')
 		.transform((folder) => resolve(folder)),
+	/** a bucket for raw files in place of the folder: all of these, or none */
+	KERBNOTE_S3_ENDPOINT: z.url({ protocol: /^https?$/ }).optional(),
+	KERBNOTE_S3_BUCKET: z.string().min(3).max(63).optional(),
+	KERBNOTE_S3_REGION: z.string().min(1).default('us-east-1'),
+	KERBNOTE_S3_KEY: z.string().min(1).optional(),
+	KERBNOTE_S3_SECRET: z.string().min(1).optional(),
 	/** folder of the built product, in which the thread entries lie */
 	KERBNOTE_BUILD: z
 		.string()
@@ -32,6 +38,17 @@ const environmentSchema = z.object({
 });
 export type Environment = z.infer<typeof environmentSchema>;
 
+const BUCKET_NEEDS = ['KERBNOTE_S3_ENDPOINT', 'KERBNOTE_S3_BUCKET', 'KERBNOTE_S3_KEY', 'KERBNOTE_S3_SECRET'] as const;
+
+/** Half a bucket would quietly be a folder. */
+const checkedSchema = environmentSchema.superRefine((settings, context) => {
+	const missing = BUCKET_NEEDS.filter((name) => settings[name] === undefined);
+	if (missing.length === BUCKET_NEEDS.length) return;
+	for (const name of missing) {
+		context.addIssue({ code: 'custom', path: [name], message: 'is needed where the others for a bucket are given' });
+	}
+});
+
 let read: Environment | undefined;
 
 /**
@@ -41,7 +58,7 @@ let read: Environment | undefined;
  */
 export function environment(): Environment {
 	if (read) return read;
-	const parsed = environmentSchema.safeParse(process.env);
+	const parsed = checkedSchema.safeParse(process.env);
 	if (!parsed.success) {
 		const faults = parsed.error.issues.map((issue) => `${issue.path.join('.')}: ${issue.message}`);
 		throw new Error(`the environment requires other values: ${faults.join('; ')}`);

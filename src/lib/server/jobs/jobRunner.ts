@@ -17,6 +17,7 @@ import {
 	release,
 	type ClaimedJob
 } from './jobQueue.ts';
+import { queueOlderReadings } from './reanalyse.ts';
 import { sweep } from './sweep.ts';
 
 export interface RunnerOptions {
@@ -32,6 +33,8 @@ export interface RunnerOptions {
 const POLL_MS = 200;
 const REAP_MS = 4_000;
 const SWEEP_EVERY_S = 600;
+/** Pause between two handfuls of files that a better analysis reads again. */
+const REANALYSE_EVERY_S = 5;
 const LONGEST_FAULT_PAUSE_MS = 5_000;
 
 /**
@@ -52,6 +55,7 @@ export class JobRunner {
 
 	async start(): Promise<void> {
 		await enqueue(this.#options.db, 'sweep', {}, { uniqueKey: 'sweep' });
+		await enqueue(this.#options.db, 'reanalyse', {}, { uniqueKey: 'reanalyse' });
 		this.#loops = [
 			...Array.from({ length: this.#options.slots }, () =>
 				this.#repeat(() => this.#workOnce(), this.#options.pollMs ?? POLL_MS)
@@ -144,6 +148,12 @@ export class JobRunner {
 		const { db, store } = this.#options;
 		if (job.kind === 'importRun') {
 			return await importRun(this.#options, job, jobPayloadSchemas.importRun.parse(job.payload), signal);
+		}
+		if (job.kind === 'reanalyse') {
+			const queued = await queueOlderReadings(db);
+			await finish(db, job);
+			if (queued > 0) await enqueue(db, 'reanalyse', {}, { uniqueKey: 'reanalyse', delayS: REANALYSE_EVERY_S });
+			return;
 		}
 		await sweep(db, store, new Date());
 		await finish(db, job);

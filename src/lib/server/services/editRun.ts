@@ -1,6 +1,7 @@
 import type { Knex } from 'knex';
 import type { RunDescription } from '../../schemas/api.ts';
-import { keptPeople } from '../access/seenRuns.ts';
+import { seenLayouts } from '../access/seenLayouts.ts';
+import { keptPeople, seenOwners } from '../access/seenRuns.ts';
 import type { Viewer } from '../access/viewer.ts';
 import { recordAudit } from '../db/auditRepository.ts';
 import { findOrMakeCar } from '../db/carRepository.ts';
@@ -9,6 +10,7 @@ import { decodePublicId } from '../db/publicId.ts';
 import { retryOnDeadlock } from '../db/retryOnDeadlock.ts';
 import type { FoundRun } from '../db/runRepository.ts';
 import { notFound } from '../http/notFound.ts';
+import { readAgain } from '../upload/readAgain.ts';
 import { findRun } from './loadRun.ts';
 
 /**
@@ -36,7 +38,10 @@ export async function describeRun(viewer: Viewer, runId: string, said: RunDescri
 			row.started_at = said.startedAt === null ? null : new Date(said.startedAt);
 			row.sort_at = row.started_at ?? run.created_at;
 		}
+		if (said.layout !== undefined) row.chosen_layout_id = await getLayoutId(trx, viewer, said.layout);
 		if (Object.keys(row).length > 0) await trx('runs').where({ id: run.run_id }).update(row);
+		// The numbers are places on the layout's path, so that they are measured anew.
+		if (said.layout !== undefined && run.upload_id !== null) await readAgain(trx, run.upload_id);
 	});
 }
 
@@ -73,6 +78,17 @@ export async function restoreRun(viewer: Viewer, runId: string): Promise<void> {
 		.first<{ id: number } | undefined>('runs.id');
 	if (!run) notFound();
 	await retryOnDeadlock(db, (trx) => trx('runs').where({ id: run.id }).update({ deleted_at: null }));
+}
+
+/** @throws 404 when there is no such layout, or the viewer may not see it */
+async function getLayoutId(trx: Knex.Transaction, viewer: Viewer, layoutId: string): Promise<number> {
+	const publicId = decodePublicId(layoutId) ?? notFound();
+	const layout = await trx('layouts')
+		.join('circuits', 'circuits.id', 'layouts.circuit_id')
+		.where({ 'layouts.public_id': publicId })
+		.where(seenLayouts(trx, viewer, await seenOwners(trx, viewer)))
+		.first<{ id: number } | undefined>('layouts.id');
+	return layout?.id ?? notFound();
 }
 
 async function getKeptRun(db: Knex, viewer: Viewer, runId: string): Promise<FoundRun> {

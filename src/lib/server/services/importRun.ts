@@ -243,6 +243,10 @@ async function storeRuns(
 
 /** After the last try: the raw file stays, the person reads that it is our fault. */
 export async function giveUpImport(db: Knex, payload: JobPayload<'importRun'>): Promise<void> {
+	if (payload.cause === 'version') {
+		await db('uploads').where({ id: payload.uploadId }).update({ analysed_with: CODE_VERSION });
+		return;
+	}
 	await db('uploads')
 		.where({ id: payload.uploadId, revision: payload.revision })
 		.whereIn('state', ['stored', 'reading'])

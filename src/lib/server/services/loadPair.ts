@@ -1,5 +1,4 @@
 import { createHash } from 'node:crypto';
-import { error } from '@sveltejs/kit';
 import type { Knex } from 'knex';
 import type { Warning } from '../../schemas/analysisDocument.ts';
 import type { Fairness, LapHead, LayoutHead } from '../../schemas/views.ts';
@@ -7,6 +6,7 @@ import type { Viewer } from '../access/viewer.ts';
 import { toLapHead } from '../db/lapRepository.ts';
 import { findPairLaps, type PairLap } from '../db/pairRepository.ts';
 import { decodePublicId } from '../db/publicId.ts';
+import { conflict } from '../http/conflict.ts';
 import { notFound } from '../http/notFound.ts';
 import { CODE_VERSION } from '../importing/storeRun.ts';
 import { getLayoutSheet, type LayoutSheet } from './layoutSheet.ts';
@@ -34,9 +34,9 @@ export async function loadPair(db: Knex, viewer: Viewer, lapId: string, referenc
 	if (!driver || !reference) notFound();
 	const version = versionOf(driver);
 	const other = versionOf(reference);
-	if (version.layoutId !== other.layoutId) refuse('These laps were driven on different layouts.');
+	if (version.layoutId !== other.layoutId) conflict('different_layout', 'These laps were driven on different layouts.');
 	if (version.pathVersion !== other.pathVersion || version.mapVersion !== other.mapVersion) {
-		refuse('One of these laps waits to be read again on the newer map of its layout.');
+		conflict('different_layout', 'One of these laps waits to be read again on the newer map of its layout.');
 	}
 	const sheet = await getLayoutSheet(db, viewer, version, [driver.layout_named_at, driver.circuit_named_at]);
 	const heads = {
@@ -56,10 +56,6 @@ export async function loadPair(db: Knex, viewer: Viewer, lapId: string, referenc
 		heads.reference
 	];
 	return { driver, reference, sheet, heads, hash: createHash('sha256').update(JSON.stringify(content)).digest('hex') };
-}
-
-function refuse(message: string): never {
-	error(409, { message, code: 'different_layout', errorId: '' });
 }
 
 function versionOf({ layout_id, path_version, map_version }: PairLap) {

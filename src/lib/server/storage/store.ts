@@ -1,12 +1,28 @@
-import { environment } from '../environment.ts';
+import { environment, type Environment } from '../environment.ts';
 import { LocalRawStore } from './localRawStore.ts';
 import type { RawStore } from './rawStore.ts';
+import { S3RawStore } from './s3RawStore.ts';
 
 let shared: RawStore | undefined;
 
-/** The raw store of this process. */
+/** The raw store of this process: a bucket where one is configured, else a folder. */
 export function rawStore(): RawStore {
-	return (shared ??= new LocalRawStore(environment().KERBNOTE_STORAGE));
+	return (shared ??= storeOf(environment()));
+}
+
+function storeOf(settings: Environment): RawStore {
+	const { KERBNOTE_S3_ENDPOINT, KERBNOTE_S3_BUCKET, KERBNOTE_S3_REGION, KERBNOTE_S3_KEY, KERBNOTE_S3_SECRET } =
+		settings;
+	if (!KERBNOTE_S3_ENDPOINT || !KERBNOTE_S3_BUCKET || !KERBNOTE_S3_KEY || !KERBNOTE_S3_SECRET) {
+		return new LocalRawStore(settings.KERBNOTE_STORAGE);
+	}
+	return new S3RawStore({
+		endpoint: KERBNOTE_S3_ENDPOINT,
+		bucket: KERBNOTE_S3_BUCKET,
+		region: KERBNOTE_S3_REGION,
+		key: KERBNOTE_S3_KEY,
+		secret: KERBNOTE_S3_SECRET
+	});
 }
 
 /** Where the raw file of an upload lies. */
