@@ -6,6 +6,7 @@ import { fileURLToPath } from 'node:url';
 import { z } from 'zod';
 import { writeBenchFile, type BenchFile } from './bench/benchFiles.ts';
 import { BENCH_PARTS } from './bench/benchParts.ts';
+import { measurePandas } from './bench/measurePandas.ts';
 
 /**
  * `npm run bench`: how fast, as ratios of things measured in this run on this machine; times alone only tell the order.
@@ -37,6 +38,17 @@ async function printTable(): Promise<void> {
 		row('plain file, against PapaParse on a stream', papa.seconds / ours.seconds, '≥ 5', [
 			`${rate(hour, ours.seconds)} against ${rate(hour, papa.seconds)} MB/s`
 		]);
+		const udsv = measure('udsv', hour);
+		row('plain file, against uDSV into typed columns', udsv.seconds / ours.seconds, '≥ 3', [
+			`${rate(hour, udsv.seconds)} MB/s, peak ${udsv.peakMb.toFixed(0)} MB`
+		]);
+		const pandas = measurePandas(hour.path);
+		if (pandas === null) console.log('plain file, against pandas (C engine, float32): pandas is not on this machine');
+		else {
+			row('plain file, against pandas (C engine, float32)', pandas / ours.seconds, '≥ 1.2', [
+				`${rate(hour, pandas)} MB/s`
+			]);
+		}
 		const oursQuoted = measure('read', quoted);
 		const papaQuoted = measure('papaparse', quoted);
 		row('file of quoted cells, against the same', papaQuoted.seconds / oursQuoted.seconds, '≥ 0.8', [

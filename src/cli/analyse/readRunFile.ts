@@ -4,6 +4,7 @@ import { Readable } from 'node:stream';
 import { createGunzip } from 'node:zlib';
 import { readRun, type RawRun } from '../../lib/parse/index.ts';
 import { KerbnoteError } from '../../lib/schemas/kerbnoteError.ts';
+import { readChunks } from './readChunks.ts';
 
 const CHUNK_BYTES = 1 << 20;
 const GZIP_MAGIC = [0x1f, 0x8b];
@@ -19,9 +20,10 @@ export async function readRunFile(path: string): Promise<RawRun[]> {
 		const magic = Buffer.alloc(GZIP_MAGIC.length);
 		const { bytesRead } = await handle.read(magic, 0, magic.length, 0);
 		const packed = bytesRead === magic.length && GZIP_MAGIC.every((byte, i) => magic[i] === byte);
-		const bytes = handle.createReadStream({ start: 0, highWaterMark: CHUNK_BYTES, autoClose: false });
 		const fileName = basename(path);
-		return await readRun(packed ? gunzipped(bytes, fileName) : bytes, { fileName });
+		if (!packed) return await readRun(readChunks(handle), { fileName, sizeBytes: (await handle.stat()).size });
+		const bytes = handle.createReadStream({ start: 0, highWaterMark: CHUNK_BYTES, autoClose: false });
+		return await readRun(gunzipped(bytes, fileName), { fileName });
 	} finally {
 		await handle.close();
 	}

@@ -1,5 +1,7 @@
 import { createReadStream } from 'node:fs';
+import { readFile } from 'node:fs/promises';
 import Papa from 'papaparse';
+import { inferSchema, initParser } from 'udsv';
 import { analyseRun } from '../../lib/analysis/analyseRun.ts';
 import { compareLaps, type CompareInput } from '../../lib/analysis/compare/compareLaps.ts';
 import { decodeTrace, encodeTrace } from '../../lib/server/db/traceCodec.ts';
@@ -18,6 +20,15 @@ async function read(path: string): Promise<Record<string, number>> {
 /** The yardstick: PapaParse on a stream, strings made numbers by `Number` into growing columns. */
 async function papaparse(path: string): Promise<Record<string, number>> {
 	const seconds = await bestOf(3, () => readByPapaParse(path));
+	return { seconds, peakMb: peakMb() };
+}
+
+/** Another yardstick: uDSV, the whole file as one string, typed columns. */
+async function udsv(path: string): Promise<Record<string, number>> {
+	const seconds = await bestOf(3, async () => {
+		const text = await readFile(path, 'utf8');
+		initParser(inferSchema(text)).typedCols(text);
+	});
 	return { seconds, peakMb: peakMb() };
 }
 
@@ -69,7 +80,7 @@ async function lap(path: string): Promise<Record<string, number>> {
 	};
 }
 
-export const BENCH_PARTS: Readonly<Record<string, BenchPart>> = { read, papaparse, job, lap };
+export const BENCH_PARTS: Readonly<Record<string, BenchPart>> = { read, papaparse, udsv, job, lap };
 
 function readByPapaParse(path: string): Promise<void> {
 	let columns: Float32Array[] = [];

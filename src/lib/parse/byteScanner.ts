@@ -1,33 +1,22 @@
 import { BLOCK_ROWS } from './columnStore.ts';
 import type { ColumnStore } from './columnStore.ts';
+import { fillBlock, LINE, nextLine, ROWS, SKIP, STOPPED } from './fillBlock.ts';
 import type { RowNotes } from './rowNotes.ts';
 import { MAX_ROW_BYTES } from './rowPlan.ts';
 import { tooLong, unclosedQuote } from './rowErrors.ts';
 import type { RowPlan } from './rowPlan.ts';
+import { SlowCells } from './slowCells.ts';
 
 const LF = 10;
 const CR = 13;
-const SPACE = 32;
 const QUOTE = 34;
-const PLUS = 43;
-const MINUS = 45;
-const ZERO = 48;
-
-/** Places in the cursor that a block is filled with. */
-const ROWS = 0;
-const LINE = 1;
-const STOPPED = 2;
-
-/** Up to 15 digits fit a double exactly, and so do powers of ten up to 22: one division rounds as correctly as Number() does. */
-const MAX_DIGITS = 15;
-const POWERS = Float64Array.from({ length: MAX_DIGITS + 1 }, (_, i) => Number(`1e${i}`));
 
 /**
  * Reads rows of plain numbers straight from bytes into a column store: no strings, no objects, one pass.
  *
  * A cell that is not [spaces][sign]digits[decimal digits][spaces] is handed as text to the column's reader. At the first cell that begins
  * with a quote `push` stops and hands back what is left from that row on; a CSV parser takes over from there.
- * Budget: a plain file of 50 MB and 20 columns in at most a fifth of PapaParse's time on a stream (see scan.bench).
+ * Budget: a plain file of 50 MB and 20 columns in at most a fifth of PapaParse's time on a stream (see the bench command).
  */
 export class ByteScanner {
 	/** 1-based line of the next row */
@@ -36,6 +25,9 @@ export class ByteScanner {
 	readonly #store: ColumnStore;
 	readonly #slow: SlowCells;
 	readonly #cursor = new Int32Array(3);
+	readonly #targets: Int16Array;
+	readonly #delimiter: number;
+	readonly #decimal: number;
 	#carry = new Uint8Array(0);
 	#rowsInBlock = 0;
 
@@ -43,6 +35,9 @@ export class ByteScanner {
 		this.#plan = plan;
 		this.#store = store;
 		this.#slow = new SlowCells(plan, notes);
+		this.#targets = plan.slotOf.map((slot) => (slot < 0 ? SKIP : plan.plain[slot] === 1 ? slot : -2 - slot));
+		this.#delimiter = plan.delimiter.charCodeAt(0);
+		this.#decimal = plan.decimal.charCodeAt(0);
 	}
 
 	/**
@@ -113,7 +108,18 @@ export class ByteScanner {
 			this.#cursor[ROWS] = this.#rowsInBlock;
 			this.#cursor[LINE] = this.line;
 			this.#cursor[STOPPED] = 0;
-			at = fillBlock(bytes, at, end, this.#plan, this.#store.block, this.#store.blockLines, this.#cursor, this.#slow);
+			at = fillBlock(
+				bytes,
+				at,
+				end,
+				this.#targets,
+				this.#delimiter,
+				this.#decimal,
+				this.#store.block,
+				this.#store.blockLines,
+				this.#cursor,
+				this.#slow
+			);
 			this.#rowsInBlock = this.#cursor[ROWS];
 			this.line = this.#cursor[LINE];
 			if (this.#cursor[STOPPED] === 1) break;
@@ -121,143 +127,6 @@ export class ByteScanner {
 		}
 		return at;
 	}
-}
-
-/** The slow way for one cell: an exotic number, a time, a position, a word. */
-class SlowCells {
-	readonly notes: RowNotes;
-	readonly #readers: RowPlan['readers'];
-	readonly #decoder: TextDecoder;
-
-	constructor(plan: RowPlan, notes: RowNotes) {
-		this.notes = notes;
-		this.#readers = plan.readers;
-		this.#decoder = new TextDecoder(plan.decoder);
-	}
-
-	readCell(bytes: Uint8Array, start: number, end: number, slot: number, line: number): number {
-		let text = '';
-		let beyondAscii = false;
-		for (let i = start; i < end; i++) {
-			const byte = bytes[i];
-			if (byte === 0) this.notes.addNull(line);
-			else if (byte >= 0x80) beyondAscii = true;
-			else text += String.fromCharCode(byte);
-		}
-		if (beyondAscii) text = this.#decoder.decode(bytes.subarray(start, end)).replaceAll('\0', '');
-		const value = this.#readers[slot](text);
-		if (value !== undefined) return value;
-		this.notes.addBadCell(slot, line, text);
-		return NaN;
-	}
-}
-
-/**
- * Reads rows into a block until it is full, the bytes end or a quoted cell comes. A function of its own, called a thousand rows at a time,
- * so that the engine optimises it as a whole; `cursor` carries what it changes.
- *
- * @param end behind a line end, which ends every loop
- * @returns where it stopped: a row's start
- */
-function fillBlock(
-	bytes: Uint8Array,
-	from: number,
-	end: number,
-	plan: RowPlan,
-	block: Float64Array,
-	blockLines: Int32Array,
-	cursor: Int32Array,
-	slow: SlowCells
-): number {
-	const { width, slotOf, plain } = plan;
-	const slots = plan.readers.length;
-	const delimiter = plan.delimiter.charCodeAt(0);
-	const decimal = plan.decimal.charCodeAt(0);
-	let rows = cursor[ROWS];
-	let line = cursor[LINE];
-	let at = from;
-	while (at < end && rows < BLOCK_ROWS) {
-		const rowStart = at;
-		const base = rows * slots;
-		let column = 0;
-		let byte = bytes[at];
-		if (byte === LF || byte === CR) {
-			at = nextLine(bytes, at);
-			line++;
-			continue;
-		}
-		for (;;) {
-			const slot = column < width ? slotOf[column] : -1;
-			const cellStart = at;
-			let done = false;
-			if (slot >= 0 && plain[slot] === 1) {
-				while (byte === SPACE) byte = bytes[++at];
-				const negative = byte === MINUS;
-				if (negative || byte === PLUS) byte = bytes[++at];
-				const digitsStart = at;
-				let value = 0;
-				let digit = byte - ZERO;
-				while (digit >= 0 && digit <= 9) {
-					value = value * 10 + digit;
-					byte = bytes[++at];
-					digit = byte - ZERO;
-				}
-				let digits = at - digitsStart;
-				if (byte === decimal) {
-					const fraction = at;
-					byte = bytes[++at];
-					digit = byte - ZERO;
-					while (digit >= 0 && digit <= 9) {
-						value = value * 10 + digit;
-						byte = bytes[++at];
-						digit = byte - ZERO;
-					}
-					const places = at - fraction - 1;
-					digits += places;
-					if (digits <= MAX_DIGITS) value /= POWERS[places];
-				}
-				while (byte === SPACE) byte = bytes[++at];
-				if (byte === delimiter || byte === LF || byte === CR) {
-					if (digits > 0 && digits <= MAX_DIGITS) {
-						block[base + slot] = negative ? -value : value;
-						done = true;
-					} else if (at === cellStart) {
-						block[base + slot] = NaN;
-						done = true;
-					}
-				}
-			}
-			if (!done) {
-				at = cellStart;
-				byte = bytes[at];
-				while (byte === SPACE) byte = bytes[++at];
-				if (byte === QUOTE) {
-					cursor[ROWS] = rows;
-					cursor[LINE] = line;
-					cursor[STOPPED] = 1;
-					return rowStart;
-				}
-				while (byte !== delimiter && byte !== LF && byte !== CR) byte = bytes[++at];
-				if (slot >= 0) block[base + slot] = slow.readCell(bytes, cellStart, at, slot, line);
-				else if (column === width && at > cellStart) slow.notes.addLong(line);
-			}
-			column++;
-			if (byte !== delimiter) break;
-			byte = bytes[++at];
-		}
-		if (column < width) {
-			for (let missing = column; missing < width; missing++)
-				if (slotOf[missing] >= 0) block[base + slotOf[missing]] = NaN;
-			slow.notes.addShort(line);
-		}
-		blockLines[rows] = line;
-		at += byte === CR && bytes[at + 1] === LF ? 2 : 1;
-		line++;
-		rows++;
-	}
-	cursor[ROWS] = rows;
-	cursor[LINE] = line;
-	return at;
 }
 
 /** Behind the last complete line; a CR at the very end may be half of a CR LF and waits. */
@@ -276,11 +145,6 @@ function firstLineEnd(bytes: Uint8Array): number {
 		if (bytes[i] === CR && i + 1 < bytes.length) return bytes[i + 1] === LF ? i + 2 : i + 1;
 	}
 	return bytes.length;
-}
-
-function nextLine(bytes: Uint8Array, at: number): number {
-	while (bytes[at] !== LF && bytes[at] !== CR) at++;
-	return at + (bytes[at] === CR && bytes[at + 1] === LF ? 2 : 1);
 }
 
 function joined(first: Uint8Array, second: Uint8Array): Uint8Array<ArrayBuffer> {

@@ -1,5 +1,7 @@
-/** Rows per block: 128 rows × 30 columns × 8 bytes stay inside a first-level cache while a block is turned into columns. */
+/** Rows per block: few enough that a block of 30 columns stays inside a first-level cache while it is turned into columns. */
 export const BLOCK_ROWS = 128;
+/** From one slot of a block to the next: a little more than a power of two, or all slots would fall on the same places of the cache. */
+export const BLOCK_STRIDE = BLOCK_ROWS + 8;
 /** Rows per page: pages are joined once at the end, so nothing is copied while the file grows and the slack is one page a column. */
 const PAGE_ROWS = 65_536;
 /** Room for a wrongly announced size is bounded: a full day at 100 Hz. */
@@ -16,12 +18,12 @@ export interface Range {
 /**
  * Takes rows of numbers and keeps them as columns, without knowing how many will come.
  *
- * A reader writes row-major into `block` (one array, one element kind: the fastest store there is) and calls `flush` when
+ * A reader writes into `block` (one array, one element kind: the fastest store there is) and calls `flush` when
  * `BLOCK_ROWS` rows are in it. Pages are typed arrays of fixed size; `finish` joins them column by column and lets each go,
  * so the peak is the data once and one column more.
  */
 export class ColumnStore {
-	/** row-major: row r, slot s at r · slots + s */
+	/** slot s, row r at s · BLOCK_STRIDE + r */
 	readonly block: Float64Array;
 	/** 1-based line of the file for each row of the block */
 	readonly blockLines = new Int32Array(BLOCK_ROWS);
@@ -46,7 +48,7 @@ export class ColumnStore {
 		this.#pages = wide.map(() => []);
 		this.#least = new Float64Array(wide.length).fill(Infinity);
 		this.#largest = new Float64Array(wide.length).fill(-Infinity);
-		this.block = new Float64Array(BLOCK_ROWS * Math.max(1, wide.length));
+		this.block = new Float64Array(BLOCK_STRIDE * Math.max(1, wide.length));
 	}
 
 	/** Moves the first `count` rows of the block into the columns. */
@@ -59,9 +61,10 @@ export class ColumnStore {
 			const page = this.#linePages.length - 1;
 			for (let slot = 0; slot < this.#wide.length; slot++) {
 				const column = this.#pages[slot][page];
-				if (column instanceof Float64Array) copyWide(this.block, done, take, this.#wide.length, slot, column, at);
-				else copyNarrow(this.block, done, take, this.#wide.length, slot, column, at);
-				this.#widen(slot, done, take);
+				const from = slot * BLOCK_STRIDE + done;
+				if (column instanceof Float64Array) copyWide(this.block, from, take, column, at);
+				else copyNarrow(this.block, from, take, column, at);
+				this.#widen(slot, from, take);
 			}
 			this.#linePages[page].set(this.blockLines.subarray(done, done + take), at);
 			done += take;
@@ -94,10 +97,10 @@ export class ColumnStore {
 	/** Takes the block's values into the slot's range while they are still in the cache. */
 	#widen(slot: number, from: number, count: number): void {
 		const { block } = this;
-		const slots = this.#wide.length;
-		let [least, largest] = [this.#least[slot], this.#largest[slot]];
-		for (let i = 0, at = from * slots + slot; i < count; i++, at += slots) {
-			const value = block[at];
+		let least = this.#least[slot];
+		let largest = this.#largest[slot];
+		for (let i = from; i < from + count; i++) {
+			const value = block[i];
 			if (value < least) least = value;
 			if (value > largest) largest = value;
 		}
@@ -114,28 +117,12 @@ export class ColumnStore {
 }
 
 // Two copies of one loop: a single one would see two element kinds and run at half the speed.
-function copyWide(
-	block: Float64Array,
-	from: number,
-	count: number,
-	slots: number,
-	slot: number,
-	out: Float64Array,
-	at: number
-): void {
-	for (let i = 0, source = from * slots + slot; i < count; i++, source += slots) out[at + i] = block[source];
+function copyWide(block: Float64Array, from: number, count: number, out: Float64Array, at: number): void {
+	for (let i = 0; i < count; i++) out[at + i] = block[from + i];
 }
 
-function copyNarrow(
-	block: Float64Array,
-	from: number,
-	count: number,
-	slots: number,
-	slot: number,
-	out: Float32Array,
-	at: number
-): void {
-	for (let i = 0, source = from * slots + slot; i < count; i++, source += slots) out[at + i] = block[source];
+function copyNarrow(block: Float64Array, from: number, count: number, out: Float32Array, at: number): void {
+	for (let i = 0; i < count; i++) out[at + i] = block[from + i];
 }
 
 function joinPages<T extends Column | Int32Array>(pages: readonly T[], out: T, pageRows: number): T {

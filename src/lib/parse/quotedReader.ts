@@ -1,5 +1,5 @@
 import Papa from 'papaparse';
-import { BLOCK_ROWS } from './columnStore.ts';
+import { BLOCK_ROWS, BLOCK_STRIDE } from './columnStore.ts';
 import type { ColumnStore } from './columnStore.ts';
 import { tooLong, unclosedQuote } from './rowErrors.ts';
 import type { RowNotes } from './rowNotes.ts';
@@ -89,7 +89,6 @@ export class QuotedReader {
 	#addRow(cells: readonly string[]): void {
 		const { readers, width } = this.#plan;
 		const { block, blockLines } = this.#store;
-		const base = this.#rowsInBlock * readers.length;
 		for (const { column, slot } of this.#kept) {
 			const text = cells[column];
 			let value: number | undefined = NaN;
@@ -101,7 +100,7 @@ export class QuotedReader {
 				}
 				if (value === undefined) this.#notes.addBadCell(slot, this.line, text);
 			}
-			block[base + slot] = value ?? NaN;
+			block[slot * BLOCK_STRIDE + this.#rowsInBlock] = value ?? NaN;
 		}
 		if (cells.length < width) this.#notes.addShort(this.line);
 		else if (cells.length > width && cells.slice(width).some((cell) => cell !== '')) this.#notes.addLong(this.line);
