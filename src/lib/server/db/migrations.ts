@@ -36,6 +36,16 @@ import * as m102 from '../../../../migrations/20261201000102_create_locks.ts';
 import * as m103 from '../../../../migrations/20261201000103_create_remembered_mappings.ts';
 import * as m104 from '../../../../migrations/20261201000104_let_people_choose_layouts_of_runs.ts';
 import * as m105 from '../../../../migrations/20261201000105_know_stored_files_again.ts';
+import * as m401 from '../../../../migrations/20261201000401_create_zone_note_revisions.ts';
+import * as m402 from '../../../../migrations/20261201000402_create_zone_note_replies.ts';
+import * as m403 from '../../../../migrations/20261201000403_create_debriefs.ts';
+import * as m404 from '../../../../migrations/20261201000404_create_sent_debriefs.ts';
+import * as m405 from '../../../../migrations/20261201000405_create_debrief_links.ts';
+import * as m406 from '../../../../migrations/20261201000406_create_debrief_replies.ts';
+import * as m407 from '../../../../migrations/20261201000407_create_debrief_ticks.ts';
+import * as m408 from '../../../../migrations/20261201000408_create_coach_phrases.ts';
+import * as m409 from '../../../../migrations/20261201000409_create_in_tray_marks.ts';
+import * as m410 from '../../../../migrations/20261201000410_date_focus_points.ts';
 import * as m201 from '../../../../migrations/20261201181001_add_metrics_of_causes.ts';
 
 interface Migration {
@@ -84,6 +94,16 @@ export const migrations: readonly (readonly [name: string, migration: Migration]
 	['20261201000103_create_remembered_mappings.ts', m103],
 	['20261201000104_let_people_choose_layouts_of_runs.ts', m104],
 	['20261201000105_know_stored_files_again.ts', m105],
+	['20261201000401_create_zone_note_revisions.ts', m401],
+	['20261201000402_create_zone_note_replies.ts', m402],
+	['20261201000403_create_debriefs.ts', m403],
+	['20261201000404_create_sent_debriefs.ts', m404],
+	['20261201000405_create_debrief_links.ts', m405],
+	['20261201000406_create_debrief_replies.ts', m406],
+	['20261201000407_create_debrief_ticks.ts', m407],
+	['20261201000408_create_coach_phrases.ts', m408],
+	['20261201000409_create_in_tray_marks.ts', m409],
+	['20261201000410_date_focus_points.ts', m410],
 	['20261201181001_add_metrics_of_causes.ts', m201]
 ];
 
