@@ -5,6 +5,8 @@ import { join } from 'node:path';
 import { fileURLToPath } from 'node:url';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { analysisDocumentSchema, errorDocumentSchema } from '../lib/schemas/analysisDocument.ts';
+import { pedalDocumentSchema } from '../lib/schemas/pedalDocument.ts';
+import { stintDocumentSchema } from '../lib/schemas/stintDocument.ts';
 
 /** Runs the real command, as package.json has it, without npm's own start. */
 
@@ -54,6 +56,19 @@ describe('analyse, the command', { timeout: 60_000 }, () => {
 		expect(document.comparison?.deltaS).toBeCloseTo(0.4571, 3);
 	});
 
+	it('judges a pedal sweep with --pedal and a stint with --stint, in a document each', () => {
+		const pedal = analyse('--pedal', fixture('pedal/gamma_1p5_noise.csv.gz'));
+		expect(pedal.stderr).toBe('');
+		expect(pedalDocumentSchema.parse(JSON.parse(pedal.stdout)).verdict).toBe('progressive');
+		const list = analyse('--stint', fixture('stint/fuel.csv.gz'), '--fuel', '2.1,0.032');
+		const stint = stintDocumentSchema.parse(JSON.parse(list.stdout));
+		expect(stint.fuelCorrected?.slopeSPerLap).toBeCloseTo(0.1005, 3);
+		const recording = analyse('--stint', fixture('closed-form/marrow_fen_session_20hz.csv.gz'));
+		const driven = stintDocumentSchema.parse(JSON.parse(recording.stdout));
+		expect(driven.laps.length).toBeGreaterThan(3);
+		expect(driven.fit?.n).toBeGreaterThan(3);
+	});
+
 	it('takes a line across the track, south or west of zero too', () => {
 		const run = analyse(fixture('closed-form/marrow_fen_gpsonly_10hz.csv.gz'), '--line', '41.1998,-30.4,41.2002,-30.4');
 		const document = analysisDocumentSchema.parse(JSON.parse(run.stdout));
@@ -85,6 +100,9 @@ describe('analyse, the command', { timeout: 60_000 }, () => {
 			],
 			code: 'reference_mismatch'
 		},
+		{ name: 'a sweep that is no table', words: ['--pedal', fixture('import/json.csv.gz')], code: 'not_csv' },
+		{ name: 'a stint that is a picture', words: ['--stint', fixture('import/binary.csv.gz')], code: 'not_text' },
+		{ name: 'a fuel effect that is none', words: ['--stint', 'a.csv', '--fuel', 'much'], code: 'bad_arguments' },
 		{ name: 'a picture that calls itself a table', words: [fixture('import/binary.csv.gz')], code: 'not_text' }
 	])('refuses $name with exit code 2, an error of one line, and nothing on standard output', ({ words, code }) => {
 		const run = analyse(...words);

@@ -4,24 +4,32 @@ import { parseAnalyseArguments } from './parseArguments.ts';
 
 describe('parseAnalyseArguments', () => {
 	it.each([
-		{ name: 'a file alone', words: ['run.csv'], expected: { file: 'run.csv' } },
+		{ name: 'a file alone', words: ['run.csv'], expected: { kind: 'run', file: 'run.csv' } },
 		{
 			name: 'every option, before and after the file',
 			words: ['--reference', 'ref.csv', '--lap', '3', 'run.csv', '--reference-lap', '0', '--run', '2'],
-			expected: { file: 'run.csv', reference: 'ref.csv', lap: 3, referenceLap: 0, run: 2 }
+			expected: { kind: 'run', file: 'run.csv', reference: 'ref.csv', lap: 3, referenceLap: 0, run: 2 }
 		},
 		{
 			name: 'values joined by an equals sign',
 			words: ['run.csv', '--lap=3', '--reference=a=b.csv'],
-			expected: { file: 'run.csv', lap: 3, reference: 'a=b.csv' }
+			expected: { kind: 'run', file: 'run.csv', lap: 3, reference: 'a=b.csv' }
 		},
 		{
 			name: 'a line south of the equator and west of Greenwich',
 			words: ['run.csv', '--line', '-33.1,-70.5,-33.2,-70.5'],
 			expected: {
+				kind: 'run',
 				file: 'run.csv',
 				line: { latitudeA: -33.1, longitudeA: -70.5, latitudeB: -33.2, longitudeB: -70.5 }
 			}
+		},
+		{ name: 'a pedal sweep', words: ['--pedal', 'sweep.csv'], expected: { kind: 'pedal', file: 'sweep.csv' } },
+		{ name: 'a stint', words: ['--stint', 'laps.csv'], expected: { kind: 'stint', file: 'laps.csv' } },
+		{
+			name: 'a stint with its fuel',
+			words: ['--fuel', '2.1,0.032', '--stint=laps.csv'],
+			expected: { kind: 'stint', file: 'laps.csv', fuel: { kgPerLap: 2.1, sPerKg: 0.032 } }
 		}
 	])('reads $name', ({ words, expected }) => {
 		expect(parseAnalyseArguments(words)).toEqual(expected);
@@ -48,6 +56,18 @@ describe('parseAnalyseArguments', () => {
 		{
 			words: ['a.csv', '--line', '91,2,3,4'],
 			message: '--line requires LAT,LON,LAT,LON in degrees, got 91,2,3,4'
+		},
+		{ words: ['a.csv', '--fuel', '1,2'], message: 'analyse takes no --fuel without --stint' },
+		{ words: ['a.csv', '--pedal', 'b.csv'], message: 'analyse requires one file, got 2' },
+		{ words: ['--pedal', 'b.csv', '--lap', '1'], message: 'analyse takes no --lap with --pedal' },
+		{ words: ['--pedal', 'b.csv', '--stint', 'c.csv'], message: 'analyse takes no --stint with --pedal' },
+		{
+			words: ['--stint', 'b.csv', '--fuel', '2'],
+			message: '--fuel requires KG_PER_LAP,S_PER_KG, both from 0, got 2'
+		},
+		{
+			words: ['--stint', 'b.csv', '--fuel', '2,-1'],
+			message: '--fuel requires KG_PER_LAP,S_PER_KG, both from 0, got 2,-1'
 		},
 		{ words: ['a.csv', '--line', '1,2,1,2'], message: '--line requires two different points' }
 	])('refuses $words', ({ words, message }) => {

@@ -15,15 +15,27 @@ const GZIP_MAGIC = [0x1f, 0x8b];
  * @throws {KerbnoteError} `file_not_found`, `compressed_file` where the gzip is broken, and what the parser refuses
  */
 export async function readRunFile(path: string): Promise<RawRun[]> {
+	return withBytes(path, (bytes, fileName, sizeBytes) => readRun(bytes, { fileName, sizeBytes }));
+}
+
+/**
+ * Opens a file for as long as its bytes are read, gzip unpacked.
+ *
+ * @throws {KerbnoteError} `file_not_found`, `compressed_file` where the gzip is broken
+ */
+export async function withBytes<Read>(
+	path: string,
+	read: (bytes: AsyncIterable<Uint8Array>, fileName: string, sizeBytes?: number) => Promise<Read>
+): Promise<Read> {
 	const handle = await openFile(path);
 	try {
 		const magic = Buffer.alloc(GZIP_MAGIC.length);
 		const { bytesRead } = await handle.read(magic, 0, magic.length, 0);
 		const packed = bytesRead === magic.length && GZIP_MAGIC.every((byte, i) => magic[i] === byte);
 		const fileName = basename(path);
-		if (!packed) return await readRun(readChunks(handle), { fileName, sizeBytes: (await handle.stat()).size });
+		if (!packed) return await read(readChunks(handle), fileName, (await handle.stat()).size);
 		const bytes = handle.createReadStream({ start: 0, highWaterMark: CHUNK_BYTES, autoClose: false });
-		return await readRun(gunzipped(bytes, fileName), { fileName });
+		return await read(gunzipped(bytes, fileName), fileName);
 	} finally {
 		await handle.close();
 	}

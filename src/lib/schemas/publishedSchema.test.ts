@@ -3,21 +3,27 @@ import { dirname } from 'node:path';
 import { fileURLToPath } from 'node:url';
 import { describe, expect, it } from 'vitest';
 import { findingCodeSchema } from './codes.ts';
-import { publishedAnalysisSchema } from './publishedSchema.ts';
+import { publishedAnalysisSchema, publishedCheckSchemas } from './publishedSchema.ts';
 
-const FILE = fileURLToPath(new URL('../../../static/schemas/kerbnote.analysis-1.json', import.meta.url));
+const fileOf = (name: string) =>
+	fileURLToPath(new URL(`../../../static/schemas/kerbnote.${name}-1.json`, import.meta.url));
 
-describe('publishedAnalysisSchema', () => {
-	it('is what static/schemas serves; UPDATE_GOLDEN=1 writes it anew', () => {
-		const text = `${JSON.stringify(publishedAnalysisSchema(), null, '\t')}\n`;
+describe('published schemas', () => {
+	it.each([
+		{ name: 'analysis', schema: publishedAnalysisSchema() },
+		{ name: 'pedal', schema: publishedCheckSchemas().pedal },
+		{ name: 'stint', schema: publishedCheckSchemas().stint }
+	])('of $name are what static/schemas serves; UPDATE_GOLDEN=1 writes them anew', ({ name, schema }) => {
+		const text = `${JSON.stringify(schema, null, '\t')}\n`;
+		const file = fileOf(name);
 		if (process.env.UPDATE_GOLDEN && !process.env.CI) {
-			mkdirSync(dirname(FILE), { recursive: true });
-			writeFileSync(FILE, text);
+			mkdirSync(dirname(file), { recursive: true });
+			writeFileSync(file, text);
 		}
-		expect(readFileSync(FILE, 'utf8')).toBe(text);
+		expect(readFileSync(file, 'utf8')).toBe(text);
 	});
 
-	it('publishes the codes of findings and lets readers meet new fields', () => {
+	it('publish the codes of findings and let readers meet new fields', () => {
 		const text = JSON.stringify(publishedAnalysisSchema());
 		for (const code of findingCodeSchema.options) expect(text).toContain(`"${code}"`);
 		expect(text).not.toContain('"additionalProperties":false');

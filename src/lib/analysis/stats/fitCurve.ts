@@ -22,6 +22,8 @@ const MAX_STEPS = 60;
 /** The damping doubles and halves between these; beyond the upper one no step helps. */
 const LEAST_DAMPING = 1e-12;
 const MOST_DAMPING = 1e8;
+/** A mean square below this is rounding: residuals are of order one. */
+const NOTHING = 1e-22;
 
 /**
  * Least squares for a curve that is not linear in its parameters, each within borders: Levenberg–Marquardt, each step by Householder reflections
@@ -38,7 +40,7 @@ export function fitCurve(
 	let rest = residuals(values);
 	let squares = sumOfSquares(rest);
 	let damping = 1e-3;
-	for (let step = 0; step < MAX_STEPS && damping < MOST_DAMPING && squares > 0; step++) {
+	for (let step = 0; step < MAX_STEPS && damping < MOST_DAMPING && squares > NOTHING * rest.length; step++) {
 		const columns = slopes(residuals, values, rest, parameters);
 		const free = freeOnes(columns, rest, values, parameters);
 		if (free.length === 0) break;
@@ -50,7 +52,7 @@ export function fitCurve(
 			const gain = 1 - nextSquares / squares;
 			[values, rest, squares] = [next, nextRest, nextSquares];
 			damping = Math.max(LEAST_DAMPING, damping / 5);
-			if (gain < 1e-12) break;
+			if (gain < 1e-9) break;
 		} else damping *= 4;
 	}
 	return describe(residuals, values, rest, squares, parameters);
