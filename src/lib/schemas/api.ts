@@ -42,6 +42,8 @@ export const problemSchema = z.object({
 	remedy: z.string().optional(),
 	/** which fields of the input are wrong */
 	issues: z.record(z.string(), z.array(z.string())).optional(),
+	/** with 409, where somebody else wrote in between: what stands now and what was to be written; nothing was overwritten */
+	conflict: z.object({ revision: z.number().int(), theirs: z.unknown(), yours: z.unknown() }).optional(),
 	/** to quote when asking for help */
 	errorId: z.string().optional()
 });

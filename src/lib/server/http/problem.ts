@@ -8,7 +8,7 @@ export class RequestProblem extends Error {
 		readonly status: number,
 		readonly code: ProblemCode,
 		message: string,
-		readonly more: Pick<Problem, 'remedy' | 'issues'> & { headers?: Record<string, string> } = {}
+		readonly more: Pick<Problem, 'remedy' | 'issues' | 'conflict'> & { headers?: Record<string, string> } = {}
 	) {
 		super(message);
 		this.name = 'RequestProblem';
