@@ -34,7 +34,7 @@ const PARTS: ReadonlyArray<readonly [part: string, paths: readonly string[]]> = 
 	['core', ['src/lib/parse/', 'src/lib/analysis/', 'src/lib/schemas/', 'src/lib/units.ts']],
 	['server hooks', ['src/lib/server/hooks/']],
 	['server base', ['db', 'access', 'auth', 'storage', 'http', 'environment.ts', 'logger.ts'].map(onServer)],
-	['server work', ['importing', 'jobs', 'services', 'upload'].map(onServer)],
+	['server work', ['importing', 'jobs', 'mail', 'services', 'upload'].map(onServer)],
 	...PURE_PARTS.slice(1).map((name) => [name, [`src/lib/${name}/`]] as const),
 	['routes', ['src/routes/']],
 	['workers', ['src/workers/']],

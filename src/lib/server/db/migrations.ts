@@ -46,6 +46,8 @@ import * as m407 from '../../../../migrations/20261201000407_create_debrief_tick
 import * as m408 from '../../../../migrations/20261201000408_create_coach_phrases.ts';
 import * as m409 from '../../../../migrations/20261201000409_create_in_tray_marks.ts';
 import * as m410 from '../../../../migrations/20261201000410_date_focus_points.ts';
+import * as m301 from '../../../../migrations/20261201000301_create_mail_log.ts';
+import * as m302 from '../../../../migrations/20261201000302_create_mail_choices.ts';
 import * as m201 from '../../../../migrations/20261201181001_add_metrics_of_causes.ts';
 
 interface Migration {
@@ -104,6 +106,8 @@ export const migrations: readonly (readonly [name: string, migration: Migration]
 	['20261201000408_create_coach_phrases.ts', m408],
 	['20261201000409_create_in_tray_marks.ts', m409],
 	['20261201000410_date_focus_points.ts', m410],
+	['20261201000301_create_mail_log.ts', m301],
+	['20261201000302_create_mail_choices.ts', m302],
 	['20261201181001_add_metrics_of_causes.ts', m201]
 ];
 

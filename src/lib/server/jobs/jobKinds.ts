@@ -11,10 +11,12 @@ export const jobPayloadSchemas = {
 	}),
 	/** queue files that an earlier version of the analysis read, a few at a time */
 	reanalyse: z.object({}),
+	/** send a letter of the mail log */
+	sendMail: z.object({ mailId: z.number().int() }),
 	/** tidy up: writes that never ended, counters and sessions that ran out */
 	sweep: z.object({})
 };
 
 export type JobKind = keyof typeof jobPayloadSchemas;
 export type JobPayload<Kind extends JobKind> = z.infer<(typeof jobPayloadSchemas)[Kind]>;
-export const JOB_KINDS: readonly JobKind[] = ['importRun', 'reanalyse', 'sweep'];
+export const JOB_KINDS: readonly JobKind[] = ['importRun', 'reanalyse', 'sendMail', 'sweep'];

@@ -2,6 +2,7 @@ import { hostname } from 'node:os';
 import type { Knex } from 'knex';
 import { faultOf, logger } from '../logger.ts';
 import type { AnalysisPool } from '../importing/analysisPool.ts';
+import { sendMail } from '../mail/sendMail.ts';
 import { giveUpImport, importRun } from '../services/importRun.ts';
 import type { RawStore } from '../storage/rawStore.ts';
 import { jobPayloadSchemas } from './jobKinds.ts';
@@ -155,6 +156,7 @@ export class JobRunner {
 			if (queued > 0) await enqueue(db, 'reanalyse', {}, { uniqueKey: 'reanalyse', delayS: REANALYSE_EVERY_S });
 			return;
 		}
+		if (job.kind === 'sendMail') return await sendMail(db, job, jobPayloadSchemas.sendMail.parse(job.payload));
 		await sweep(db, store, new Date());
 		await finish(db, job);
 		await enqueue(db, 'sweep', {}, { uniqueKey: 'sweep', delayS: SWEEP_EVERY_S });
