@@ -1,5 +1,5 @@
 import type { Knex } from 'knex';
-import type { ZoneNoteChange, ZoneNoteContent, ZoneNoteDetail, ZoneNoteInput } from '../../schemas/zoneNote.ts';
+import type { ZoneNoteChange, ZoneNoteDetail, ZoneNoteInput } from '../../schemas/zoneNote.ts';
 import { coachedPeople, keptNotes } from '../access/coaching.ts';
 import { seenRuns } from '../access/seenRuns.ts';
 import type { Viewer } from '../access/viewer.ts';
@@ -113,16 +113,14 @@ interface Stored {
 	target: unknown;
 }
 
-function conflictOf(now: Stored, { revision: _, ...yours }: ZoneNoteChange): RequestProblem {
-	const theirs: Omit<ZoneNoteContent, 'target' | 'corner'> & { target: unknown } = {
-		startM: now.start_m,
-		endM: now.end_m,
-		body: now.body,
-		target: now.target
-	};
+function conflictOf(now: Stored, { body, startM, endM, target }: ZoneNoteChange): RequestProblem {
 	return new RequestProblem(409, 'conflict', 'the note was changed since you read it', {
 		remedy: 'Look at both texts and save again',
-		conflict: { revision: now.revision, theirs, yours }
+		conflict: {
+			revision: now.revision,
+			theirs: { startM: now.start_m, endM: now.end_m, body: now.body, target: now.target },
+			yours: { startM, endM, body, target }
+		}
 	});
 }
 
