@@ -9,11 +9,14 @@ import type {
 import type { WarningCode } from '../schemas/codes.ts';
 import { KerbnoteError } from '../schemas/kerbnoteError.ts';
 import type { RawRun } from '../parse/rawRun.ts';
+import { fadeWatch } from './car/fadeWatch.ts';
 import { fitFullThrottle, type FullThrottleModel } from './car/fullThrottle.ts';
 import { prepareChannels } from './channels/prepareChannels.ts';
 import { cellTimes, theoreticalBest } from './compare/cellTimes.ts';
 import { chooseLap, type ChosenLap } from './compare/chooseLap.ts';
 import { compareLaps } from './compare/compareLaps.ts';
+import { cornerSpread, ownBest } from './compare/ownBest.ts';
+import { rollingLap } from './compare/rollingLap.ts';
 import { usualOnsets } from './compare/usualOnsets.ts';
 import { cutCells } from './corners/cutCells.ts';
 import { findCorners } from './corners/findCorners.ts';
@@ -120,6 +123,10 @@ export function analyseRun(raws: RawRun[], options: AnalyseOptions = {}): RunAna
 		metrics: measured.metrics,
 		lockUps: measured.lockUps,
 		theoreticalBestS: theoreticalBest(cleanCellS, cells.length),
+		rollingBest: rollingLap(measured.placed),
+		fade: fadeWatch(channels),
+		ownBest: ownBest(cells, cellS, laps),
+		spreads: cornerSpread(corners, measured.metrics, cleanLaps(laps), path.lengthM),
 		comparison
 	});
 	const gridded =

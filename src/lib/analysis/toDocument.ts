@@ -8,6 +8,9 @@ import type {
 	SourceSummary,
 	Warning
 } from '../schemas/analysisDocument.ts';
+import type { FadeWatch } from './car/fadeWatch.ts';
+import type { CornerSpread, OwnBest } from './compare/ownBest.ts';
+import type { RollingLap } from './compare/rollingLap.ts';
 import type { Lap, ReferencePath } from './model.ts';
 
 export interface DocumentParts {
@@ -22,6 +25,10 @@ export interface DocumentParts {
 	metrics: CornerMetrics[];
 	lockUps: LockUp[];
 	theoreticalBestS: number | null;
+	rollingBest: RollingLap | null;
+	fade: FadeWatch | null;
+	ownBest: OwnBest[];
+	spreads: CornerSpread[];
 	comparison: Comparison | null;
 }
 
@@ -63,6 +70,10 @@ export function toDocument(parts: DocumentParts): AnalysisDocument {
 		metrics: parts.metrics,
 		lockUps: parts.lockUps,
 		theoreticalBestS: parts.theoreticalBestS,
+		rollingBest: parts.rollingBest,
+		fade: parts.fade,
+		ownBest: parts.ownBest,
+		spreads: parts.spreads,
 		comparison: comparison && { ...comparison, delta: rounded(comparison.delta, COLUMN_DIGITS.seconds) }
 	};
 }

@@ -188,9 +188,9 @@ export const findingSchema = z.object({
 	shares: z.array(z.object({ corner: z.number().int(), costS: z.number() })),
 	evidence: z.array(evidenceSchema),
 	text: z.string(),
-	/** the exercise that goes with it, before circumstances are looked at (see the advice gates); null where there is none */
+	/** the exercise that goes with it where nothing is known of the circumstances, so as for a real car; null where none may be said */
 	drill: z.string().nullable().optional(),
-	/** a clean lap of the driver's own run that did not show it; null where there is none */
+	/** "you have already done this": the driver's own clean lap without it that was quickest in the corner; null for none */
 	ownLap: z.number().int().nullable().optional()
 });
 export type Finding = z.infer<typeof findingSchema>;
@@ -212,6 +212,40 @@ export const ledgerRowSchema = z.object({
 });
 export type LedgerRow = z.infer<typeof ledgerRowSchema>;
 
+/** linked corners judged as one: what the corners before the last one's exit found or lost, and what came out of it */
+export const chainSchema = z.object({
+	corners: z.array(z.number().int()),
+	beforeS: z.number(),
+	exitS: z.number()
+});
+
+export const fadeSchema = z.object({
+	/** change of deceleration at equal brake and equal speed, from begin to end of the run, as a share */
+	changeShare: z.number(),
+	/** two standard errors */
+	plusMinus: z.number(),
+	readings: z.number().int(),
+	sign: z.boolean()
+});
+
+export const rollingLapSchema = z.object({ timeS: z.number(), startM: z.number(), lap: z.number().int() });
+
+export const ownBestSchema = z.object({
+	corners: z.array(z.number().int()),
+	bestS: z.number(),
+	lap: z.number().int(),
+	medianS: z.number(),
+	laps: z.number().int()
+});
+
+export const cornerSpreadSchema = z.object({
+	corner: z.number().int(),
+	onsetSdM: nullable,
+	minSpeedSdKmh: nullable,
+	timeSdS: nullable,
+	laps: z.number().int()
+});
+
 export const comparisonSchema = z.object({
 	lap: z.number().int(),
 	referenceLap: z.number().int(),
@@ -223,7 +257,8 @@ export const comparisonSchema = z.object({
 	ledger: z.array(ledgerRowSchema),
 	findings: z.array(findingSchema),
 	/** per ledger row, what no finding explains: the row's total is the sum of the shares in it plus this */
-	unexplained: z.array(z.object({ corner: z.number().int(), costS: z.number() }))
+	unexplained: z.array(z.object({ corner: z.number().int(), costS: z.number() })),
+	chains: z.array(chainSchema).optional()
 });
 export type Comparison = z.infer<typeof comparisonSchema>;
 
@@ -237,6 +272,14 @@ export const analysisDocumentSchema = z.object({
 	metrics: z.array(metricsSchema),
 	lockUps: z.array(lockUpSchema),
 	theoreticalBestS: nullable,
+	/** least time over one full length from any place; null without clean laps or on an open path */
+	rollingBest: rollingLapSchema.nullable().optional(),
+	/** null where the run is too short, or has no brake level */
+	fade: fadeSchema.nullable().optional(),
+	/** own best beside own median, by cell */
+	ownBest: z.array(ownBestSchema).optional(),
+	/** from clean lap to clean lap, by corner */
+	spreads: z.array(cornerSpreadSchema).optional(),
 	comparison: comparisonSchema.nullable()
 });
 export type AnalysisDocument = z.infer<typeof analysisDocumentSchema>;

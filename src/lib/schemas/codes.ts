@@ -165,3 +165,22 @@ export const findingCodeSchema = z.enum([
 	'carried_in'
 ]);
 export type FindingCode = z.infer<typeof findingCodeSchema>;
+
+/** Why drafted advice is not said. */
+export const adviceGateSchema = z.enum([
+	'open_road',
+	'neutralised',
+	'saving_fuel',
+	'warming_tyres',
+	'wet',
+	'cold_tyres',
+	'first_laps',
+	'fade',
+	'no_run_off',
+	'no_slip_evidence',
+	'rear_brakes',
+	'rear_locks',
+	'beginner',
+	'step_too_small'
+]);
+export type AdviceGate = z.infer<typeof adviceGateSchema>;

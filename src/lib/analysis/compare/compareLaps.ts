@@ -1,6 +1,7 @@
 import type { Comparison, Corner, CornerMetrics } from '../../schemas/analysisDocument.ts';
 import type { FullThrottleModel } from '../car/fullThrottle.ts';
 import { gripEnvelope, type GripEnvelope } from '../car/gripEnvelope.ts';
+import { judgeChains } from '../findings/chains.ts';
 import { countsOnce } from '../findings/countsOnce.ts';
 import { differenceOf, type MetricField } from '../findings/difference.ts';
 import { nameFindings } from '../findings/nameFindings.ts';
@@ -103,6 +104,7 @@ export function compareLaps(input: CompareInput): Comparison {
 		referenceMetrics: input.reference.metrics,
 		ledger,
 		findings,
-		unexplained
+		unexplained,
+		chains: judgeChains(corners, ledger)
 	};
 }

@@ -7,12 +7,14 @@ import { gapIndex, type SpeedGap } from '../compare/speedGap.ts';
 import { CARRIED_IN, poolOf, type StageKind } from '../compare/stages.ts';
 import type { LapGrid } from '../model.ts';
 import { gripShareAt, type GripEnvelope } from '../car/gripEnvelope.ts';
+import { adviseOn } from './adviseOn.ts';
 import { brakingStrength } from './brakingStrength.ts';
 import * as causes from './causes.ts';
 import type { Cause, CauseShare, CornerCase } from './causes.ts';
 import { chainCause, judgeChains } from './chains.ts';
+import { UNKNOWN_CIRCUMSTANCES } from './circumstances.ts';
 import { corneringAt } from './cornering.ts';
-import { differenceOf, evidenceOf } from './difference.ts';
+import { differenceOf, evidenceOf, type MetricField, type MetricsPair } from './difference.ts';
 import { findingText } from './findingText.ts';
 import { judgeHabit } from './habit.ts';
 import { techniquesOf } from './techniques.ts';
@@ -94,6 +96,7 @@ export function nameFindings(input: FindingsInput): Finding[] {
 			for (const { cause, share } of CAUSES_OF[kind]?.(c) ?? []) charge(here, place.number, cause, byRow, share);
 		}
 		const named = blameEntry(c, here).filter(({ byRow }) => Math.abs(total(byRow)) >= LEAST_COST_S);
+		for (const { cause } of named) if (cause.code === 'exit_speed_low') addStraight(cause, place, rows[k + 1]);
 		charged.push(...named, ...straightCause(input, k + 1, place.corner));
 		const chain = chains.find(({ corners }) => corners.at(-1) === place.number);
 		const inChain = chain ? chainCause(chain, c.pair) : null;
@@ -104,7 +107,19 @@ export function nameFindings(input: FindingsInput): Finding[] {
 	});
 	const findings = charged.map((one) => toFinding(one, input));
 	const costless = techniques.map((one) => toFinding(one, input));
-	return [...findings, ...carriedIn(findings, rows), ...costless].sort((a, b) => (b.costS ?? 0) - (a.costS ?? 0));
+	const all = [...findings, ...carriedIn(findings, rows), ...costless].sort((a, b) => (b.costS ?? 0) - (a.costS ?? 0));
+	return adviseOn(all, UNKNOWN_CIRCUMSTANCES).map(({ finding, drill }) => ({ ...finding, drill }));
+}
+
+/** From this length on a straight behind a corner is worth a word. */
+const LONG_STRAIGHT_M = 400;
+
+/** What makes a poor exit dear: the straight behind it. */
+function addStraight(cause: Cause, { endM }: CornerPlaces, row: LedgerRow | undefined): void {
+	const lengthM = row ? row.endM - endM : 0;
+	if (lengthM < LONG_STRAIGHT_M) return;
+	const driver = Math.round(lengthM / 10) * 10;
+	cause.evidence.push({ quantity: 'straight', unit: 'm', driver, reference: null, atM: endM, plusMinus: null });
 }
 
 /** A technique that a charged cause tells already. */
@@ -237,8 +252,30 @@ function toFinding({ corner, cause, byRow }: Charged, input: FindingsInput): Fin
 		habitLaps: habit.laps,
 		shares,
 		evidence: cause.evidence,
-		text: findingText(cause)
+		text: findingText(cause),
+		ownLap: cause.field === null || costS < 0 ? null : alreadyDone(cause.field, pair, cleanMetrics, corner)
 	};
+}
+
+/** The driver's own clean lap that was quickest in the corner among those that show no such difference from the reference. */
+function alreadyDone(
+	field: MetricField,
+	pair: MetricsPair,
+	cleanMetrics: readonly CornerMetrics[],
+	corner: number
+): number | null {
+	const own = differenceOf(pair, field);
+	if (!own) return null;
+	const done = cleanMetrics.filter((m) => {
+		if (m.corner !== corner || m.lap === pair.driver?.lap) return false;
+		const other = differenceOf({ ...pair, driver: m }, field);
+		return other !== null && (!other.counts || Math.sign(other.by) !== Math.sign(own.by));
+	});
+	const quickest = done.reduce<CornerMetrics | null>(
+		(best, m) => (best && (best.timeS ?? Infinity) <= (m.timeS ?? Infinity) ? best : m),
+		null
+	);
+	return quickest?.lap ?? null;
 }
 
 /** What each corner's row carries of causes elsewhere; repeats shares, so that sums leave it out. */
