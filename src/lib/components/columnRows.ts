@@ -8,6 +8,10 @@ import { CHANNEL_ORDER, CHANNEL_TEXT } from '../texts/channels.ts';
 import { unitAfterReading, unitText } from '../texts/columnUnit.ts';
 
 export interface ColumnRow {
+	/** null for absent things that are wider than one channel */
+	channel: Channel | null;
+	/** 0-based place in the file; null where the file has no such column */
+	index: number | null;
 	/** what the product needs it for */
 	need: string;
 	/** header in the file; null where the file has no such column */
@@ -26,17 +30,25 @@ export interface ColumnRow {
 const SURE = 0.8;
 const FAIRLY_SURE = 0.5;
 
+/** How sure a recognition is, in words; null where it is plain. */
 function doubtOf(confidence: number) {
 	if (confidence >= SURE) return null;
 	return confidence >= FAIRLY_SURE ? 'fairly sure' : 'a guess, please check';
 }
 
-function rangeOf(channel: Channel, { min, max, unit }: SourceColumn) {
+/** A value as it stands in the file, with a proper minus. */
+export function sampleText(sample: string) {
+	return sample.replace(/^-/, MINUS);
+}
+
+/** From lowest to highest, in the unit after reading; of a column that is not used, as it stands. */
+export function rangeOf(channel: Channel | null, { min, max, unit }: SourceColumn) {
 	if (min === null || max === null) return '';
 	const largest = Math.max(Math.abs(min), Math.abs(max));
 	const whole = Number.isInteger(min) && Number.isInteger(max);
 	const decimals = whole || largest >= 100 ? 0 : largest >= 10 ? 1 : 2;
-	return `${formatNumber(min, { decimals })} to${NO_BREAK_SPACE}${formatUnit(max, unitAfterReading(channel, unit), { decimals })}`;
+	const after = channel === null ? '' : unitAfterReading(channel, unit);
+	return `${formatNumber(min, { decimals })} to${NO_BREAK_SPACE}${formatUnit(max, after, { decimals })}`;
 }
 
 /**
@@ -49,18 +61,23 @@ export function columnRows(
 ): ColumnRow[] {
 	const found = CHANNEL_ORDER.flatMap((channel) =>
 		columns
-			.filter((column) => column.channel === channel)
-			.map((column) => ({
+			.map((column, index) => ({ column, index }))
+			.filter(({ column }) => column.channel === channel)
+			.map(({ column, index }) => ({
+				channel,
+				index,
 				need: CHANNEL_TEXT[channel],
 				header: column.header,
 				unit: unitText(channel, column.unit),
-				samples: column.samples.map((sample) => sample.replace(/^-/, MINUS)),
+				samples: column.samples.map(sampleText),
 				range: rangeOf(channel, column),
 				doubt: doubtOf(column.confidence),
 				instead: null
 			}))
 	);
 	const missing = absent.map(({ channel, instead }) => ({
+		channel: CHANNEL_ORDER.find((one) => one === channel) ?? null,
+		index: null,
 		need: absentName(channel),
 		header: null,
 		unit: '',

@@ -1,170 +1,241 @@
 import type { UploadHead } from '../schemas/views.ts';
-import { isSettled } from '../texts/uploads.ts';
+import { describeProgress } from '../texts/uploads.ts';
+import { LINE_BROKEN, UploadFault, type UploadDoor, type UploadProblem } from './transfer.ts';
+import { UploadRow } from './UploadRow.svelte.ts';
 
-/** Why a file is not here, and what to do. */
-export interface UploadProblem {
-	message: string;
-	remedy: string;
-	/** may the same file simply be sent again */
-	again: boolean;
-}
-
-/** Thrown by `send` and `ask` for what a person can read. */
-export class UploadFault extends Error {
-	constructor(readonly problem: UploadProblem) {
-		super(problem.message);
-		this.name = 'UploadFault';
-	}
-}
-
-/** The server, as the queue sees it. */
-export interface UploadDoor {
-	/** hands one file over; resolves with what the server made of it */
-	send: (file: File, onprogress: (share: number) => void, signal: AbortSignal) => Promise<UploadHead>;
-	/** how far the import is */
-	ask: (id: string, signal: AbortSignal) => Promise<UploadHead>;
-}
-
-/** One file on its way. */
-export class UploadRow {
-	/** 0–1 of its bytes */
-	sent = $state(0);
-	head = $state.raw<UploadHead | null>(null);
-	problem = $state.raw<UploadProblem | null>(null);
-	isSending = $state(false);
-
-	constructor(
-		readonly key: number,
-		readonly file: File
-	) {}
-
-	get isWaiting() {
-		return !this.isSending && this.head === null && this.problem === null;
-	}
-	get isDone() {
-		return this.problem !== null || (this.head !== null && isSettled(this.head));
-	}
-}
-
-/** Between two questions about imports that are under way. */
-const ASK_EVERY_MS = 600;
+/** How long what happened is gathered before it is said aloud. */
+const NEWS_AFTER_MS = 1200;
 
 /**
- * Files on their way to the server: sent one after the other, so that each has the whole line, while those that arrived are
- * asked after. One for each page; `stop` when the page goes.
+ * Files on their way to the server: sent one after the other, so that each has the whole line, while the server says by itself how
+ * far it is with those that arrived. One for each tab; it goes on while pages change.
  */
 export class UploadQueue {
 	#rows = $state<UploadRow[]>([]);
+	/** what a screen reader says: sums up, and only when a file is done */
+	news = $state('');
 	readonly #door: UploadDoor;
-	readonly #askEveryMs: number;
+	readonly #newsAfterMs: number;
 	readonly #stopped = new AbortController();
 	#nextKey = 0;
-	#sending: Promise<void> | null = null;
-	#asking: Promise<void> | null = null;
+	#newsTimer: ReturnType<typeof setTimeout> | undefined;
+	#listeners: { id: string; onhead: (head: UploadHead) => void }[] = [];
 
-	constructor(door: UploadDoor, { askEveryMs = ASK_EVERY_MS } = {}) {
+	constructor(door: UploadDoor, { newsAfterMs = NEWS_AFTER_MS } = {}) {
 		this.#door = door;
-		this.#askEveryMs = askEveryMs;
+		this.#newsAfterMs = newsAfterMs;
 	}
 
 	get rows(): readonly UploadRow[] {
 		return this.#rows;
 	}
 
-	add(files: readonly File[]): void {
-		for (const file of files) this.#rows.push(new UploadRow(this.#nextKey++, file));
-		this.#start();
-	}
-
-	/** Sends a file again whose way was cut. */
-	retry(row: UploadRow): void {
-		row.problem = null;
-		row.head = null;
-		row.sent = 0;
-		this.#start();
+	/** Listens to the server and takes up what a page that was left or loaded anew had begun. */
+	async begin(): Promise<void> {
+		const stopListening = this.#door.listen({
+			onhead: (head) => this.#hear(head),
+			ongone: (id) => this.#take((row) => row.id === id && row.phase !== 'failed'),
+			onopen: () => void this.#askAll()
+		});
+		this.#stopped.signal.addEventListener('abort', stopListening, { once: true });
+		this.add(await this.#door.kept.list(), { keep: false });
 	}
 
 	stop(): void {
 		this.#stopped.abort();
+		clearTimeout(this.#newsTimer);
+		for (const row of this.#rows) if (row.isSending) void row.transfer?.pause();
 	}
 
-	/** Resolves when nothing is under way. */
-	async settled(): Promise<void> {
-		while (this.#sending !== null || this.#asking !== null) await Promise.all([this.#sending, this.#asking]);
+	/** Hears what the server says of one upload; returns how to stop. */
+	listen(id: string, onhead: (head: UploadHead) => void): () => void {
+		const listener = { id, onhead };
+		this.#listeners.push(listener);
+		return () => (this.#listeners = this.#listeners.filter((one) => one !== listener));
 	}
 
-	/** Both loops look once more when they have ended: a row may have come between their last look and their end. */
-	#start(): void {
-		this.#sending ??= this.#sendAll().finally(() => {
-			this.#sending = null;
-			if (!this.#stopped.signal.aborted && this.#rows.some((row) => row.isWaiting)) this.#start();
-		});
-	}
-
-	#watch(): void {
-		this.#asking ??= this.#askAll().finally(() => {
-			this.#asking = null;
-			if (!this.#stopped.signal.aborted && this.#openRows().length > 0) this.#watch();
-		});
-	}
-
-	#openRows(): UploadRow[] {
-		return this.#rows.filter((row) => row.head !== null && !row.isDone);
-	}
-
-	async #sendAll(): Promise<void> {
-		let row: UploadRow | undefined;
-		while (!this.#stopped.signal.aborted && (row = this.#rows.find(({ isWaiting }) => isWaiting)) !== undefined) {
-			const sending = row;
-			sending.isSending = true;
-			try {
-				sending.head = await this.#door.send(sending.file, (share) => (sending.sent = share), this.#stopped.signal);
-				sending.sent = 1;
-				this.#watch();
-			} catch (error) {
-				sending.problem = problemOf(error);
-			} finally {
-				sending.isSending = false;
+	add(files: readonly File[], { keep = true } = {}): void {
+		for (const file of files) {
+			const known = this.#rows.find((row) => row.file !== null && isSameFile(row.file, file) && !row.isDone);
+			if (known) {
+				if (known.phase === 'paused') this.resume(known);
+				continue;
 			}
+			this.#rows.push(new UploadRow(this.#nextKey++, file.name, file.size, file));
+			// A browser that keeps nothing (private window, full disk) only loses the way back after a reload.
+			if (keep) this.#door.kept.keep(file).catch(() => {});
+		}
+		this.#pump();
+	}
+
+	/** Stops a file; what has arrived stays on the server. */
+	async pause(row: UploadRow): Promise<void> {
+		if (row.phase !== 'waiting' && !row.isSending) return;
+		row.phase = 'paused';
+		await row.transfer?.pause();
+		this.#pump();
+	}
+
+	resume(row: UploadRow): void {
+		if (row.phase !== 'paused') return;
+		row.phase = 'waiting';
+		this.#pump();
+	}
+
+	/** Sends a file again whose way was cut for good; it goes on where it stopped. */
+	retry(row: UploadRow): void {
+		row.problem = null;
+		row.phase = 'waiting';
+		this.#pump();
+	}
+
+	/** Gives up what is on its way, and takes it off the list. */
+	async cancel(row: UploadRow): Promise<void> {
+		const { phase, transfer, id } = row;
+		row.phase = 'paused';
+		this.#take((one) => one === row);
+		this.#forget(row);
+		if (transfer) await transfer.giveUp().catch(() => {});
+		else if (phase === 'elsewhere' && id !== null) await this.#door.remove(id, 'give_up');
+		this.#pump();
+	}
+
+	/**
+	 * Takes an upload that has arrived out of sight, with what was read of it.
+	 *
+	 * @returns how to undo it; null where there is nothing to take away
+	 */
+	async remove(row: UploadRow): Promise<(() => Promise<void>) | null> {
+		const { id } = row;
+		if (id === null) return null;
+		const place = this.#rows.indexOf(row);
+		await this.#door.remove(id, 'delete');
+		this.#take((one) => one === row);
+		return async () => {
+			row.head = await this.#door.restore(id);
+			// The server may have said it already, and a row of its own may stand for it.
+			this.#take((one) => one.id === id);
+			this.#rows.splice(Math.min(place, this.#rows.length), 0, row);
+		};
+	}
+
+	/** Takes a row off the list that has no more to say. */
+	dismiss(row: UploadRow): void {
+		this.#take((one) => one === row);
+	}
+
+	/** The next file that waits takes the line, where it is free. */
+	#pump(): void {
+		if (this.#stopped.signal.aborted || this.#rows.some((row) => row.isSending)) return;
+		const row = this.#rows.find(({ phase }) => phase === 'waiting');
+		if (!row?.file) return;
+		row.phase = 'sending';
+		row.transfer ??= this.#open(row, row.file);
+		row.transfer.start();
+	}
+
+	#open(row: UploadRow, file: File) {
+		return this.#door.open(file, {
+			oncreated: (id) => {
+				row.id = id;
+				// The server may have said it before the transfer knew its name.
+				this.#take((other) => other !== row && other.id === id && other.file === null);
+			},
+			onprogress: (sentBytes) => {
+				row.sentBytes = sentBytes;
+				if (row.phase === 'cut') row.phase = 'sending';
+			},
+			oncut: () => {
+				if (row.phase === 'sending') row.phase = 'cut';
+			},
+			onarrived: ({ id, knownBefore }) => {
+				row.id = id;
+				row.knownBefore = knownBefore;
+				row.sentBytes = row.sizeBytes;
+				row.phase = 'arrived';
+				this.#take((other) => other !== row && other.id === id && other.file === null);
+				this.#forget(row);
+				void this.#ask(row);
+				this.#pump();
+			},
+			onfault: (problem) => {
+				row.problem = problem;
+				row.phase = 'failed';
+				row.transfer = null;
+				if (!problem.again) this.#forget(row);
+				this.#tell();
+				this.#pump();
+			}
+		});
+	}
+
+	#hear(head: UploadHead): void {
+		for (const { id, onhead } of this.#listeners) if (id === head.id) onhead(head);
+		const rows = this.#rows.filter((row) => row.id === head.id);
+		if (rows.length === 0) {
+			const row = new UploadRow(this.#nextKey++, head.fileName, head.sizeBytes, null);
+			row.id = head.id;
+			row.phase = 'elsewhere';
+			this.#rows.push(row);
+			rows.push(row);
+		}
+		for (const row of rows) {
+			const isOurs = row.file !== null && row.phase !== 'arrived';
+			// Of a file that this tab sends, the transfer knows more until it has arrived.
+			if (isOurs || row.phase === 'failed') continue;
+			row.head = head;
+			row.sentBytes = head.receivedBytes;
+			row.phase = head.state === 'receiving' ? 'elsewhere' : 'arrived';
+			if (row.isDone) this.#tell();
 		}
 	}
 
 	async #askAll(): Promise<void> {
-		const { signal } = this.#stopped;
-		for (;;) {
-			const open = this.#openRows();
-			if (open.length === 0 || signal.aborted) return;
-			await pause(this.#askEveryMs, signal);
-			await Promise.all(open.map((row) => this.#askOne(row)));
-		}
+		await Promise.all(this.#rows.filter((row) => row.id !== null && !row.isDone).map((row) => this.#ask(row)));
 	}
 
-	async #askOne(row: UploadRow): Promise<void> {
-		if (row.head === null || this.#stopped.signal.aborted) return;
+	async #ask(row: UploadRow): Promise<void> {
+		if (row.id === null || row.isSending || this.#stopped.signal.aborted) return;
 		try {
-			row.head = await this.#door.ask(row.head.id, this.#stopped.signal);
+			this.#hear(await this.#door.ask(row.id, this.#stopped.signal));
 		} catch (error) {
-			// The file is safe on the server: a line that breaks for a moment is asked again.
-			if (error instanceof UploadFault && !error.problem.again) row.problem = error.problem;
+			// The file is safe on the server: a line that breaks for a moment is asked again when it is back.
+			if (error instanceof UploadFault && !error.problem.again && row.phase !== 'paused')
+				this.#fail(row, error.problem);
 		}
+	}
+
+	#fail(row: UploadRow, problem: UploadProblem): void {
+		if (row.phase === 'elsewhere') this.#take((one) => one === row);
+		else {
+			row.problem = problem;
+			row.phase = 'failed';
+			this.#tell();
+		}
+	}
+
+	#take(isOut: (row: UploadRow) => boolean): void {
+		for (let index = this.#rows.length - 1; index >= 0; index--) {
+			if (isOut(this.#rows[index])) this.#rows.splice(index, 1);
+		}
+	}
+
+	#forget({ file }: UploadRow): void {
+		if (file !== null) this.#door.kept.drop(file).catch(() => {});
+	}
+
+	#tell(): void {
+		clearTimeout(this.#newsTimer);
+		this.#newsTimer = setTimeout(() => (this.news = describeProgress(this.#rows)), this.#newsAfterMs);
 	}
 }
 
-function problemOf(error: unknown): UploadProblem {
-	if (error instanceof UploadFault) return error.problem;
-	return { message: 'The file did not arrive', remedy: 'Check the connection and send it again', again: true };
+/** The same file chosen again: browsers give a new object each time. */
+function isSameFile(one: File, other: File) {
+	return one.name === other.name && one.size === other.size && one.lastModified === other.lastModified;
 }
 
-function pause(ms: number, signal: AbortSignal): Promise<void> {
-	return new Promise((resolve) => {
-		const timer = setTimeout(resolve, ms);
-		signal.addEventListener(
-			'abort',
-			() => {
-				clearTimeout(timer);
-				resolve();
-			},
-			{ once: true }
-		);
-	});
+/** What a person reads of a failure that nobody foresaw. */
+export function problemOf(error: unknown): UploadProblem {
+	return error instanceof UploadFault ? error.problem : LINE_BROKEN;
 }

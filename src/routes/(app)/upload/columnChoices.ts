@@ -1,24 +1,47 @@
+import { z } from 'zod';
 import type { SourceColumn } from '../../../lib/schemas/analysisDocument.ts';
-import type { Channel } from '../../../lib/schemas/channels.ts';
+import type { MappingInput } from '../../../lib/schemas/api.ts';
+import { channelSchema, type Channel } from '../../../lib/schemas/channels.ts';
 import type { ColumnMapping } from '../../../lib/schemas/columnMapping.ts';
+import type { ImportQuestion } from '../../../lib/schemas/importQuestion.ts';
+import { CHANNEL_TEXT } from '../../../lib/texts/channels.ts';
 
 /** Channels that a person can set by hand; the rest is found or not. */
 export const CHOOSABLE = [
 	'time',
-	'lap',
 	'distance',
 	'speed',
 	'brake',
 	'throttle',
 	'steering',
 	'gear',
+	'engineSpeed',
 	'latitude',
 	'longitude',
+	'positionX',
+	'positionY',
 	'accLong',
 	'accLat',
-	'yawRate'
+	'yawRate',
+	'wheelSpeedFl',
+	'wheelSpeedFr',
+	'wheelSpeedRl',
+	'wheelSpeedRr',
+	'lap',
+	'beacon',
+	'lapDistance',
+	'lapTime'
 ] as const satisfies readonly Channel[];
 export type Choosable = (typeof CHOOSABLE)[number];
+
+const choosableSchema = z.enum(CHOOSABLE);
+/** Is it a channel that can be set by hand? */
+export function isChoosable(channel: string | null | undefined): channel is Choosable {
+	return choosableSchema.safeParse(channel).success;
+}
+
+/** By any of these the reader finds laps; where none is chosen, by the place on the circuit. */
+export const LAP_SOURCES = ['lap', 'beacon', 'lapDistance', 'lapTime'] as const satisfies readonly Choosable[];
 
 /** Units that are worth offering; the reader knows more, and finds those by itself. */
 export const UNIT_CHOICES: Partial<Record<Choosable, readonly string[]>> = {
@@ -30,7 +53,15 @@ export const UNIT_CHOICES: Partial<Record<Choosable, readonly string[]>> = {
 	steering: ['deg', 'rad'],
 	accLong: ['m/s²', 'g'],
 	accLat: ['m/s²', 'g'],
-	yawRate: ['rad/s', 'deg/s']
+	yawRate: ['rad/s', 'deg/s'],
+	positionX: ['m', 'km', 'ft'],
+	positionY: ['m', 'km', 'ft'],
+	wheelSpeedFl: ['km/h', 'm/s', 'mph', 'rad/s'],
+	wheelSpeedFr: ['km/h', 'm/s', 'mph', 'rad/s'],
+	wheelSpeedRl: ['km/h', 'm/s', 'mph', 'rad/s'],
+	wheelSpeedRr: ['km/h', 'm/s', 'mph', 'rad/s'],
+	lapDistance: ['m', 'km', 'ft', 'mi'],
+	lapTime: ['s', 'ms', 'min']
 };
 
 export type MappingAnswer =
@@ -42,12 +73,27 @@ export type MappingAnswer =
  * What a person chose in the form of columns, as the reader takes it: an entry for every column that is chosen, left out or was not
  * used before, so that an earlier choice is not lost when another one is added.
  *
- * @param fields `column:<channel>` holds a column's place or "", `unit:<channel>` a unit or ""
+ * @param fields `column:<channel>` holds a column's place or "", `unit:<channel>` a unit or ""; `as:<place>` the channel that a
+ *   column without one is to be, which takes the channel from the column that has it
  * @param columns of the file, in its order, as they are understood now
  */
 export function mappingFromForm(fields: ReadonlyMap<string, string>, columns: readonly SourceColumn[]): MappingAnswer {
 	const channelAt = new Map<number, Choosable>();
+	const taken = new Set<Choosable>();
+	for (const [index] of columns.entries()) {
+		const answer = choosableSchema.safeParse(fields.get(`as:${index}`));
+		if (!answer.success) continue;
+		if (taken.has(answer.data)) {
+			return {
+				mapping: null,
+				problem: `${CHANNEL_TEXT[answer.data]} is chosen for two columns. Choose something else for one of them.`
+			};
+		}
+		taken.add(answer.data);
+		channelAt.set(index, answer.data);
+	}
 	for (const channel of CHOOSABLE) {
+		if (taken.has(channel)) continue;
 		const answer = fields.get(`column:${channel}`) ?? '';
 		if (answer === '') continue;
 		const index = Number(answer);
@@ -62,22 +108,99 @@ export function mappingFromForm(fields: ReadonlyMap<string, string>, columns: re
 		}
 		channelAt.set(index, channel);
 	}
-	if (![...channelAt.values()].includes('time')) {
+	const chosen = new Set(channelAt.values());
+	if (!chosen.has('time') && !chosen.has('lapTime')) {
 		return { mapping: null, problem: 'Time needs a column: without it there is nothing to measure.' };
 	}
-	const choosable = new Set<string>(CHOOSABLE);
 	return {
 		problem: null,
 		mapping: {
 			columns: columns.flatMap((column, index): ColumnMapping['columns'] => {
 				const channel = channelAt.get(index) ?? null;
 				if (channel === null) {
-					const isOurs = column.channel === null || choosable.has(column.channel);
+					const isOurs = column.channel === null || isChoosable(column.channel);
 					return isOurs ? [{ header: column.header, index, channel: null }] : [];
 				}
-				const unit = fields.get(`unit:${channel}`) || (column.channel === channel ? column.unit : '');
+				const said = taken.has(channel) ? undefined : fields.get(`unit:${channel}`);
+				const unit = said || (column.channel === channel ? column.unit : '');
 				return [{ header: column.header, index, channel, ...(unit === '' ? {} : { unit }) }];
 			})
 		}
+	};
+}
+
+/**
+ * What a person answered to the question that the reader had, as it takes it.
+ *
+ * @param fields `as:<place>` holds the channel of a column or "", `unit:<place>` a unit or ""
+ */
+export function mappingFromAnswer(fields: ReadonlyMap<string, string>, question: ImportQuestion): MappingAnswer {
+	const columns: ColumnMapping['columns'] = [];
+	const taken = new Set<Channel>();
+	for (const { header, index } of question.columns) {
+		const answer = channelSchema.safeParse(fields.get(`as:${index}`));
+		const channel = answer.success ? answer.data : null;
+		if (channel !== null && taken.has(channel)) {
+			return {
+				mapping: null,
+				problem: `${CHANNEL_TEXT[channel]} is chosen for two columns. Choose something else for one of them.`
+			};
+		}
+		if (channel !== null) taken.add(channel);
+		const unit = channel === null ? '' : (fields.get(`unit:${index}`) ?? '');
+		columns.push({ header, index, channel, ...(unit === '' ? {} : { unit }) });
+	}
+	const needed = stillNeeded(taken, question);
+	return needed === null ? { mapping: { columns }, problem: null } : { mapping: null, problem: needed };
+}
+
+/** What an answer must still name, as a sentence; null where it is enough. */
+export function stillNeeded(chosen: ReadonlySet<Channel>, { needs }: Pick<ImportQuestion, 'needs'>): string | null {
+	const open = needs.filter((group) => !group.some((channel) => chosen.has(channel)));
+	if (open.length === 0) return null;
+	const words = open.map((group) => {
+		const names = group.map((channel) => CHANNEL_TEXT[channel].toLowerCase());
+		return names.length === 1 ? names[0] : `one of ${names.slice(0, -1).join(', ')} or ${names[names.length - 1]}`;
+	});
+	return `Still needed: ${words.join('; ')}.`;
+}
+
+/** For whom an answer is kept: "no", "me", or an organisation, with its id. */
+export function rememberFromForm(fields: ReadonlyMap<string, string>): Pick<MappingInput, 'remember' | 'organisation'> {
+	const answer = fields.get('remember') ?? 'no';
+	if (!answer.startsWith(ORGANISATION)) return { remember: answer === 'me' ? 'me' : 'no' };
+	return { remember: 'organisation', organisation: answer.slice(ORGANISATION.length) };
+}
+export const ORGANISATION = 'organisation:';
+
+/** What laps are to be counted by: one of the columns, all that the file has, or the place on the circuit. */
+export const lapSourceSchema = z.enum([...LAP_SOURCES, 'all', 'place']);
+export type LapSource = z.infer<typeof lapSourceSchema>;
+
+/**
+ * The mapping with which laps are counted as said. "All" lets the reader look for itself again, so columns that were left out
+ * before come back.
+ *
+ * @param columns of the file, in its order, as they are understood now
+ * @param mapping that holds now
+ */
+export function mappingForLaps(
+	source: LapSource,
+	columns: readonly SourceColumn[],
+	mapping: ColumnMapping | null
+): ColumnMapping | null {
+	const isLapSource = (channel: Channel | null) => LAP_SOURCES.some((one) => one === channel);
+	if (source === 'all') {
+		const kept = mapping?.columns.filter(({ channel }) => channel !== null && !isLapSource(channel)) ?? [];
+		return kept.length > 0 ? { columns: kept } : null;
+	}
+	const hasTime = columns.some(({ channel }) => channel === 'time');
+	return {
+		columns: columns.flatMap(({ header, channel, unit }, index): ColumnMapping['columns'] => {
+			if (channel === null) return [{ header, index, channel: null }];
+			// Time within the lap may be the only time there is.
+			const isLeftOut = isLapSource(channel) && channel !== source && (channel !== 'lapTime' || hasTime);
+			return [{ header, index, channel: isLeftOut ? null : channel, ...(unit === '' || isLeftOut ? {} : { unit }) }];
+		})
 	};
 }
