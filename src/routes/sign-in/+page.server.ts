@@ -8,7 +8,7 @@ export const load = (async ({ parent, url }) => {
 	const { viewer } = await parent();
 	const to = ownPath(url.searchParams.get('redirectTo') ?? '/notebook', url.origin);
 	if (viewer !== null) redirect(303, to);
-	return { to };
+	return { to, isPasswordNew: url.searchParams.get('password') === 'new' };
 }) satisfies PageServerLoad;
 
 export const actions = {

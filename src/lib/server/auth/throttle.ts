@@ -18,6 +18,14 @@ const ACCOUNT: Limit = { name: 'sign-in-account', points: 100, durationS: 60 * 6
 /** Raw uploads of one person. */
 const UPLOADS: Limit = { name: 'upload', points: 200, durationS: 60 * 60 };
 
+/** Letters with a link for one address, from everywhere, and from one place for all: nobody's letter-box is filled through us. */
+const RESETS_OF_ADDRESS: Limit = { name: 'reset-account', points: 5, durationS: 60 * 60 };
+const RESETS_FROM_PLACE: Limit = { name: 'reset-address', points: 30, durationS: 60 * 60 };
+/** Invitations that one person writes. */
+const INVITATIONS: Limit = { name: 'invite', points: 40, durationS: 24 * 60 * 60 };
+/** Accounts made from one place. */
+const ACCOUNTS: Limit = { name: 'join-address', points: 20, durationS: 60 * 60 };
+
 const limiters = new WeakMap<Knex, Map<string, RateLimiterMySQL>>();
 
 function limiterOf(db: Knex, limit: Limit): RateLimiterMySQL {
@@ -88,6 +96,25 @@ export async function forgetTries(db: Knex, email: string, address: string): Pro
 /** Counts an upload. */
 export async function mayUpload(db: Knex, personId: number): Promise<boolean> {
 	return await take(db, UPLOADS, String(personId));
+}
+
+/** Counts a wish for a new password: for the address that it is about, and for the place that it comes from. */
+export async function mayAskForReset(db: Knex, email: string, address: string): Promise<boolean> {
+	const taken = await Promise.all([
+		take(db, RESETS_OF_ADDRESS, keyOf(email)),
+		take(db, RESETS_FROM_PLACE, keyOf(address))
+	]);
+	return taken.every(Boolean);
+}
+
+/** Counts an invitation of a person, sent or sent again. */
+export async function mayInvite(db: Knex, personId: number): Promise<boolean> {
+	return await take(db, INVITATIONS, String(personId));
+}
+
+/** Counts an account that is made from a place. */
+export async function mayMakeAccount(db: Knex, address: string): Promise<boolean> {
+	return await take(db, ACCOUNTS, keyOf(address));
 }
 
 /** Removes counters that ran out. */

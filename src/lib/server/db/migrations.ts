@@ -48,6 +48,7 @@ import * as m409 from '../../../../migrations/20261201000409_create_in_tray_mark
 import * as m410 from '../../../../migrations/20261201000410_date_focus_points.ts';
 import * as m301 from '../../../../migrations/20261201000301_create_mail_log.ts';
 import * as m302 from '../../../../migrations/20261201000302_create_mail_choices.ts';
+import * as m303 from '../../../../migrations/20261201000303_create_password_resets.ts';
 import * as m201 from '../../../../migrations/20261201181001_add_metrics_of_causes.ts';
 
 interface Migration {
@@ -108,6 +109,7 @@ export const migrations: readonly (readonly [name: string, migration: Migration]
 	['20261201000410_date_focus_points.ts', m410],
 	['20261201000301_create_mail_log.ts', m301],
 	['20261201000302_create_mail_choices.ts', m302],
+	['20261201000303_create_password_resets.ts', m303],
 	['20261201181001_add_metrics_of_causes.ts', m201]
 ];
 

@@ -9,6 +9,8 @@ const RAW_UPLOAD_PATH = '/api/v1/uploads';
 const PIECES_PATH = '/api/v1/uploads/resumable';
 const PIECE_TYPE = 'application/offset+octet-stream';
 /** A file as a form, from a browser without script, is held in memory. */
+/** A mail program's one click (RFC 8058) comes from anywhere, without cookie and Origin; its signed token says all. */
+const ONE_CLICK_ROUTE = '/unsubscribe/[token]';
 const FORM_UPLOAD_PATH = '/upload';
 const LARGEST_FORM_UPLOAD_BYTES = 32 * 1024 * 1024;
 
@@ -21,7 +23,8 @@ const LARGEST_FORM_UPLOAD_BYTES = 32 * 1024 * 1024;
 export const guardRequest: Handle = async ({ event, resolve }) => {
 	const { request } = event;
 	if (!SAFE_METHODS.has(request.method)) {
-		if (!hasBearer(event) && request.headers.get('origin') !== event.url.origin) {
+		const isForAnybody = event.route.id === ONE_CLICK_ROUTE;
+		if (!hasBearer(event) && !isForAnybody && request.headers.get('origin') !== event.url.origin) {
 			return problemResponse({
 				status: 403,
 				code: 'foreign_origin',

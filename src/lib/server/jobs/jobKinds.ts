@@ -13,10 +13,12 @@ export const jobPayloadSchemas = {
 	reanalyse: z.object({}),
 	/** send a letter of the mail log */
 	sendMail: z.object({ mailId: z.number().int() }),
+	/** write the letter by which a person chooses a new password; null where nobody has the address that was given */
+	writeReset: z.object({ personId: z.number().int().nullable() }),
 	/** tidy up: writes that never ended, counters and sessions that ran out */
 	sweep: z.object({})
 };
 
 export type JobKind = keyof typeof jobPayloadSchemas;
 export type JobPayload<Kind extends JobKind> = z.infer<(typeof jobPayloadSchemas)[Kind]>;
-export const JOB_KINDS: readonly JobKind[] = ['importRun', 'reanalyse', 'sendMail', 'sweep'];
+export const JOB_KINDS: readonly JobKind[] = ['importRun', 'reanalyse', 'sendMail', 'sweep', 'writeReset'];

@@ -4,6 +4,7 @@ import { faultOf, logger } from '../logger.ts';
 import type { AnalysisPool } from '../importing/analysisPool.ts';
 import { sendMail } from '../mail/sendMail.ts';
 import { giveUpImport, importRun } from '../services/importRun.ts';
+import { writeReset } from '../services/resetByMail.ts';
 import type { RawStore } from '../storage/rawStore.ts';
 import { jobPayloadSchemas } from './jobKinds.ts';
 import {
@@ -157,6 +158,7 @@ export class JobRunner {
 			return;
 		}
 		if (job.kind === 'sendMail') return await sendMail(db, job, jobPayloadSchemas.sendMail.parse(job.payload));
+		if (job.kind === 'writeReset') return await writeReset(db, job, jobPayloadSchemas.writeReset.parse(job.payload));
 		await sweep(db, store, new Date());
 		await finish(db, job);
 		await enqueue(db, 'sweep', {}, { uniqueKey: 'sweep', delayS: SWEEP_EVERY_S });
