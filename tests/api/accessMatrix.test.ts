@@ -68,7 +68,7 @@ const READERS: readonly Actor[] = [
 const KEEPERS: readonly Actor[] = ['owner', 'guardian'];
 
 /** Who is let in; everybody else reads that nothing is there. */
-type Access = 'everybody' | 'signed in' | 'reads the run' | 'keeps the run';
+type Access = 'everybody' | 'signed in' | 'runs the site' | 'reads the run' | 'keeps the run';
 type Scope = 'laps:read' | 'uploads:write' | 'runs:write';
 
 interface Entry {
@@ -128,6 +128,23 @@ const ENTRIES: Record<string, Record<string, Entry>> = {
 			request: () => form({ email: `${randomUUID()}@example.org`, password: 'x', providerId: 'credentials' }),
 			ok: 401
 		}
+	},
+	'/reset': {
+		GET: { access: 'everybody', path: () => '/reset', ok: 200 },
+		POST: { access: 'everybody', path: () => '/reset', request: () => form({ email: 'nowhere' }), ok: 400 }
+	},
+	// A link that nobody was sent: whoever holds one needs no sign-in.
+	'/reset/[token]': {
+		GET: { access: 'everybody', path: () => '/reset/none', ok: 200 },
+		POST: { access: 'everybody', path: () => '/reset/none', request: () => form({ password: 'four pears, eaten' }), ok: 410 }
+	},
+	'/unsubscribe/[token]': {
+		GET: { access: 'everybody', path: () => '/unsubscribe/none', ok: 404 },
+		POST: { access: 'everybody', path: () => '/unsubscribe/none', request: () => form({}), ok: 404 }
+	},
+	'/(app)/admin/outbox': { GET: { access: 'runs the site', path: () => '/admin/outbox', ok: 200 } },
+	'/(app)/admin/outbox/[letter]': {
+		GET: { access: 'runs the site', path: ({ runPublicId: id }) => `/admin/outbox/${id}`, ok: 404 }
 	},
 	'/sign-out': {
 		GET: { access: 'everybody', path: () => '/sign-out', ok: 200 },
@@ -447,6 +464,7 @@ function expected(actor: Actor, routeId: string, operation: string, entry: Entry
 		return scopes.includes(entry.scope ?? '') ? entry.ok : 403;
 	}
 	if (entry.access === 'signed in') return entry.ok;
+	if (entry.access === 'runs the site') return actor === 'site operator' ? entry.ok : 404;
 	return (entry.access === 'reads the run' ? READERS : KEEPERS).includes(actor) ? entry.ok : 404;
 }
 
