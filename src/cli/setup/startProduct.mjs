@@ -35,9 +35,10 @@ const sayAside = (line) => console.error(line);
 /**
  * `npm start`: everything from a fresh clone to a served page, then watches until it is asked to stop.
  * `npm run dev`: the same from the sources, with pages that follow each change.
+ * `npm run worker`: the same preparation, then one more worker on the same database, on this machine or another.
  * `npm run admin -- …`: the same preparation, then one command instead of the server.
  *
- * @param {string[]} args  [], ['dev'] or ['admin', …]
+ * @param {string[]} args  [], ['dev'], ['worker'] or ['admin', …]
  * @returns {Promise<number>} exit code: 0 after a requested stop, 1 after a failure
  */
 export async function main(args) {
@@ -47,6 +48,7 @@ export async function main(args) {
 	try {
 		const [command, ...rest] = args;
 		if (command === 'admin') return await runAdmin(rest, closing);
+		if (rest.length === 0 && command === 'worker') return await runWorker(stop, closing);
 		if (rest.length === 0 && command === undefined) return await serve('built', stop, closing);
 		if (rest.length === 0 && command === 'dev') return await serve('source', stop, closing);
 		throw new SetupError(
@@ -169,6 +171,26 @@ async function prepare({ way, closing, say, check }) {
 	const [database] = await together([startDatabase(), installAndBuild({ root: ROOT, build, say, check })]);
 	check?.();
 	return { database, demo: external ? process.env.KERBNOTE_DEMO === '1' : process.env.KERBNOTE_DEMO !== '0' };
+}
+
+/**
+ * @param {import('./stopRequest.mjs').StopWatch} stop
+ * @param {Array<() => unknown>} closing
+ * @returns {Promise<number>}
+ */
+async function runWorker(stop, closing) {
+	checkRoom(ROOT, folders);
+	const { database } = await prepare({ way: 'built', closing, say, check: stop.check });
+	const { build } = folders;
+	const env = productEnvironment({ folders, databaseUrl: database.url, demo: false });
+	await migrateAndSeed({ env, demo: false, way: 'built', build, database: databaseName(), say });
+	stop.check();
+	const logFile = join(folders.logs, `worker-${process.pid}.log`);
+	const args = programArguments('worker', 'built', build);
+	const worker = startService({ name: 'worker', args, cwd: ROOT, env, logFile });
+	closing.push(worker.stop);
+	say(`A worker runs; its log is ${relative(ROOT, logFile)}.`);
+	return watch([worker, database], stop);
 }
 
 /**
