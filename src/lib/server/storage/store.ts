@@ -1,7 +1,7 @@
 import { environment, type Environment } from '../environment.ts';
+import { LaterStore } from './laterStore.ts';
 import { LocalRawStore } from './localRawStore.ts';
 import type { RawStore } from './rawStore.ts';
-import { S3RawStore } from './s3RawStore.ts';
 
 let shared: RawStore | undefined;
 
@@ -16,12 +16,15 @@ function storeOf(settings: Environment): RawStore {
 	if (!KERBNOTE_S3_ENDPOINT || !KERBNOTE_S3_BUCKET || !KERBNOTE_S3_KEY || !KERBNOTE_S3_SECRET) {
 		return new LocalRawStore(settings.KERBNOTE_STORAGE);
 	}
-	return new S3RawStore({
-		endpoint: KERBNOTE_S3_ENDPOINT,
-		bucket: KERBNOTE_S3_BUCKET,
-		region: KERBNOTE_S3_REGION,
-		key: KERBNOTE_S3_KEY,
-		secret: KERBNOTE_S3_SECRET
+	return new LaterStore(async () => {
+		const { S3RawStore } = await import('./s3RawStore.ts');
+		return new S3RawStore({
+			endpoint: KERBNOTE_S3_ENDPOINT,
+			bucket: KERBNOTE_S3_BUCKET,
+			region: KERBNOTE_S3_REGION,
+			key: KERBNOTE_S3_KEY,
+			secret: KERBNOTE_S3_SECRET
+		});
 	});
 }
 
