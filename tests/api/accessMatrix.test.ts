@@ -197,6 +197,62 @@ const ENTRIES: Record<string, Record<string, Entry>> = {
 			path: ({ uploadPublicId }) => `/upload/${uploadPublicId}?/columns`,
 			request: () => form({}),
 			ok: 400
+		},
+		// There is no question to be answered.
+		'POST ?/answer': {
+			access: 'keeps the run',
+			path: ({ uploadPublicId }) => `/upload/${uploadPublicId}?/answer`,
+			request: () => form({}),
+			ok: 400
+		},
+		'POST ?/laps': {
+			access: 'keeps the run',
+			path: ({ uploadPublicId }) => `/upload/${uploadPublicId}?/laps`,
+			request: () => form({ source: 'all' }),
+			ok: 303
+		},
+		'POST ?/forget': {
+			access: 'keeps the run',
+			path: ({ uploadPublicId }) => `/upload/${uploadPublicId}?/forget`,
+			request: () => form({}),
+			ok: 303
+		},
+		'POST ?/again': {
+			access: 'keeps the run',
+			path: ({ uploadPublicId }) => `/upload/${uploadPublicId}?/again`,
+			request: () => form({}),
+			ok: 303
+		}
+	},
+	'/(app)/upload/deleted': {
+		GET: { access: 'signed in', path: () => '/upload/deleted', ok: 200 },
+		'POST ?/deleteUpload': {
+			access: 'keeps the run',
+			path: () => '/upload/deleted?/deleteUpload',
+			request: ({ uploadPublicId: id }) => form({ id }),
+			ok: 303
+		},
+		'POST ?/restoreUpload': {
+			access: 'keeps the run',
+			path: () => '/upload/deleted?/restoreUpload',
+			request: ({ uploadPublicId: id }) => form({ id }),
+			ok: 200
+		},
+		'POST ?/restoreRun': {
+			access: 'keeps the run',
+			path: () => '/upload/deleted?/restoreRun',
+			request: ({ runPublicId: id }) => form({ id }),
+			ok: 200
+		}
+	},
+	'/(app)/runs/check': {
+		// Runs that are not the reader's to change are left out.
+		GET: { access: 'signed in', path: ({ runPublicId }) => `/runs/check?runs=${runPublicId}`, ok: 200 },
+		'POST ?/save': {
+			access: 'keeps the run',
+			path: () => '/runs/check?/save',
+			request: ({ runPublicId: id, layoutPublicId: layout }) => form({ id, layout, startedAt: '', car: '' }),
+			ok: 200
 		}
 	},
 	'/(app)/settings': {
