@@ -136,7 +136,12 @@ const ENTRIES: Record<string, Record<string, Entry>> = {
 	// A link that nobody was sent: whoever holds one needs no sign-in.
 	'/reset/[token]': {
 		GET: { access: 'everybody', path: () => '/reset/none', ok: 200 },
-		POST: { access: 'everybody', path: () => '/reset/none', request: () => form({ password: 'four pears, eaten' }), ok: 410 }
+		POST: {
+			access: 'everybody',
+			path: () => '/reset/none',
+			request: () => form({ password: 'four pears, eaten' }),
+			ok: 410
+		}
 	},
 	'/unsubscribe/[token]': {
 		GET: { access: 'everybody', path: () => '/unsubscribe/none', ok: 404 },
