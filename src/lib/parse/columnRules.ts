@@ -110,7 +110,11 @@ export const RULES: readonly Rule[] = [
 		without: ['speed', 'pressure'],
 		dimensions: ['count']
 	},
-	{ channel: 'engineSpeed', needs: [['engine'], ['speed', 'revolutions']], dimensions: ['angularVelocity', 'count'] },
+	{
+		channel: 'engineSpeed',
+		needs: [['engine'], ['speed', 'revolutions', 'number']],
+		dimensions: ['angularVelocity', 'count']
+	},
 	{
 		channel: 'engineSpeed',
 		needs: [['revolutions']],

@@ -93,7 +93,7 @@ const ROWS: readonly Row[] = [
 		'1/min',
 		'angularVelocity',
 		(2 * Math.PI) / 60,
-		'1/min rpm r/min rev/min revs/min u/min min-1 min^-1 min⁻¹ tr/min giri/min g/min rev.min-1 1/mn /min 回転/分'
+		'1/min rpm r/min rev/min revs/min u/min min-1 min^-1 min⁻¹ tr/min giri/min obr/min obr./min omw/min g/min rev.min-1 1/mn /min 回転/分'
 	],
 	['raw counts', 'count', 1, 'raw count counts cnt adc lsb bit bits digits raw_counts rawcounts'],
 	['switch', 'count', 1, 'switch bool boolean on/off 0/1 flag'],

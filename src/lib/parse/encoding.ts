@@ -1,6 +1,15 @@
 import { KerbnoteError } from '../schemas/kerbnoteError.ts';
 
-export type Encoding = 'utf-8' | 'utf-16le' | 'utf-16be' | 'shift_jis' | 'windows-1252' | 'latin-1';
+export type Encoding =
+	| 'utf-8'
+	| 'utf-16le'
+	| 'utf-16be'
+	| 'shift_jis'
+	| 'euc-jp'
+	| 'windows-1250'
+	| 'iso-8859-2'
+	| 'windows-1252'
+	| 'latin-1';
 
 export interface DetectedEncoding {
 	encoding: Encoding;
@@ -16,8 +25,8 @@ export function decoderLabel(encoding: Encoding): string {
 }
 
 /**
- * Tells the encoding from the first bytes: byte order mark, the null pattern of UTF-16, valid UTF-8, then Shift-JIS against
- * Western single bytes. In Shift-JIS most bytes beyond ASCII are lead bytes 0x81–0x9F followed by a valid trail byte, a range
+ * Tells the encoding from the first bytes: byte order mark, the null pattern of UTF-16, valid UTF-8, then Japanese
+ * and Central European against Western single bytes. In Shift-JIS most bytes beyond ASCII are lead bytes 0x81–0x9F followed by a valid trail byte, a range
  * that Western text leaves nearly empty.
  *
  * @throws {KerbnoteError} `unknown_encoding` for UTF-32
@@ -80,5 +89,38 @@ function singleOrShiftJis(head: Uint8Array): Encoding {
 		} else if (byte === 0x80 || byte > 0xdf) broken++;
 	}
 	if (broken === 0 && pairs >= 2 && pairs * 4 >= high) return 'shift_jis';
-	return control > 0 ? 'windows-1252' : 'latin-1';
+	if (isEucJp(head)) return 'euc-jp';
+	return centralEuropean(head) ?? (control > 0 ? 'windows-1252' : 'latin-1');
+}
+
+/** In EUC-JP letters beyond ASCII are pairs of bytes from 0xA1 on; Western accents mostly stand alone. */
+function isEucJp(head: Uint8Array): boolean {
+	let pairs = 0;
+	for (let i = 0; i < head.length; i++) {
+		if (head[i] < 0x80) continue;
+		if (i + 1 === head.length) break;
+		if (head[i] < 0xa1 || head[i] === 0xff || head[i + 1] < 0xa1 || head[i + 1] === 0xff) return false;
+		pairs++;
+		i++;
+	}
+	return pairs >= 4;
+}
+
+/** ł, ą, ż, ź of Windows-1250, which are ³ ¹ ¿ Ÿ in the West and never stand inside a word there. */
+const WITHIN_1250 = new Set([0xb3, 0xb9, 0xbf, 0x9f]);
+/** ą, ś, ź of ISO 8859-2: ± ¶ ¼ in the West. */
+const WITHIN_8859_2 = new Set([0xb1, 0xb6, 0xbc]);
+
+/** Central European text by letters that make no sense within a Western word; null where there are none. */
+function centralEuropean(head: Uint8Array): Encoding | null {
+	const isLetter = (byte: number | undefined) => byte !== undefined && /[a-z]/i.test(String.fromCharCode(byte));
+	let [windows, iso] = [0, 0];
+	for (let i = 1; i < head.length; i++) {
+		// A power stands behind its unit (m³), a letter before the next one.
+		if (!isLetter(head[i + 1]) && !(isLetter(head[i - 1]) && isLetter(head[i - 2]))) continue;
+		if (WITHIN_1250.has(head[i])) windows++;
+		else if (WITHIN_8859_2.has(head[i])) iso++;
+	}
+	if (windows === 0 && iso === 0) return null;
+	return iso > windows ? 'iso-8859-2' : 'windows-1250';
 }

@@ -59,6 +59,7 @@ export function readHeaderText(header: string): HeaderText {
 		.replace(/[\u0300-\u036f]/g, '')
 		.normalize('NFC')
 		.replace(/ß/g, 'ss')
+		.replace(/ł/g, 'l')
 		.replace(/[^\p{L}\p{N}#%°]+/gu, ' ')
 		.trim();
 	return { words, units };

@@ -48,7 +48,7 @@ export function planColumns(table: Table, mapping?: ColumnMapping): ColumnPlan[]
 		const set = mapping?.columns.find(
 			(entry) => entry.header === header && (entry.index === undefined || entry.index === column)
 		);
-		const { channel, unit, confidence } = recogniseColumn(header, table.units[column]);
+		const { channel, unit, confidence } = recogniseColumn(header, table.units[column] || unitInCells(cells));
 		const samples = cells
 			.filter((cell) => cell.trim() !== '')
 			.slice(0, MAX_SAMPLES)
@@ -72,6 +72,14 @@ export function planColumns(table: Table, mapping?: ColumnMapping): ColumnPlan[]
 		return readForm(plan, cells, table.decimal);
 	});
 	return chooseOnePerChannel(plans, table);
+}
+
+/** The unit that stands behind every number of a column ("54.7 mph"); empty where there is none. */
+function unitInCells(cells: readonly string[]): string {
+	const first = cells.find((cell) => cell.trim() !== '')?.trim() ?? '';
+	const unit = /^[+-]?[\d.,]{1,20} ?([%°a-zµ][a-zµ²0-9/]{0,8})$/i.exec(first)?.[1] ?? '';
+	if (unit === '' || /^e/i.test(unit)) return '';
+	return cells.every((cell) => cell.trim() === '' || cell.trim().endsWith(unit)) ? unit : '';
 }
 
 function readForm(plan: ColumnPlan, cells: readonly string[], decimal: '.' | ','): ColumnPlan {
