@@ -12,12 +12,11 @@ import type { ProblemCode } from '../../../schemas/api.ts';
 import { rawStore, storageKeyOf } from '../../storage/store.ts';
 import { cleanName, countUpload, problemOfWrite } from '../receiveUpload.ts';
 import type { Settled } from '../settleReceived.ts';
+import { RESUMABLE_PATH } from './askToComeBack.ts';
 import { finishResumable, RESUMABLE_COLUMNS, type ResumableRow } from './finishResumable.ts';
 import { PartStore } from './partStore.ts';
 import { SharedLocker } from './sharedLocker.ts';
 
-/** The route that speaks the protocol; an upload's id follows. */
-export const RESUMABLE_PATH = '/api/v1/uploads/resumable';
 /** How often a file that comes in says how far it is. */
 const REPORT_EVERY_MS = 1_000;
 
