@@ -6,6 +6,7 @@ import { exampleComparison } from '$lib/view/example/exampleComparison';
 import { exampleSource } from './exampleSource';
 import { lapTraceSource } from './lapTraceSource';
 import { placeOnLap, readAloud, readoutValue } from './readoutText';
+import { rowPath, rowViewBox } from './rowPaths';
 import { trackPoint, trackPoints } from './trackPoint';
 
 const view = exampleComparison();
@@ -69,6 +70,23 @@ describe('lapTraceSource', () => {
 		expect(traces.driver.brake).toBeNull();
 	});
 
+	it('fetches the run’s further laps only when they are asked for, on the driver’s scale of brake', async () => {
+		const asked: string[] = [];
+		const counting: typeof fetch = (input) => {
+			asked.push(String(input));
+			return request(input);
+		};
+		const others = [{ id: 'mine', number: 3 }];
+		const source = lapTraceSource({ ...pair, brakeScale: { driver: 0.5, reference: 1 }, others }, card, counting);
+		expect(source.others?.numbers).toEqual([3]);
+		const { driver } = await source.load(leaving);
+		expect(asked).toHaveLength(2);
+		const laps = await source.others?.load(leaving);
+		expect(asked).toHaveLength(3);
+		expect(laps?.[0].number).toBe(3);
+		expect(laps?.[0].columns.brake).toEqual(driver.brake);
+	});
+
 	it('refuses an answer that is none', async () => {
 		const refused: typeof fetch = () => Promise.resolve(new Response('', { status: 404 }));
 		await expect(lapTraceSource(pair, card, refused).load(leaving)).rejects.toThrow(/got 404/);
@@ -94,6 +112,22 @@ describe('trackPoint', () => {
 	it('knows the direction, for the line across', () => {
 		const at = trackPoint(track, points, 58);
 		expect([at?.directionX, at?.directionY]).toEqual([1, 0]);
+	});
+});
+
+describe('rowPath', () => {
+	const row = { domain: [0, 100] as [number, number], heightPx: 100 };
+
+	it('draws a range of the values across the whole width', () => {
+		const ramp = Array.from({ length: 101 }, (_, i) => i);
+		expect(rowPath(ramp, 400, { fromM: 400, toM: 500 }, row)).toBe('M0 1000l10000-1000');
+		expect(rowPath(ramp, 400, { fromM: 450, toM: 500 }, row)).toBe('M0 500l10000-500');
+	});
+	it('is empty for an absent channel', () => {
+		expect(rowPath(null, 400, { fromM: 400, toM: 500 }, row)).toBe('');
+	});
+	it('shows a piece of a drawing as wide as the window through its box', () => {
+		expect(rowViewBox({ fromM: 450, toM: 475 }, { fromM: 400, toM: 500 }, 56)).toBe('5000 0 2500 560');
 	});
 });
 

@@ -1,12 +1,13 @@
 import { UNITS_PER_PX } from './geometry/units.ts';
 import { line } from 'd3-shape';
 import { deltaWord, formatDelta, type DeltaWord } from '../format/delta.ts';
+import type { ReferencePath } from '../analysis/model.ts';
 import type { ComparisonView } from '../schemas/views.ts';
 import { cornerCall } from './cornerTitle.ts';
 import { CompactPath } from './geometry/CompactPath.ts';
-import { pathPoint } from './geometry/pathPoint.ts';
+import { pathPoint, type PathPoint } from './geometry/pathPoint.ts';
 import { placeLabel, type Box } from './geometry/placeLabel.ts';
-import { planFrame } from './geometry/planFrame.ts';
+import { planFrame, type PlanFrame } from './geometry/planFrame.ts';
 import { handAt } from './planLines.ts';
 
 /** The layout from above, north up, each corner's number as large as what it cost. */
@@ -44,14 +45,34 @@ const RING_PX = 22;
 /** A figure leads to its card, so that each keeps the room of a target for itself. */
 const TARGET_PX = 26;
 
+/** Places along the layout in the plan's px, for a cursor that runs through it. */
+export interface CircuitTrack {
+	stepM: number;
+	/** x and y in turn */
+	points: number[];
+}
+
+/** @returns null where the layout has no shape (speed only) */
+export function circuitTrack({ path }: Pick<ComparisonView, 'path'>): CircuitTrack | null {
+	if (path.origin === 'speedOnly') return null;
+	const { points, frame } = framed(path);
+	const every = 2;
+	const placed = points.filter((_, i) => i % every === 0).map(({ x, y }) => frame.place(x, y));
+	return { stepM: STEP_M * every, points: placed.flat().map(Math.round) };
+}
+
+/** Points of the layout every STEP_M metres and the frame that they fill. */
+function framed(path: ReferencePath): { points: PathPoint[]; frame: PlanFrame } {
+	const points: PathPoint[] = [];
+	for (let s = 0; s < path.lengthM; s += STEP_M) points.push(pathPoint(path, s));
+	return { points, frame: planFrame({ points, rotation: 0, ...SIZE, padding: PADDING, mostPxPerM: 2 }) };
+}
+
 /** @returns null where the layout has no shape (speed only) */
 export function circuitPlan(view: ComparisonView): CircuitPlan | null {
 	const { path, comparison, corners } = view;
 	if (path.origin === 'speedOnly') return null;
-	const places: number[] = [];
-	for (let s = 0; s < path.lengthM; s += STEP_M) places.push(s);
-	const points = places.map((s) => pathPoint(path, s));
-	const frame = planFrame({ points, rotation: 0, ...SIZE, padding: PADDING, mostPxPerM: 2 });
+	const { points, frame } = framed(path);
 	const drawn = points.map((p) => frame.place(p.x, p.y));
 	const outline = new CompactPath();
 	line<[number, number]>(

@@ -10,6 +10,7 @@ import { cornerCall } from './cornerTitle.ts';
 import { gapInWords, type GapInWords } from './gapInWords.ts';
 import { driverLabel, referenceLabel, type LapLabel } from './lapLabels.ts';
 import { ledgerView, type LedgerView } from './ledgerView.ts';
+import { linkedGroups, type LinkedGroup } from './linkedGroups.ts';
 import { miniCard, type MiniCard } from './miniCard.ts';
 
 export interface CompareOptions {
@@ -27,6 +28,8 @@ export interface ComparePage {
 	fairness: Fairness[];
 	ledger: LedgerView;
 	circuit: CircuitPlan | null;
+	/** corners that lead into each other, in lap order */
+	linked: LinkedGroup[];
 	/** in lap order */
 	cards: MiniCard[];
 	/** corner numbers, worst first */
@@ -79,6 +82,7 @@ export function comparePage(view: ComparisonView, { speedUnit = 'kmh', date }: C
 		fairness: view.fairness,
 		ledger: ledgerView(comparison, view.corners),
 		circuit: circuitPlan(view),
+		linked: linkedGroups(view),
 		cards: rows.map((row) => miniCard(view, row.corner, domain)).filter((card) => card !== null),
 		groups: {
 			lost: group(lost),

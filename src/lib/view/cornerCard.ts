@@ -168,9 +168,13 @@ export function cornerCard(view: ComparisonView, number: number, options: CardOp
 	};
 }
 
-interface Chart {
-	view: ComparisonView;
+interface Chart extends Read {
 	window: CornerWindow;
+}
+
+/** What a reading at a place needs. */
+interface Read {
+	view: ComparisonView;
 	rows: TraceRow[];
 	speedUnit: SpeedUnit;
 }
@@ -241,7 +245,8 @@ function cursorPlace(tags: EvidenceTag[], places: PlacedCorner, window: CornerWi
 	return Math.min(window.toM, Math.max(window.fromM, atM));
 }
 
-function readingAt({ view, rows, speedUnit }: Chart, placeM: number, zeroM: number): CursorReading {
+/** What both laps have at a place, in the units of the rows; Δ counts from `zeroM`. */
+export function readingAt({ view, rows, speedUnit }: Read, placeM: number, zeroM: number): CursorReading {
 	const known = (value: number): number | null => (Number.isFinite(value) ? Math.round(value * 1000) / 1000 : null);
 	const read = (grid: ComparisonView['driverGrid']): CursorReading['driver'] => {
 		const values: CursorReading['driver'] = { brake: null, speed: null, throttle: null, steering: null };

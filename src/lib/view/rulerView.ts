@@ -14,37 +14,43 @@ export interface RulerView {
 	marks: RulerMark[];
 }
 
-/** A tick: its unwrapped place, its place on the lap, and how strong it is: 1 every 5 m, 2 every 10, 3 where a number stands. */
+/** A tick: its unwrapped place, its place on the lap, and how strong it is: in a corner 1 every 5 m, 2 every 10, 3 where a number stands. */
 export interface RulerTick {
 	atM: number;
 	onLapM: number;
 	size: 1 | 2 | 3;
 }
 
-/** Numbers stand every 50 m; a short window, as in a kart, needs them closer. */
-const NUMBERED = [
-	{ fromWindowM: 130, everyM: 50 },
-	{ fromWindowM: 60, everyM: 20 }
+/** Numbers stand every 50 m; a short window, as in a kart, needs them closer, and a whole lap further apart. m each. */
+const STEPS = [
+	{ fromWindowM: 2500, numbered: 500, middle: 100, least: 50 },
+	{ fromWindowM: 1000, numbered: 200, middle: 100, least: 20 },
+	{ fromWindowM: 450, numbered: 100, middle: 50, least: 10 },
+	{ fromWindowM: 130, numbered: 50, middle: 10, least: 5 },
+	{ fromWindowM: 60, numbered: 20, middle: 10, least: 5 },
+	{ fromWindowM: 0, numbered: 10, middle: 10, least: 5 }
 ];
 
 const TICK_PX = { 1: 3.5, 2: 6, 3: 9 };
 
 /**
- * Ticks every 5 m within a window, counted from each crossing of the line, so that the numbers stay round where a corner spans it.
+ * Ticks within a window, every 5 m in a corner, counted from each crossing of the line, so that the numbers stay round where a corner spans it.
  */
 export function rulerTicks({ fromM, toM, lengthM, closed }: RulerSpan): RulerTick[] {
 	const ticks: RulerTick[] = [];
-	const numberedM = NUMBERED.find(({ fromWindowM }) => toM - fromM >= fromWindowM)?.everyM ?? 10;
+	const { numbered, middle, least } =
+		STEPS.find(({ fromWindowM }) => toM - fromM >= fromWindowM) ?? STEPS[STEPS.length - 1];
 	const turns = closed ? [Math.floor(fromM / lengthM), Math.floor(toM / lengthM)] : [0, 0];
 	for (let turn = turns[0]; turn <= turns[1]; turn++) {
 		const origin = turn * lengthM;
 		const last = closed ? lengthM - 2 : Infinity;
 		for (
-			let onLapM = Math.max(0, Math.ceil((fromM - origin) / 5) * 5);
+			let onLapM = Math.max(0, Math.ceil((fromM - origin) / least) * least);
 			origin + onLapM <= toM && onLapM <= last;
-			onLapM += 5
+			onLapM += least
 		) {
-			ticks.push({ atM: origin + onLapM, onLapM, size: onLapM % numberedM === 0 ? 3 : onLapM % 10 === 0 ? 2 : 1 });
+			const size = onLapM % numbered === 0 ? 3 : onLapM % middle === 0 ? 2 : 1;
+			ticks.push({ atM: origin + onLapM, onLapM, size });
 		}
 	}
 	return ticks;

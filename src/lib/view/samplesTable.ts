@@ -6,14 +6,16 @@ import { deltaAt, gridValue, type GridColumn } from './gridValue.ts';
 import type { CornerWindow } from './cornerWindow.ts';
 import { rulerTicks } from './rulerView.ts';
 
-/** The charts as numbers: one row every 10 m, for both laps. */
+/** The charts as numbers: one row every 10 m of a corner, for both laps. */
 export interface SamplesTable {
+	/** m between rows */
+	everyM: number;
 	/** channel names with units, in order; Δ is always last */
 	columns: { key: string; name: string }[];
 	rows: { place: string; cells: { driver: string; reference: string }[]; delta: string }[];
 }
 
-/** Reads both grids every 10 m of the window; channels that neither lap has are left out. */
+/** Reads both grids at the ruler's longer ticks, every 10 m in a corner; channels that neither lap has are left out. */
 export function samplesTable(
 	view: ComparisonView,
 	window: CornerWindow,
@@ -31,7 +33,8 @@ export function samplesTable(
 	const zero = deltaAt(driverGrid, referenceGrid, zeroM);
 	const rows: SamplesTable['rows'] = [];
 	const ticks = rulerTicks({ ...window, lengthM: path.lengthM, closed: path.closed });
-	for (const { atM: placeM, onLapM } of ticks.filter((tick) => tick.size > 1)) {
+	const shown = ticks.filter((tick) => tick.size > 1);
+	for (const { atM: placeM, onLapM } of shown) {
 		const say = (key: GridColumn, value: number): string =>
 			formatNumber(key === 'speedKmh' ? speedIn(value, speedUnit) : value);
 		rows.push({
@@ -43,5 +46,6 @@ export function samplesTable(
 			delta: formatSignedSeconds(deltaAt(driverGrid, referenceGrid, placeM) - zero)
 		});
 	}
-	return { columns, rows };
+	const [first, second] = shown;
+	return { everyM: second ? second.onLapM - first.onLapM : 0, columns, rows };
 }

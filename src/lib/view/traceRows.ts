@@ -32,6 +32,10 @@ export interface TraceInput {
 	fromM: number;
 	toM: number;
 	speedUnit: SpeedUnit;
+	/** of the rows, px; a card's unless told otherwise */
+	heightsPx?: Record<RowKey, number>;
+	/** units to a pixel column, where points exceed pixels: see tracePath */
+	columnUnits?: number;
 }
 
 const CHANNELS: Record<RowKey, { name: string; column: GridColumn; heightPx: number; said: string }> = {
@@ -51,7 +55,8 @@ export function traceRows(input: TraceInput): TraceRow[] {
 }
 
 function traceRow(key: RowKey, input: TraceInput): TraceRow {
-	const { name, column, heightPx, said } = CHANNELS[key];
+	const { name, column, said } = CHANNELS[key];
+	const heightPx = input.heightsPx?.[key] ?? CHANNELS[key].heightPx;
 	const placesM = metresBetween(input.fromM, input.toM);
 	const read = (grid: LapGrid): number[] => {
 		const values = placesM.map((placeM) => gridValue(grid, column, placeM));
@@ -62,7 +67,7 @@ function traceRow(key: RowKey, input: TraceInput): TraceRow {
 	const { domain, ticks } = rowScale(key, [...driver, ...reference].filter(Number.isFinite));
 	const x = scaleLinear([input.fromM, input.toM], [0, WIDTH_UNITS]);
 	const y = scaleLinear(domain, [heightPx * UNITS_PER_PX, 0]);
-	const path = (values: number[]): string => tracePath({ placesM, values, x, y });
+	const path = (values: number[]): string => tracePath({ placesM, values, x, y, columnUnits: input.columnUnits });
 	return {
 		key,
 		name,

@@ -2,6 +2,7 @@ import { afterEach, describe, expect, it, vi } from 'vitest';
 import { page, userEvent } from 'vitest/browser';
 import { render } from 'vitest-browser-svelte';
 import '../../../app.css';
+import { formatDelta } from '$lib/format/delta';
 import { formatUnit } from '$lib/format/unit';
 import { cornerCard, type CornerCard as Card } from '$lib/view/cornerCard';
 import { exampleComparison } from '$lib/view/example/exampleComparison';
@@ -99,7 +100,7 @@ describe('the cursor', () => {
 
 	it('is read aloud when it rests, once', async () => {
 		const { container } = await show();
-		const aloud = () => container.querySelector('[aria-live="polite"]')?.textContent ?? '';
+		const aloud = () => container.querySelector('.unseen[aria-live="polite"]')?.textContent ?? '';
 		point('pointermove', 0.4, 'mouse');
 		point('pointermove', 0.5, 'mouse');
 		expect(aloud()).toBe('');
@@ -119,6 +120,162 @@ describe('the cursor', () => {
 		const screen = await show({ source });
 		await screen.unmount();
 		expect(signal?.aborted).toBe(true);
+	});
+});
+
+describe('a stretch', () => {
+	const panel = () => page.getByRole('region', { name: 'Marked stretch' });
+	const deltaBetween = (a: number, b: number) => {
+		const apart = (placeM: number) =>
+			view.driverGrid.timeS[placeM + view.driverGrid.marginM] -
+			view.referenceGrid.timeS[placeM + view.referenceGrid.marginM];
+		// as the matcher reads it: every space is one space
+		return formatDelta(apart(b) - apart(a)).replaceAll('\u00a0', ' ');
+	};
+
+	it('is dragged with a mouse and gives its own time', async () => {
+		await show();
+		point('pointerdown', 0.3, 'mouse');
+		point('pointermove', 0.6, 'mouse');
+		point('pointerup', 0.6, 'mouse');
+		const [a, b] = [0.3, 0.6].map((share) => Math.round(fromM + share * (toM - fromM)));
+		await expect.element(panel()).toHaveTextContent(deltaBetween(a, b));
+		await expect.element(panel()).toHaveTextContent(`from ${a} m to ${b} m`);
+		// the mouse goes on; the stretch stays
+		point('pointermove', 0.9, 'mouse');
+		await expect.element(panel()).toHaveTextContent(deltaBetween(a, b));
+		point('pointerdown', 0.5, 'mouse');
+		point('pointerup', 0.5, 'mouse');
+		await expect.element(panel()).not.toBeInTheDocument();
+	});
+
+	it('begins under a finger that rests first, and not under one that drags at once', async () => {
+		await show();
+		point('pointerdown', 0.3, 'touch');
+		point('pointermove', 0.5, 'touch');
+		point('pointerup', 0.5, 'touch');
+		await expect.element(panel()).not.toBeInTheDocument();
+		point('pointerdown', 0.3, 'touch');
+		await new Promise((done) => setTimeout(done, 520));
+		point('pointermove', 0.5, 'touch');
+		point('pointerup', 0.5, 'touch');
+		await expect.element(panel()).toBeVisible();
+	});
+
+	it('grows by the metre with shift and an arrow, is read aloud, and Escape ends it', async () => {
+		const { container } = await show();
+		const start = card.cursor.placeM;
+		await userEvent.keyboard('{Shift>}{ArrowRight}{ArrowRight}{ArrowRight}{/Shift}');
+		await expect.element(panel()).toHaveTextContent(`from ${start} m to ${start + 3} m, 3 m`);
+		await expect
+			.poll(() => container.querySelector('.unseen[aria-live="polite"]')?.textContent ?? '')
+			.toMatch(/^Stretch from .+\s(lost|found|level).*; brake mean .+; reference .+; speed mean /);
+		await userEvent.keyboard('{Escape}');
+		await expect.element(panel()).not.toBeInTheDocument();
+	});
+
+	it('is one press away for each part of the corner, and sums to the ledger', async () => {
+		await show();
+		await page.getByRole('group', { name: 'Mark a stretch' }).getByRole('button', { name: 'mid' }).click();
+		const mid = card.split.find(({ name }) => name === 'mid');
+		const said = (panel().element().querySelector('b')?.textContent ?? '').replace('−', '-');
+		// the ledger's borders are no whole metres
+		expect(Math.abs(parseFloat(said) - (mid?.deltaS ?? NaN))).toBeLessThan(0.012);
+	});
+});
+
+describe('the view', () => {
+	const button = (name: string) => page.getByRole('button', { name });
+	const numbers = (container: Element) => [...container.querySelectorAll('.ruler .metre')].map((n) => n.textContent);
+
+	it('comes nearer with +, goes back with 0, and says the way back', async () => {
+		const { container } = await show();
+		const before = numbers(container);
+		await expect.element(button('whole corner')).toBeDisabled();
+		await userEvent.keyboard('+++');
+		await expect.element(button('whole corner')).toBeEnabled();
+		expect(numbers(container)).not.toEqual(before);
+		await userEvent.keyboard('-');
+		await userEvent.keyboard('0');
+		await expect.element(button('whole corner')).toBeDisabled();
+		expect(numbers(container)).toEqual(before);
+	});
+
+	it('zooms with Ctrl and the wheel about the place under it, and leaves the wheel alone without', async () => {
+		await show();
+		const element = slider().element();
+		const { left, width, top } = element.getBoundingClientRect();
+		const turn = (ctrlKey: boolean) => {
+			const event = new WheelEvent('wheel', {
+				deltaY: -240,
+				ctrlKey,
+				clientX: left + 0.75 * width,
+				clientY: top + 40,
+				bubbles: true,
+				cancelable: true
+			});
+			element.dispatchEvent(event);
+			return event.defaultPrevented;
+		};
+		expect(turn(false)).toBe(false);
+		await expect.element(button('whole corner')).toBeDisabled();
+		expect(turn(true)).toBe(true);
+		await expect.element(button('whole corner')).toBeEnabled();
+		point('pointermove', 0.75, 'mouse');
+		const placeM = Math.round(fromM + 0.75 * (toM - fromM));
+		await expect.element(slider()).toHaveAttribute('aria-valuenow', String(placeM));
+	});
+
+	it('zooms with two fingers', async () => {
+		await show();
+		const element = slider().element();
+		const { left, width, top } = element.getBoundingClientRect();
+		const finger = (type: string, pointerId: number, share: number) =>
+			element.dispatchEvent(
+				new PointerEvent(type, {
+					clientX: left + share * width,
+					clientY: top + 40,
+					pointerId,
+					pointerType: 'touch',
+					bubbles: true
+				})
+			);
+		finger('pointerdown', 1, 0.45);
+		finger('pointerdown', 2, 0.55);
+		finger('pointermove', 2, 0.8);
+		finger('pointerup', 1, 0.45);
+		finger('pointerup', 2, 0.8);
+		await expect.element(button('whole corner')).toBeEnabled();
+		await expect.element(page.getByRole('region', { name: 'Marked stretch' })).not.toBeInTheDocument();
+	});
+
+	it('follows a cursor that leaves it', async () => {
+		await show();
+		await userEvent.keyboard('+++');
+		(slider().element() as HTMLElement).focus();
+		await userEvent.keyboard('{End}');
+		await expect.element(page.getByText(`${toM}\u00a0m`).first()).toBeVisible();
+	});
+});
+
+describe('the run’s other laps', () => {
+	it('are drawn and named when they are asked for, and go again', async () => {
+		const { container } = await show();
+		const grey = () => container.querySelectorAll('[stroke="var(--color-grey-pen)"][fill="none"] path').length;
+		expect(grey()).toBe(0);
+		const ask = page.getByRole('button', { name: 'other laps of this run' });
+		await ask.click();
+		await expect.element(page.getByText('thin grey ink: laps 3 and 5 of this run')).toBeVisible();
+		expect(grey()).toBe(2 * card.rows.length);
+		await ask.click();
+		expect(grey()).toBe(0);
+	});
+
+	it('say so where they could not be fetched', async () => {
+		const source = exampleSource(view, card);
+		await show({ source: { ...source, others: { numbers: [2], load: () => Promise.reject(new Error('offline')) } } });
+		await page.getByRole('button', { name: 'other laps of this run' }).click();
+		await expect.element(page.getByText('The other laps could not be fetched', { exact: false })).toBeVisible();
 	});
 });
 

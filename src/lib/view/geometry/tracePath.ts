@@ -1,5 +1,6 @@
 import { line } from 'd3-shape';
 import { CompactPath } from './CompactPath.ts';
+import { extremeIndices } from './extremeIndices.ts';
 import { keepIndices } from './keepIndices.ts';
 
 export interface TracePathInput {
@@ -13,18 +14,23 @@ export interface TracePathInput {
 	y: (value: number) => number;
 	/** units; 1.2 units is an eighth of a pixel, which nobody sees */
 	tolerance?: number;
+	/** units to a pixel column: where points exceed pixels, only what a column can show is drawn */
+	columnUnits?: number;
 }
 
 /**
  * The line of one channel as SVG path data: a gap breaks it and is never bridged, a lone sample becomes a dot. Empty where there
  * is nothing to draw.
  */
-export function tracePath({ placesM, values, x, y, tolerance = 1.2 }: TracePathInput): string {
+export function tracePath({ placesM, values, x, y, tolerance = 1.2, columnUnits }: TracePathInput): string {
 	const path = new CompactPath();
-	const xs = placesM.map(x);
-	const ys = values.map(y);
+	const everyX = placesM.map(x);
+	const everyY = values.map((value) => (Number.isFinite(value) ? y(value) : NaN));
+	const seen = columnUnits === undefined ? null : extremeIndices(everyX, everyY, columnUnits);
+	const xs = seen?.map((i) => everyX[i]) ?? everyX;
+	const ys = seen?.map((i) => everyY[i]) ?? everyY;
 	line<number>()
-		.defined((i) => Number.isFinite(values[i]))
+		.defined((i) => Number.isFinite(ys[i]))
 		.x((i) => xs[i])
 		.y((i) => ys[i])
 		.curve(path.curve)(thinnedIndices(xs, ys, tolerance));

@@ -2,6 +2,7 @@ import { error } from '@sveltejs/kit';
 import { dev } from '$app/environment';
 import { comparePage } from '$lib/view/comparePage';
 import { cornerCard } from '$lib/view/cornerCard';
+import { lapPage } from '$lib/view/lapPage';
 import { RECORDED, recordedView } from './recordedView';
 import type { PageServerLoad } from './$types';
 
@@ -15,6 +16,7 @@ export const load = (async ({ url }) => {
 		recorded: RECORDED,
 		models: view && {
 			page: comparePage(view, { date }),
+			lap: lapPage(view, { date }),
 			card: cornerCard(view, Number(url.searchParams.get('corner') ?? 1), { date })
 		}
 	};

@@ -1,7 +1,7 @@
 import { describe, expect, it } from 'vitest';
 import type { ComparisonView, LapHead } from '$lib/schemas/views';
 import { exampleComparison } from '$lib/view/example/exampleComparison';
-import { compareKick, lapChoices, referenceChoices } from './choices';
+import { compareKick, lapChoices, lapSwitch, otherLaps, referenceChoices } from './choices';
 
 const example = exampleComparison();
 const lap = (number: number, timeS: number, changes: Partial<LapHead> = {}): LapHead => ({
@@ -40,6 +40,41 @@ describe('choices of laps', () => {
 	it('put the present reference first, and say so', () => {
 		const others = { ...view, otherReferences: [lap(9, 97, { driver: example.reference.driver })] };
 		expect(referenceChoices(others, {}).map(({ current }) => current)).toEqual([true, false]);
+	});
+});
+
+describe('the place of a page', () => {
+	it('is kept where the lap or the reference changes', () => {
+		expect(lapChoices(view, '/4?view=table')[0].href).toBe(`/compare/lap-2/${view.reference.id}/4?view=table`);
+		expect(referenceChoices(view, {}, '?order=lap')[0].href).toBe(`/compare/lap-4/${view.reference.id}?order=lap`);
+	});
+});
+
+describe('lapSwitch', () => {
+	it('leads from the best clean lap to the median one and back', () => {
+		expect(lapSwitch(view)).toEqual([
+			{ value: 'lap-3', label: 'best lap', href: `/compare/lap-3/${view.reference.id}` },
+			{ value: 'lap-4', label: 'median lap', href: `/compare/lap-4/${view.reference.id}` }
+		]);
+	});
+	it('is not there for two clean laps, nor where it would lay a lap on itself', () => {
+		expect(lapSwitch({ ...view, runLaps: view.runLaps.slice(0, 2) })).toBeNull();
+		expect(lapSwitch({ ...view, reference: view.runLaps[1] })).toBeNull();
+	});
+});
+
+describe('otherLaps', () => {
+	it('are the clean ones beside the pair, in lap order', () => {
+		expect(otherLaps(view)).toEqual([
+			{ id: 'lap-2', number: 2 },
+			{ id: 'lap-3', number: 3 }
+		]);
+	});
+	it('are the quickest where there are many', () => {
+		const runLaps = Array.from({ length: 40 }, (_, i) => lap(i + 1, 140 - i));
+		expect(otherLaps({ ...view, runLaps }).map(({ number }) => number)).toEqual([
+			29, 30, 31, 32, 33, 34, 35, 36, 37, 38, 39, 40
+		]);
 	});
 });
 
