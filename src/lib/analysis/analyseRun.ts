@@ -15,6 +15,7 @@ import { prepareChannels } from './channels/prepareChannels.ts';
 import { cellTimes, theoreticalBest } from './compare/cellTimes.ts';
 import { chooseLap, type ChosenLap } from './compare/chooseLap.ts';
 import { compareLaps } from './compare/compareLaps.ts';
+import { LEAST_PEDAL_LAG_S, pedalLag, shiftPedals, widenByLag } from './compare/pedalLag.ts';
 import { cornerSpread, ownBest } from './compare/ownBest.ts';
 import { rollingLap } from './compare/rollingLap.ts';
 import { usualOnsets } from './compare/usualOnsets.ts';
@@ -102,13 +103,14 @@ export function analyseRun(raws: RawRun[], options: AnalyseOptions = {}): RunAna
 	const corners = layout?.corners ?? findCorners(laid.placed);
 	const ownMeasured = measure(laid, corners);
 	const reference = referenceChannels ? ownMeasured : null;
-	const measured = reference ? measure(placeRun(channels, path), corners) : ownMeasured;
+	const asRecorded = reference ? measure(placeRun(channels, path), corners) : ownMeasured;
 	if (reference) warnings.push(...reference.warnings.filter(({ code }) => OF_THE_PATH.has(code)));
 	const cells = layout?.cells ?? cellsOf(ownMeasured, corners, path.lengthM);
 	const fullThrottle = fitFullThrottle(channels);
 
-	const { laps } = measured.placed;
+	const { laps } = asRecorded.placed;
 	const chosen = chooseBoth(laps, reference?.placed.laps ?? null, options, warnings);
+	const measured = chosen && reference ? onOneClock(asRecorded, reference, chosen, corners, warnings) : asRecorded;
 	const comparison = chosen && compareChosen(chosen, measured, reference ?? measured, corners, fullThrottle);
 	const cellS = laps.map((lap) => cellTimes(measured.placed, lap, cells));
 	const cleanCellS = cellS.filter((_, i) => laps[i].clean);
@@ -169,6 +171,32 @@ function prepareBoth(raw: RawRun, options: AnalyseOptions): { channels: Channels
 function measure({ placed, warnings }: { placed: PlacedRun; warnings: Warning[] }, corners: Corner[]): Measured {
 	return { placed, warnings, ...measureRun(placed, corners) };
 }
+
+/**
+ * Two devices run on two clocks: what hands and feet do in the driver's run is moved by the lag that the comparison's two laps show, and
+ * measured again.
+ */
+function onOneClock(
+	driver: Measured,
+	reference: Measured,
+	chosen: { driver: ChosenLap; reference: ChosenLap },
+	corners: Corner[],
+	warnings: Warning[]
+): Measured {
+	const lagS = pedalLag(gridLap(driver.placed, chosen.driver.lap), gridLap(reference.placed, chosen.reference.lap));
+	if (Math.abs(lagS) < LEAST_PEDAL_LAG_S) return driver;
+	warnings.push({
+		code: 'channel_lag',
+		message: `pedals and steering come ${Math.abs(lagS).toFixed(2)} s ${lagS > 0 ? 'later' : 'earlier'} than in the reference against the car’s motion; they were moved by it`,
+		row: null
+	});
+	const placed = { ...driver.placed, channels: shiftPedals(driver.placed.channels, lagS) };
+	const { metrics, lockUps } = measureRun(placed, corners);
+	return { ...driver, placed, metrics: widenByLag(metrics, LAG_LEFT_S), lockUps };
+}
+
+/** ± of a lag that was taken out. */
+const LAG_LEFT_S = 0.02;
 
 const cleanLaps = (laps: readonly Lap[]): number[] => laps.filter((lap) => lap.clean).map((lap) => lap.number);
 

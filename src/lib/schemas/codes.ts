@@ -78,6 +78,7 @@ export const warningCodeSchema = z.enum([
 	'speed_only',
 	'direction_reversed',
 	'path_from_accelerations',
+	'channel_lag',
 	'metadata'
 ]);
 export type WarningCode = z.infer<typeof warningCodeSchema>;

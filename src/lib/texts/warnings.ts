@@ -49,6 +49,7 @@ const CONSEQUENCE: Record<WarningCode, string | null> = {
 	speed_only: 'Corners are found from speed alone: places and names may need a look.',
 	direction_reversed: 'It is kept apart from runs in the other direction.',
 	path_from_accelerations: 'The drawn line is an estimate.',
+	channel_lag: 'Pedals and steering were on another clock than the reference’s; they were moved by the lag found.',
 	metadata: null
 };
 

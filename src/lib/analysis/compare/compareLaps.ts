@@ -12,6 +12,7 @@ import { deltaTrace } from './deltaTrace.ts';
 import { cornerBorders, cutLedger } from './ledger.ts';
 import { ownLifts } from './ownLifts.ts';
 import { speedGap } from './speedGap.ts';
+import { LEAST_PEDAL_LAG_S, pedalLag, widenByLag } from './pedalLag.ts';
 import { planStages } from './stages.ts';
 
 /** One of the two laps: its traces on the path's grid and its corner metrics. */
@@ -52,6 +53,9 @@ export function compareLaps(input: CompareInput): Comparison {
 	const withOwnLifts = ({ grid, metrics }: CompareSide) => ({ grid, metrics: ownLifts(metrics, corners, lengthM) });
 	const driver = withOwnLifts(input.driver);
 	const reference = withOwnLifts(input.reference);
+	// of two devices' clocks; where it was not taken out of the driver's run, places are that much less sure
+	const lagS = pedalLag(driver.grid, reference.grid);
+	if (Math.abs(lagS) >= LEAST_PEDAL_LAG_S) driver.metrics = widenByLag(driver.metrics, lagS);
 	const places = cornerPlaces(corners, lengthM, driver.metrics, reference.metrics);
 	const borders = places.map(cornerBorders);
 	const ledger = cutLedger(trace, borders);

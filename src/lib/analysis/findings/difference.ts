@@ -90,7 +90,9 @@ export function differenceOf(pair: MetricsPair, field: MetricField): Difference 
 	const facts = FIELD_FACTS[field];
 	const plusMinusOf = (metrics: CornerMetrics | undefined): number => {
 		const own = metrics?.plusMinus[field];
-		return own === undefined ? facts.plusMinus : facts.place ? Math.max(own, facts.plusMinus) : own;
+		if (own === undefined) return facts.plusMinus;
+		// a speed states all of its ±; elsewhere the step of the path, or of a pedal, is left
+		return facts.unit === 'km/h' ? own : Math.max(own, facts.plusMinus);
 	};
 	const plusMinus = Math.hypot(plusMinusOf(pair.driver), plusMinusOf(pair.reference));
 	const by = facts.place ? nearestPlace(0, driver - reference, pair.lengthM) : driver - reference;

@@ -25,11 +25,15 @@ export class MetricsSheet {
 		this.metrics = emptyMetrics(passage);
 	}
 
-	/** Sets a field, or, where the value is not a number, leaves it null and says why. */
+	/**
+	 * Sets a field, or, where the value is not a number, leaves it null and says why. A time that states no ± of its own is known to half of
+	 * a sampling interval.
+	 */
 	set(field: MetricField, value: number | null, reason: MetricReason, plusMinus = 0): void {
 		if (value !== null && Number.isFinite(value)) {
 			this.metrics[field] = value;
-			if (plusMinus > 0) this.metrics.plusMinus[field] = plusMinus;
+			const known = plusMinus > 0 ? plusMinus : field.endsWith('S') ? this.#run.speed.sampleS / 2 : 0;
+			if (known > 0) this.metrics.plusMinus[field] = known;
 		} else {
 			this.metrics.reasons[field] = reason;
 		}
@@ -39,7 +43,8 @@ export class MetricsSheet {
 	setPlace(field: MetricField, moment: (Pick<Moment, 'timeS'> & Partial<Moment>) | null, reason: MetricReason): void {
 		if (!moment) return this.set(field, null, reason);
 		if (touchesHole(this.#run, moment.timeS)) return this.set(field, null, 'gap');
-		const { timeS, plusMinusS = 0 } = moment;
+		// a moment that states no ± lies within half of a sampling interval
+		const { timeS, plusMinusS = this.#run.speed.sampleS / 2 } = moment;
 		const spreadM = plusMinusS > 0 ? (speedAt(this.#run.speed, timeS) / KMH_PER_MPS) * plusMinusS : 0;
 		this.set(field, placeAtTime(this.#run.placed, timeS) - this.#passage.baseM, reason, spreadM);
 	}
