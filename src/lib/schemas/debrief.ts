@@ -77,7 +77,12 @@ export type DebriefSave = z.infer<typeof debriefSaveSchema>;
 export const debriefSendSchema = z.object({ revision: z.number().int().min(1) });
 
 /** `POST /api/v1/debriefs/{id}/links` */
-export const linkInputSchema = z.object({ days: z.coerce.number().int().min(1).max(366) });
+export const linkInputSchema = z.object({ days: z.number().int().min(1).max(366) });
+export const madeLinkSchema = z.object({ path: z.string() });
+
+/** `PUT /api/v1/debriefs/{id}/ticks` */
+export const tickInputSchema = z.object({ item: keySchema, ticked: z.boolean() });
+export const savedSchema = z.object({ revision: z.number().int() });
 
 const deltaWordSchema = z.enum(['lost', 'found', 'level']);
 const penPairSchema = z.object({ driver: z.string(), reference: z.string() });

@@ -11,6 +11,33 @@ import {
 	type TokenScope
 } from '../../schemas/api.ts';
 import {
+	debriefInputSchema,
+	debriefListSchema,
+	debriefSaveSchema,
+	debriefSendSchema,
+	debriefViewSchema,
+	linkInputSchema,
+	madeLinkSchema,
+	savedSchema,
+	tickInputSchema
+} from '../../schemas/debrief.ts';
+import {
+	focusChangeSchema,
+	focusInputSchema,
+	focusListSchema,
+	focusPointSchema,
+	focusQuerySchema
+} from '../../schemas/focus.ts';
+import {
+	notesQuerySchema,
+	replyInputSchema,
+	zoneNoteChangeSchema,
+	zoneNoteDetailSchema,
+	zoneNoteInputSchema,
+	zoneNoteListSchema
+} from '../../schemas/zoneNote.ts';
+import { cornerMapAnswerSchema, cornerMapChangeSchema, cornerMapViewSchema } from '../../schemas/cornerMap.ts';
+import {
 	comparisonDocumentSchema,
 	runListSchema,
 	runViewSchema,
@@ -132,6 +159,140 @@ export const OPERATIONS: Readonly<Record<string, Partial<Record<Method, Operatio
 	},
 	'/api/v1/compare/{lap}/{reference}': {
 		get: { summary: 'Two laps laid on each other', scope: 'laps:read', answer: [200, comparisonDocumentSchema] }
+	},
+	'/api/v1/notes': {
+		get: {
+			summary: 'Zone notes on a layout',
+			scope: 'laps:read',
+			query: notesQuerySchema,
+			answer: [200, zoneNoteListSchema]
+		},
+		post: {
+			summary: 'Write a zone note',
+			scope: 'runs:write',
+			body: zoneNoteInputSchema,
+			answer: [201, zoneNoteDetailSchema]
+		}
+	},
+	'/api/v1/notes/{note}': {
+		get: {
+			summary: 'One zone note with its answers and history',
+			scope: 'laps:read',
+			answer: [200, zoneNoteDetailSchema]
+		},
+		patch: {
+			summary: 'Change a zone note; 409 with both texts when somebody else changed it in between',
+			scope: 'runs:write',
+			body: zoneNoteChangeSchema,
+			answer: [200, zoneNoteDetailSchema]
+		},
+		delete: {
+			summary: 'Take a zone note out of sight; it can be brought back',
+			scope: 'runs:write',
+			answer: [204, null]
+		}
+	},
+	'/api/v1/notes/{note}/restore': {
+		post: { summary: 'Bring a deleted zone note back', scope: 'runs:write', answer: [200, zoneNoteDetailSchema] }
+	},
+	'/api/v1/notes/{note}/replies': {
+		post: {
+			summary: 'Answer a zone note',
+			scope: 'runs:write',
+			body: replyInputSchema,
+			answer: [201, zoneNoteDetailSchema]
+		}
+	},
+	'/api/v1/focus': {
+		get: {
+			summary: 'A driver’s focus points, each with the scores of later runs',
+			scope: 'laps:read',
+			query: focusQuerySchema,
+			answer: [200, focusListSchema]
+		},
+		post: { summary: 'Open a focus', scope: 'runs:write', body: focusInputSchema, answer: [201, focusPointSchema] }
+	},
+	'/api/v1/focus/{focus}': {
+		get: { summary: 'One focus with its scores', scope: 'laps:read', answer: [200, focusPointSchema] },
+		patch: {
+			summary: 'Close, drop or open a focus',
+			scope: 'runs:write',
+			body: focusChangeSchema,
+			answer: [200, focusPointSchema]
+		}
+	},
+	'/api/v1/debriefs': {
+		get: { summary: 'Debriefs that one writes or received', scope: 'laps:read', answer: [200, debriefListSchema] },
+		post: {
+			summary: 'Draft a debrief on a run, or go on with the one that was not sent yet',
+			scope: 'runs:write',
+			body: debriefInputSchema,
+			answer: [201, debriefViewSchema]
+		}
+	},
+	'/api/v1/debriefs/{debrief}': {
+		get: {
+			summary: 'A debrief, as it is written or as it was sent',
+			scope: 'laps:read',
+			answer: [200, debriefViewSchema]
+		},
+		put: {
+			summary: 'Save what is written; 409 with both texts when another window saved in between',
+			scope: 'runs:write',
+			body: debriefSaveSchema,
+			answer: [200, savedSchema]
+		},
+		delete: { summary: 'Take a draft out of sight; it can be brought back', scope: 'runs:write', answer: [204, null] }
+	},
+	'/api/v1/debriefs/{debrief}/restore': {
+		post: { summary: 'Bring a deleted draft back', scope: 'runs:write', answer: [200, debriefViewSchema] }
+	},
+	'/api/v1/debriefs/{debrief}/send': {
+		post: {
+			summary: 'Send a debrief; a second time changes nothing',
+			scope: 'runs:write',
+			body: debriefSendSchema,
+			answer: [200, debriefViewSchema]
+		}
+	},
+	'/api/v1/debriefs/{debrief}/read': {
+		post: { summary: 'Say that the driver has it before them', scope: 'runs:write', answer: [204, null] }
+	},
+	'/api/v1/debriefs/{debrief}/ticks': {
+		put: {
+			summary: 'Tick what was tried',
+			scope: 'runs:write',
+			body: tickInputSchema,
+			answer: [200, debriefViewSchema]
+		}
+	},
+	'/api/v1/debriefs/{debrief}/replies': {
+		post: { summary: 'Answer a debrief', scope: 'runs:write', body: replyInputSchema, answer: [201, debriefViewSchema] }
+	},
+	'/api/v1/debriefs/{debrief}/links': {
+		post: {
+			summary: 'Make a link that shows this debrief and nothing else; its path is told this once',
+			scope: 'runs:write',
+			body: linkInputSchema,
+			answer: [201, madeLinkSchema]
+		}
+	},
+	'/api/v1/debriefs/{debrief}/links/{link}': {
+		delete: { summary: 'End a link', scope: 'runs:write', answer: [204, null] }
+	},
+	'/api/v1/layouts/{layout}/corner-map': {
+		get: {
+			summary: 'The corner map that counts, with kinks and versions',
+			scope: 'laps:read',
+			answer: [200, cornerMapViewSchema]
+		},
+		post: {
+			summary:
+				'Edit the corner map, make an earlier version count again, or preview either (200); 202: stored laps are being cut, and the new version counts once all are',
+			scope: 'runs:write',
+			body: cornerMapChangeSchema,
+			answer: [202, cornerMapAnswerSchema]
+		}
 	},
 	'/api/v1/layouts/{layout}/names': {
 		patch: {
