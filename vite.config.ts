@@ -74,7 +74,12 @@ const product: ViteUserConfig = {
 				test: {
 					name: 'db',
 					environment: 'node',
-					include: ['src/lib/server/**/*.test.ts', 'tests/db/**/*.test.ts', 'tests/api/**/*.test.ts'],
+					include: [
+						'src/lib/server/**/*.test.ts',
+						'tests/db/**/*.test.ts',
+						'tests/api/**/*.test.ts',
+						'tests/faults/**/*.test.ts'
+					],
 					exclude: longTests,
 					globalSetup: ['tests/db/globalSetup.ts'],
 					fileParallelism: false
