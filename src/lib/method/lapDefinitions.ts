@@ -39,7 +39,7 @@ export const LAP_DEFINITIONS: DefinitionGroup = {
 			term: '± of a place',
 			unit: 'm',
 			meaning:
-				'What remains after channel lags and the offset between two runs are fitted. Differences within it are “the same place”.',
+				'What remains after channel lags and the offset between two runs are fitted: pedals whose clock differs by over 0.06 s against the car’s motion are moved, and the file says so. Differences within it are “the same place”.',
 			source: OWN_DEFINITION
 		},
 		{

@@ -65,6 +65,32 @@ export const PEDAL_DEFINITIONS: DefinitionGroup = {
 			source: 'trade sense'
 		},
 		{
+			term: 'Shares of coasting',
+			unit: 's',
+			meaning: 'Coasting before the brake, between two brakings, and after the brake.',
+			source: OWN_DEFINITION
+		},
+		{
+			term: 'Level of a hold',
+			unit: '%',
+			meaning: 'Mean of the longest level stretch between 2 % and 25 % after the peak, while the car turns.',
+			source: OWN_DEFINITION
+		},
+		{
+			term: 'Strength of a braking',
+			unit: 'm/s²',
+			meaning: 'Mean deceleration from the peak to the last moment above 80 % of it.',
+			source: OWN_DEFINITION,
+			limits: 'Not said under 0.25 s.'
+		},
+		{
+			term: 'Time of wheelspin',
+			unit: 's',
+			meaning:
+				'Time from the apex to 1 s behind the corner with a wheel over 10 % faster than the ground while the throttle is over 20 %, in stretches of 0.1 s and more.',
+			source: 'longitudinal slip by ISO 8855; the limits are ours'
+		},
+		{
 			term: 'Idle gap',
 			unit: 's',
 			meaning:

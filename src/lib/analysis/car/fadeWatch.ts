@@ -20,12 +20,12 @@ const LEAST_PCT = 25;
 const STEADY_SHARE = 0.12;
 const SLOWEST_KMH = 50;
 /** Speeds within one bin are equal. */
-const BIN_KMH = 15;
-const LEAST_READINGS = 24;
+export const BIN_KMH = 15;
+export const LEAST_READINGS = 24;
 /** Over less time nothing heats up or cools down. */
 const LEAST_S = 180;
 /** Loss from which it is a sign, if it is clear of its ±. */
-const FADE_SHARE = 0.08;
+export const FADE_SHARE = 0.08;
 /** A brake that varies by less than this, %, says nothing of its own effect. */
 const LEAST_PCT_SD = 1.5;
 const ROUNDS = 6;

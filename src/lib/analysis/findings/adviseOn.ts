@@ -20,12 +20,12 @@ export interface Advice<F extends AdvisedFinding = Finding> {
 export type AdvisedFinding = Pick<Finding, 'corner' | 'code' | 'evidence'>;
 
 /** Half of the gap, and never more than this at a time. */
-const LARGEST_STEP_M = 5;
+export const LARGEST_STEP_M = 5;
 const STEP_SHARE = 0.5;
 /** Below this a step is none. */
 const LEAST_STEP_M = 0.5;
 /** Tyres and driver are not warm before. */
-const FIRST_LAPS = 2;
+export const FIRST_LAPS = 2;
 
 /** Saving fuel is done by these. */
 const SAVES_FUEL: ReadonlySet<FindingCode> = new Set([

@@ -51,14 +51,14 @@ const GRIP_USED = 0.97;
 const GRIP_LEFT = 0.93;
 const LEAST_OFFSET_M = 0.8;
 /** Share of the run's own acceleration envelope under which grip is left, and how far under the reference's. */
-const LEAST_GRIP_SHARE = 0.85;
+export const LEAST_GRIP_SHARE = 0.85;
 const LEAST_GRIP_APART = 0.08;
 /** What is worth a word beside the finding that it belongs to. */
 const LEAST_COASTING_S = 0.1;
 const LEAST_TOLD_M = 2;
 export const LEAST_SPIN_S = 0.15;
 /** From here on full throttle is late by hesitation where the pick-up is not. */
-const LEAST_HESITATION_M = 8;
+export const LEAST_HESITATION_M = 8;
 /** A peak nearer to the reference's than this explains no earlier onset. */
 const LEAST_PEAK_PCT = 5;
 /** An opening of the throttle longer than the reference's is a cause of its own from this share of the lateness on. */

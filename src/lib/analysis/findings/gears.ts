@@ -3,7 +3,7 @@ import { fullThrottleEntry } from './fullThrottleEntry.ts';
 import type { Cause, CornerCase } from './causes.ts';
 
 /** A shift at this share of the reference's engine speed, or less, is short. */
-const SHORT_SHARE = 0.92;
+export const SHORT_SHARE = 0.92;
 /** Metres in one gear that make it the gear of the corner. */
 const SETTLED_M = 5;
 

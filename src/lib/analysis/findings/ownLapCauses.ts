@@ -5,17 +5,17 @@ import { knowsFullBrake, type Cause, type CornerCase } from './causes.ts';
 import { FIELD_FACTS, type MetricField } from './difference.ts';
 
 /** Laps in which a harder braking must have brought nothing. */
-const LEAST_HARDER_LAPS = 3;
-const LEAST_HARDER_PCT = 8;
+export const LEAST_HARDER_LAPS = 3;
+export const LEAST_HARDER_PCT = 8;
 /** Deceleration up to this share of the reference's is no more. */
 const NO_MORE = 1.01;
 /** Arrival speeds within this share are the same: downforce and drag change with speed. */
 const SAME_SPEED = 0.03;
 /** Laps from which a spread is said. */
-const LEAST_SPREAD_LAPS = 5;
+export const LEAST_SPREAD_LAPS = 5;
 /** Standard deviations that are worth a word, and how many ± they must be. */
-const WIDE_ONSET_M = 5;
-const WIDE_MINIMUM_KMH = 2.5;
+export const WIDE_ONSET_M = 5;
+export const WIDE_MINIMUM_KMH = 2.5;
 const CLEAR_OF_PLUS_MINUS = 2;
 
 /**

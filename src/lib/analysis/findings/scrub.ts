@@ -3,8 +3,8 @@ import { KMH_PER_MPS } from '../../units.ts';
 import type { Cause, CornerCase } from './causes.ts';
 
 /** Steering over the reference's by this share, and this much, for no tighter a line … */
-const MORE_STEERING = 1.2;
-const LEAST_MORE_DEG = 8;
+export const MORE_STEERING = 1.2;
+export const LEAST_MORE_DEG = 8;
 /** … within this share of its curvature … */
 const SAME_CURVATURE = 1.04;
 /** … and with no more lateral acceleration than this share of its: more would explain more steering. */

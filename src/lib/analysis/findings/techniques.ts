@@ -8,22 +8,22 @@ import { scrub } from './scrub.ts';
 /**
  * Differences in technique that are worth naming even where they cost no time of their own. Smaller ones are the same technique.
  */
-const LEAST_PEAK_PCT = 8;
-const LEAST_IDLE_GAP_S = 0.3;
-const LEAST_HOLD_S = 0.3;
-const LEAST_RELEASE_S = 0.25;
-const ABRUPT_RELEASE_SHARE = 0.6;
-const LONG_RELEASE_SHARE = 1.6;
-const LEAST_RISE_S = 0.1;
-const QUICK_RISE_SHARE = 0.5;
-const LEAST_OVERLAP_S = 0.2;
+export const LEAST_PEAK_PCT = 8;
+export const LEAST_IDLE_GAP_S = 0.3;
+export const LEAST_HOLD_S = 0.3;
+export const LEAST_RELEASE_S = 0.25;
+export const ABRUPT_RELEASE_SHARE = 0.6;
+export const LONG_RELEASE_SHARE = 1.6;
+export const LEAST_RISE_S = 0.1;
+export const QUICK_RISE_SHARE = 0.5;
+export const LEAST_OVERLAP_S = 0.2;
 /** A change of feet takes at most this long; more is coasting. */
-const LEAST_CHANGE_S = 0.1;
-const LONGEST_CHANGE_S = 0.5;
-const LEAST_TURN_IN_M = 6;
-const LEAST_CORRECTIONS = 2;
+export const LEAST_CHANGE_S = 0.1;
+export const LONGEST_CHANGE_S = 0.5;
+export const LEAST_TURN_IN_M = 6;
+export const LEAST_CORRECTIONS = 2;
 /** Above this a hold is no light one. */
-const LIGHT_HOLD_PCT = 12;
+export const LIGHT_HOLD_PCT = 12;
 
 type Add = (code: FindingCode, field: MetricField, ...further: MetricField[]) => void;
 
