@@ -191,6 +191,9 @@ const ENTRIES: Record<string, Record<string, Entry>> = {
 	'/(app)/compare/[lap]/[reference]/[corner]': {
 		GET: { access: 'reads the run', path: (own) => `/compare/${pair(own)}/1`, ok: 200 }
 	},
+	'/(app)/compare/[lap]/[reference]/lap': {
+		GET: { access: 'reads the run', path: (own) => `/compare/${pair(own)}/lap`, ok: 200 }
+	},
 	'/(app)/upload': {
 		GET: { access: 'signed in', path: () => '/upload', ok: 200 },
 		POST: { access: 'signed in', path: () => '/upload', request: () => form({}), ok: 400 }
@@ -417,6 +420,26 @@ const ENTRIES: Record<string, Record<string, Entry>> = {
 	},
 	'/api/v1/compare/[lap]/[reference]': {
 		GET: { access: 'reads the run', scope: 'laps:read', path: (own) => `/api/v1/compare/${pair(own)}`, ok: 200 }
+	},
+	'/api/v1/layouts/[layout]/corner-map': {
+		GET: {
+			access: 'reads the run',
+			scope: 'laps:read',
+			path: ({ layoutPublicId }) => `/api/v1/layouts/${layoutPublicId}/corner-map`,
+			ok: 200
+		},
+		POST: {
+			access: 'keeps the run',
+			scope: 'runs:write',
+			path: ({ layoutPublicId }) => `/api/v1/layouts/${layoutPublicId}/corner-map`,
+			request: ({ cornerPublicId }) =>
+				json('POST', {
+					basedOn: 1,
+					edits: [{ kind: 'unnumber', corner: cornerPublicId }],
+					preview: true
+				}),
+			ok: 200
+		}
 	},
 	'/api/v1/layouts/[layout]/names': {
 		PATCH: {

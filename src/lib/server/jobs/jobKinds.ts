@@ -15,10 +15,19 @@ export const jobPayloadSchemas = {
 	sendMail: z.object({ mailId: z.number().int() }),
 	/** write the letter by which a person chooses a new password; null where nobody has the address that was given */
 	writeReset: z.object({ personId: z.number().int().nullable() }),
+	/** cut all stored laps of a layout by a version of its corner map, which counts from then on */
+	recutLayout: z.object({ layoutId: z.number().int(), mapVersion: z.number().int() }),
 	/** tidy up: writes that never ended, counters and sessions that ran out */
 	sweep: z.object({})
 };
 
 export type JobKind = keyof typeof jobPayloadSchemas;
 export type JobPayload<Kind extends JobKind> = z.infer<(typeof jobPayloadSchemas)[Kind]>;
-export const JOB_KINDS: readonly JobKind[] = ['importRun', 'reanalyse', 'sendMail', 'sweep', 'writeReset'];
+export const JOB_KINDS: readonly JobKind[] = [
+	'importRun',
+	'reanalyse',
+	'recutLayout',
+	'sendMail',
+	'sweep',
+	'writeReset'
+];

@@ -48,7 +48,7 @@ export async function enqueue<Kind extends JobKind>(
 
 const rowSchema = z.object({
 	id: z.number(),
-	kind: z.enum(['importRun', 'reanalyse', 'sendMail', 'sweep', 'writeReset']),
+	kind: z.enum(['importRun', 'reanalyse', 'recutLayout', 'sendMail', 'sweep', 'writeReset']),
 	payload: z.unknown(),
 	attempts: z.number(),
 	max_attempts: z.number()

@@ -4,6 +4,7 @@ import { faultOf, logger } from '../logger.ts';
 import type { AnalysisPool } from '../importing/analysisPool.ts';
 import { sendMail } from '../mail/sendMail.ts';
 import { giveUpImport, importRun } from '../services/importRun.ts';
+import { giveUpRecut, recutLayout } from '../services/recutLayout.ts';
 import { writeReset } from '../services/resetByMail.ts';
 import type { RawStore } from '../storage/rawStore.ts';
 import { jobPayloadSchemas } from './jobKinds.ts';
@@ -143,6 +144,7 @@ export class JobRunner {
 			logger.error({ job: job.id, kind: job.kind, attempt: job.attempt, ...faultOf(error) }, 'job failed');
 			const gaveUp = await fail(db, job, { code: String(code ?? 'fault'), message: String(message ?? '') });
 			if (gaveUp && job.kind === 'importRun') await giveUpImport(db, jobPayloadSchemas.importRun.parse(job.payload));
+			if (gaveUp && job.kind === 'recutLayout') await giveUpRecut(db, jobPayloadSchemas.recutLayout.parse(job.payload));
 		}
 	}
 
@@ -150,6 +152,9 @@ export class JobRunner {
 		const { db, store } = this.#options;
 		if (job.kind === 'importRun') {
 			return await importRun(this.#options, job, jobPayloadSchemas.importRun.parse(job.payload), signal);
+		}
+		if (job.kind === 'recutLayout') {
+			return await recutLayout(this.#options, job, jobPayloadSchemas.recutLayout.parse(job.payload), signal);
 		}
 		if (job.kind === 'reanalyse') {
 			const queued = await queueOlderReadings(db);
