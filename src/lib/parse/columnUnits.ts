@@ -149,12 +149,16 @@ export function isUnitId(id: string): boolean {
 	return BY_ID.has(id);
 }
 
+/** Longer text is no unit. */
+const MAX_SPELLING = 60;
+
 /**
  * Reads a unit as written in a header, a unit row or a cell.
  *
  * @returns the meanings that it may have, likeliest first; empty where it is no unit
  */
 export function readUnit(text: string): readonly Unit[] {
+	if (text.length > MAX_SPELLING) return [];
 	const spelling = text
 		.normalize('NFKC')
 		.toLowerCase()

@@ -114,7 +114,9 @@ function readMetadata(lines: readonly string[], rows: readonly string[][]): Reco
 		if (count >= MAX_METADATA) return;
 		const parts = cells.map(clean).filter((cell) => cell !== '');
 		const pair =
-			parts.length > 1 ? [parts[0].replace(/^[#;/*\s]+|[:=\s]+$/g, ''), parts.slice(1).join(' ')] : pairOf(lines[i]);
+			parts.length > 1
+				? [parts[0].slice(0, MAX_PAIR).replace(/^[#;/*\s]+|[:=\s]+$/g, ''), parts.slice(1).join(' ')]
+				: pairOf(lines[i]);
 		if (!pair || pair[0] === '' || pair[1] === '') return;
 		Object.defineProperty(metadata, pair[0].slice(0, 80).toLowerCase(), {
 			value: pair[1].slice(0, 300),

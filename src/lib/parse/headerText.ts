@@ -9,7 +9,7 @@ export interface HeaderText {
 }
 
 const BRACKETED = /\s*[([{<]\s*([^()[\]{}<>]*?)\s*[)\]}>]/g;
-const MAX_HEADER = 200;
+const MAX_HEADER = 120;
 
 /**
  * Splits a header into its words and its unit: "Speed (km/h)", "speed [km/h]", "speed_kmh", "speedKmh", "Speed in km/h",

@@ -3,9 +3,11 @@ import { readUnit } from './columnUnits.ts';
 /** Ways to write "no value" that are not a fault of the file. */
 const MISSING =
 	/^(?:nan|na|n\/a|n\.a\.|#n\/a|#div\/0!|#value!|null|nil|none|undefined|inf|-inf|infinity|-infinity|-|--|---|\?|\*|\.|_)?$/i;
-const PLAIN = /^[+-]?(?:\d+\.?\d*|\.\d+)(?:[e][+-]?\d+)?$/i;
+const PLAIN = /^[+-]?(?:\d+(?:\.\d*)?|\.\d+)(?:[e][+-]?\d+)?$/i;
 /** Spaces between digits, of any width (U+00A0, U+2009, U+202F …), and the apostrophe of Swiss figures. */
 const GROUP_SPACE = /(?<=\d)[ \u00a0\u2000-\u200a\u202f'’](?=\d{3}(?:\D|$))/g;
+/** Longer text is no number that anybody wrote; it bounds what the patterns below have to go through. */
+const MAX_NUMBER = 100;
 const MINUS = /[\u2212\u2012\u2013\ufe63\uff0d]/g;
 const TRAILING_UNIT = /(?<=\d) *(%|°|[a-zµ][a-zµ²0-9/.·]*)$/i;
 
@@ -34,6 +36,7 @@ const WORDS = new Map<string, number>([
 export function readNumber(text: string, decimal: '.' | ','): number | undefined {
 	let cell = text.trim();
 	if (decimal === '.' && PLAIN.test(cell)) return finite(cell);
+	if (cell.length > MAX_NUMBER) return undefined;
 	if (MISSING.test(cell)) return NaN;
 	if (!isAscii(cell))
 		cell = cell.replace(MINUS, '-').replace(GROUP_SPACE, '').normalize('NFKC').replace(MINUS, '-').trim();

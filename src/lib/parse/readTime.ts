@@ -6,6 +6,8 @@ const DATE =
 	/^(\d{4})[-/.]?(\d{2})[-/.]?(\d{2})[T\s_]+(\d{1,2})[:.]?(\d{2})(?:[:.]?(\d{2})(?:[.,:](\d+))?)?\s*(Z|UTC|GMT|[+-]\d{2}(?::?\d{2})?)?$/i;
 const LOCAL_DATE = /^(\d{1,2})[./-](\d{1,2})[./-](\d{2,4})[T\s]+(.+)$/;
 
+/** Longer text is no time. */
+const MAX_TIME = 60;
 const SECONDS_PER_DAY = 86_400;
 
 /**
@@ -18,7 +20,7 @@ export function readClock(text: string): number | undefined {
 	const cell = text.trim();
 	const plain = Number(cell.replace(',', '.'));
 	if (cell !== '' && Number.isFinite(plain)) return plain;
-	const match = CLOCK.exec(cell);
+	const match = cell.length > MAX_TIME ? null : CLOCK.exec(cell);
 	if (!match) return undefined;
 	const [, sign, hours, minutes, seconds, fraction, half] = match;
 	let hour = Number(hours ?? 0);
@@ -42,6 +44,7 @@ export function readClock(text: string): number | undefined {
  */
 export function readDate(text: string): { epochS: number; zoned: boolean } | undefined {
 	const cell = text.trim();
+	if (cell.length > MAX_TIME) return undefined;
 	const match = DATE.exec(cell);
 	if (match) {
 		const [, year, month, day, hour, minute, second, fraction, zone] = match;
