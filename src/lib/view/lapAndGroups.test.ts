@@ -1,5 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import type { ComparisonView, CornerView } from '../schemas/views';
+import { bandRows } from './bandRows';
 import { exampleComparison } from './example/exampleComparison';
 import { pathNumbers } from './geometry/pathNumbers';
 import { lapPage } from './lapPage';
@@ -53,6 +54,19 @@ describe('lapPage', () => {
 		expect(page.samples.everyM).toBe(100);
 		expect(page.samples.rows.length).toBeGreaterThan(30);
 		expect(page.samples.rows.length).toBeLessThan(45);
+	});
+});
+
+describe('bandRows', () => {
+	it('gives each number the room of a target on its line', () => {
+		const shares = [0.03, 0.05, 0.06, 0.1, 0.4, 0.45, 0.9];
+		const rows = bandRows(shares, 320);
+		shares.forEach((share, i) =>
+			shares.slice(0, i).forEach((other, j) => {
+				if (rows[i] === rows[j]) expect((share - other) * 320).toBeGreaterThanOrEqual(27);
+			})
+		);
+		expect(bandRows([0.1, 0.5, 0.9], 320)).toEqual([0, 0, 0]);
 	});
 });
 
