@@ -73,8 +73,9 @@ export function compareLaps(input: CompareInput): Comparison {
 	const idle = places.map((place) => difference(place, 'idleGapS') > 0);
 	// where nobody brakes, the lift and the speed that it takes off are one thing
 	const slower = places.map((place) => place.driver.onsetM !== null && difference(place, 'minKmh') < 0);
+	const locks = places.map((place) => difference(place, 'lockUps') > 0);
 	const toM = Math.ceil(lengthM);
-	const plan = planStages(places, entries, idle, slower, driver.grid, reference.grid, fromM, toM);
+	const plan = planStages(places, entries, idle, slower, locks, driver.grid, reference.grid, fromM, toM);
 	const losses = attributeLoss(gap, plan, ledger, run.fullThrottle);
 	const clean = new Set(run.cleanLaps);
 	const findings = nameFindings({

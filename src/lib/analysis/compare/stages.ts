@@ -109,6 +109,7 @@ function brakesLater({ driver, reference }: CornerPlaces, atM: number): boolean 
  * @param entriesM where each corner's entry begins, unwrapped, as in the ledger before it is held to the lap
  * @param idle    for each corner, whether the driver's idle gap towards the next one counts
  * @param slower  for each corner, whether the driver's minimum speed is lower
+ * @param locks   for each corner, whether the driver locks a wheel more often: it slows down less then, and is given what that finds
  * @param fromM   first whole metre
  * @param toM     last whole metre
  */
@@ -117,6 +118,7 @@ export function planStages(
 	entriesM: readonly number[],
 	idle: readonly boolean[],
 	slower: readonly boolean[],
+	locks: readonly boolean[],
 	driver: LapGrid,
 	reference: LapGrid,
 	fromM: number,
@@ -166,6 +168,7 @@ export function planStages(
 		const kind = idling ? 'idle' : lifted ? 'secondLift' : own;
 		if (kind) loss[i] = poolOf(k, kind);
 		if (brakesLater(place, atM)) gain[i] = poolOf(k, 'lateBrake');
+		else if (locks[k - 1] && opens(atM, place.driver.onsetM) && atM <= place.endM) gain[i] = poolOf(k, 'slowing');
 	}
 	const slowest = new Map<number, number>();
 	places.forEach((place, at) => {
