@@ -238,6 +238,21 @@ describe('an upload that is deleted', () => {
 		expect([conflicting.status, (await conflicting.json()).code]).toEqual([409, 'conflict']);
 	});
 
+	it('while it comes in is given up, whole or not, and does not stand in the way of the same file', async () => {
+		const bytes = randomBytes(300);
+		const id = await created(bytes.length);
+		await testRequest(`/api/v1/uploads/${id}`, { method: 'DELETE', jar });
+		await writeFile(partPath(id), bytes);
+		await db('uploads')
+			.where({ public_id: decodePublicId(id) })
+			.update({ updated_at: db.raw('CURRENT_TIMESTAMP(3) - INTERVAL 1 HOUR') });
+		await sweep(db, rawStore(), new Date());
+		expect(await rowOf(id)).toBeUndefined();
+		expect(existsSync(partPath(id))).toBe(false);
+		const body = new Uint8Array(bytes);
+		expect((await testRequest('/api/v1/uploads?name=a.csv', { method: 'PUT', body, jar })).status).toBe(202);
+	});
+
 	it('goes for good after thirty days, row and file', async () => {
 		const body = new Uint8Array(randomBytes(200));
 		const { id } = await (await testRequest('/api/v1/uploads?name=a.csv', { method: 'PUT', body, jar })).json();

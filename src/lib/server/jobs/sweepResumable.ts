@@ -21,14 +21,15 @@ export async function sweepResumable(db: Knex, store: RawStore, now: Date): Prom
 		.where({ state: 'receiving', is_resumable: true })
 		.where('updated_at', '<', db.raw('CURRENT_TIMESTAMP(3) - INTERVAL ? SECOND', [LEFT_ALONE_S]))
 		.limit(1000)
-		.select<(ResumableRow & { is_abandoned: number })[]>(
+		.select<(ResumableRow & { deleted_at: Date | null; is_abandoned: number })[]>(
 			...RESUMABLE_COLUMNS,
+			'deleted_at',
 			db.raw('deleted_at IS NOT NULL OR updated_at < CURRENT_TIMESTAMP(3) - INTERVAL ? HOUR AS is_abandoned', [
 				ABANDONED_AFTER_H
 			])
 		);
 	for (const row of rows) {
-		if (await finishResumable(db, store, row)) continue;
+		if (row.deleted_at === null && (await finishResumable(db, store, row))) continue;
 		if (row.is_abandoned === 1) await giveUp(db, row);
 	}
 	for (const id of await listParts(new Date(now.getTime() - STRAY_AFTER_MS))) {

@@ -57,7 +57,11 @@ export async function settleInTransaction(
 	const row = await trx('uploads')
 		.where({ id: received.id })
 		.forUpdate()
-		.first<{ state: string; same_as_id: number | null } | undefined>('state', 'same_as_id');
+		.first<{ state: string; same_as_id: number | null; deleted_at: Date | null } | undefined>(
+			'state',
+			'same_as_id',
+			'deleted_at'
+		);
 	if (!row) return null;
 	if (row.same_as_id !== null) return await publicIdOf(trx, row.same_as_id);
 	if (row.state !== 'receiving') return null;
@@ -82,7 +86,8 @@ export async function settleInTransaction(
 		.update({
 			...about,
 			state: 'stored',
-			content_key: kept.sha256,
+			// One that was deleted while it came in must not stand in the way of the same file.
+			content_key: row.deleted_at ? null : kept.sha256,
 			stored_at: trx.raw('CURRENT_TIMESTAMP(3)')
 		});
 	const job = { uploadId: received.id, revision: 1 };
