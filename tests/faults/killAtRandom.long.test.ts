@@ -4,4 +4,4 @@ import { killAtRandom } from './killAtRandom.ts';
 it('stores each of twenty files once when a process is killed at a random moment of each', async () => {
 	expect.hasAssertions();
 	await killAtRandom(20, 7);
-}, 1_200_000);
+}, 3_000_000);
