@@ -423,7 +423,7 @@ const ENTRIES: Record<string, Record<string, Entry>> = {
 	},
 	'/api/v1/layouts/[layout]/corner-map': {
 		GET: {
-			access: 'reads the run',
+			access: 'keeps the run',
 			scope: 'laps:read',
 			path: ({ layoutPublicId }) => `/api/v1/layouts/${layoutPublicId}/corner-map`,
 			ok: 200

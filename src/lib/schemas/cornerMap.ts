@@ -76,8 +76,7 @@ export const cornerMapViewSchema = z.object({
 		z.object({ version: z.number().int(), createdAt: z.iso.datetime(), createdBy: z.string().nullable() })
 	),
 	/** version that is being cut; null where none is */
-	pending: z.number().int().nullable(),
-	mayEdit: z.boolean()
+	pending: z.number().int().nullable()
 });
 export type CornerMapView = z.infer<typeof cornerMapViewSchema>;
 

@@ -7,8 +7,7 @@ import type { ReferencePath } from '../../analysis/model.ts';
 import { median } from '../../analysis/stats/quantile.ts';
 import type { Cell } from '../../schemas/analysisDocument.ts';
 import type { CornerMapAnswer, CornerMapChange, CornerMapView, MapCorner } from '../../schemas/cornerMap.ts';
-import { editedCircuits, seenLayouts } from '../access/seenLayouts.ts';
-import { seenOwners } from '../access/seenRuns.ts';
+import { editedCircuits } from '../access/seenLayouts.ts';
 import type { Viewer } from '../access/viewer.ts';
 import { recordAudit } from '../db/auditRepository.ts';
 import { findMap, insertMap, listMapVersions, listOnsets, type StoredMap } from '../db/cornerMapRepository.ts';
@@ -24,17 +23,16 @@ interface LayoutRow {
 	id: number;
 	map_version: number;
 	newest: number;
-	may_edit: number;
 }
 
 /**
- * The corner map that counts, with its kinks and its versions.
+ * The corner map that counts, with its kinks and its versions, for whoever may edit it: versions name people.
  *
- * @throws 404 when there is no such layout, or the viewer may not see it
+ * @throws 404 when there is no such layout, or the viewer may not edit it
  */
 export async function loadCornerMap(viewer: Viewer, layoutId: string): Promise<CornerMapView> {
 	const db = database();
-	const layout = await findLayout(db, viewer, layoutId, seenLayouts(db, viewer, await seenOwners(db, viewer)));
+	const layout = await findLayout(db, viewer, layoutId);
 	const [map, versions] = await Promise.all([
 		getMap(db, layout.id, layout.map_version),
 		listMapVersions(db, layout.id)
@@ -44,8 +42,7 @@ export async function loadCornerMap(viewer: Viewer, layoutId: string): Promise<C
 		corners: map.corners,
 		cells: map.cells,
 		versions,
-		pending: layout.newest > layout.map_version ? layout.newest : null,
-		mayEdit: layout.may_edit === 1
+		pending: layout.newest > layout.map_version ? layout.newest : null
 	};
 }
 
@@ -62,12 +59,12 @@ export async function changeCornerMap(
 	change: CornerMapChange
 ): Promise<CornerMapAnswer> {
 	const db = database();
-	const layout = await findLayout(db, viewer, layoutId, editedCircuits(db, viewer));
+	const layout = await findLayout(db, viewer, layoutId);
 	if (change.preview) return (await planned(db, layout, change)).answer;
 	return await retryOnDeadlock(db, async (trx) => {
 		// one editor at a time, and no version between the look and the change
 		await trx('layouts').where({ id: layout.id }).forUpdate().first('id');
-		const locked = await findLayout(trx, viewer, layoutId, editedCircuits(trx, viewer));
+		const locked = await findLayout(trx, viewer, layoutId);
 		const { answer, map, recut } = await planned(trx, locked, change);
 		await storeNames(trx, answer);
 		const version = recut ? locked.newest + 1 : null;
@@ -86,17 +83,16 @@ export async function changeCornerMap(
 	});
 }
 
-async function findLayout(db: Knex, viewer: Viewer, layoutId: string, condition: Knex.Raw): Promise<LayoutRow> {
+async function findLayout(db: Knex, viewer: Viewer, layoutId: string): Promise<LayoutRow> {
 	const key = decodePublicId(layoutId) ?? notFound();
 	const layout = await db('layouts')
 		.join('circuits', 'circuits.id', 'layouts.circuit_id')
 		.where('layouts.public_id', key)
-		.where(condition)
+		.where(editedCircuits(db, viewer))
 		.first<LayoutRow | undefined>(
 			'layouts.id',
 			'layouts.map_version',
-			db.raw('(SELECT MAX(version) FROM corner_maps WHERE corner_maps.layout_id = layouts.id) AS newest'),
-			db.raw('? AS may_edit', [editedCircuits(db, viewer)])
+			db.raw('(SELECT MAX(version) FROM corner_maps WHERE corner_maps.layout_id = layouts.id) AS newest')
 		);
 	return layout ?? notFound();
 }
