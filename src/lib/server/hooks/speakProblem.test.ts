@@ -3,7 +3,7 @@ import type { RequestEvent } from '@sveltejs/kit';
 import { describe, expect, it } from 'vitest';
 import { speakProblem } from './speakProblem.ts';
 
-type Asked = Pick<RequestEvent, 'request' | 'url' | 'route' | 'locals'>;
+type Asked = Pick<RequestEvent, 'request' | 'url' | 'route'> & { locals: Pick<App.Locals, 'requestId' | 'viewer'> };
 
 async function answer(method: string, path: string, resolve: () => Promise<Response>): Promise<Response> {
 	const url = new URL(path, 'http://localhost');
