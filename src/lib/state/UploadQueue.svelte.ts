@@ -61,6 +61,8 @@ export class UploadQueue {
 				if (known.phase === 'paused') this.resume(known);
 				continue;
 			}
+			// What the server knows of it becomes this row, once the transfer has found the upload again.
+			this.#take((row) => row.phase === 'elsewhere' && isBegunFrom(row, file));
 			this.#rows.push(new UploadRow(this.#nextKey++, file.name, file.size, file));
 			// A browser that keeps nothing (private window, full disk) only loses the way back after a reload.
 			if (keep) this.#door.kept.keep(file).catch(() => {});
@@ -173,6 +175,9 @@ export class UploadQueue {
 		for (const { id, onhead } of this.#listeners) if (id === head.id) onhead(head);
 		const rows = this.#rows.filter((row) => row.id === head.id);
 		if (rows.length === 0) {
+			// A file of this tab that has not found its upload again yet will speak for it.
+			const isOurs = ({ file, id }: UploadRow) => file !== null && id === null && isBegunFrom(head, file);
+			if (head.state === 'receiving' && this.#rows.some(isOurs)) return;
 			const row = new UploadRow(this.#nextKey++, head.fileName, head.sizeBytes, null);
 			row.id = head.id;
 			row.phase = 'elsewhere';
@@ -228,6 +233,11 @@ export class UploadQueue {
 		clearTimeout(this.#newsTimer);
 		this.#newsTimer = setTimeout(() => (this.news = describeProgress(this.#rows)), this.#newsAfterMs);
 	}
+}
+
+/** May what the server has begun to receive be of this file? */
+function isBegunFrom(begun: { sizeBytes: number; name?: string; fileName?: string }, file: File) {
+	return (begun.name ?? begun.fileName) === file.name && begun.sizeBytes === file.size;
 }
 
 /** The same file chosen again: browsers give a new object each time. */

@@ -167,6 +167,18 @@ describe('UploadQueue', () => {
 		expect(queue.rows.map(({ name }) => name)).toEqual(['a.csv']);
 	});
 
+	it('shows one row for a file that the browser kept and the server has begun to receive', async () => {
+		const { kept, queue, say, way } = door();
+		kept.set('a.csv', file('a.csv'));
+		await queue.begin();
+		say(head('a', { fileName: 'a.csv', state: 'receiving', receivedBytes: 1 }));
+		expect(queue.rows).toHaveLength(1);
+		way('a.csv').oncreated('a');
+		say(head('a', { fileName: 'a.csv', state: 'receiving', receivedBytes: 2 }));
+		expect(queue.rows).toHaveLength(1);
+		expect(queue.rows[0].phase).toBe('sending');
+	});
+
 	it('links the earlier upload where the same file was here before', async () => {
 		const { queue, way } = door({ ask: async (id) => head(id, { state: 'analysed' }) });
 		queue.add([file('a.csv')]);
