@@ -28,7 +28,6 @@ export function sealLetter(letter: Letter, secret: string): Buffer {
 /**
  * The letter, or null when it was sealed by another secret or changed since.
  *
- * @example openLetter(sealLetter(letter, secret), secret) // => letter
  */
 export function openLetter(sealed: Buffer, secret: string): Letter | null {
 	const nonce = sealed.subarray(0, NONCE_BYTES);

@@ -1,6 +1,10 @@
 const SIGNS: Record<string, string> = { '&': '&amp;', '<': '&lt;', '>': '&gt;', '"': '&quot;', "'": '&#39;' };
 
-/** @example escapeHtml('<b> & "') // => '&lt;b&gt; &amp; &quot;' */
+/**
+ * Text as HTML shows it.
+ *
+ * @example escapeHtml('<b> & "c"') // => "&lt;b&gt; &amp; &quot;c&quot;"
+ */
 export function escapeHtml(text: string): string {
 	return text.replaceAll(/[&<>"']/g, (sign) => SIGNS[sign]);
 }
