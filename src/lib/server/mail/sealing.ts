@@ -25,10 +25,7 @@ export function sealLetter(letter: Letter, secret: string): Buffer {
 	return Buffer.concat([nonce, cipher.getAuthTag(), body]);
 }
 
-/**
- * The letter, or null when it was sealed by another secret or changed since.
- *
- */
+/** The letter, or null when it was sealed by another secret or changed since. */
 export function openLetter(sealed: Buffer, secret: string): Letter | null {
 	const nonce = sealed.subarray(0, NONCE_BYTES);
 	const tag = sealed.subarray(NONCE_BYTES, NONCE_BYTES + TAG_BYTES);

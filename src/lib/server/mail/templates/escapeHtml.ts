@@ -3,7 +3,7 @@ const SIGNS: Record<string, string> = { '&': '&amp;', '<': '&lt;', '>': '&gt;', 
 /**
  * Text as HTML shows it.
  *
- * @example escapeHtml('<b> & "c"') // => "&lt;b&gt; &amp; &quot;c&quot;"
+ * @example escapeHtml('a<b') // => 'a&lt;b'
  */
 export function escapeHtml(text: string): string {
 	return text.replaceAll(/[&<>"']/g, (sign) => SIGNS[sign]);
