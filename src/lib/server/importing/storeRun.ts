@@ -10,7 +10,7 @@ import { newPublicId } from '../db/publicId.ts';
 import type { AnalysedRun } from './importMessages.ts';
 
 /** Raise it when the same file would give other numbers, so that stored runs can be told to be analysed again. */
-export const CODE_VERSION = 'analysis/1';
+export const CODE_VERSION = 'analysis/2';
 /** Rows of metrics in one statement. */
 const METRICS_AT_ONCE = 100;
 /** Moves the laps of the earlier reading out of the way of the new order; a run has fewer laps than this. */
