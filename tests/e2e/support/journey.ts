@@ -5,6 +5,8 @@ import { accountOf } from './accounts.ts';
 interface Journey {
 	/** statuses that the journey asks for: the browser writes a line for each, which is no error then */
 	refusals: number[];
+	/** does the journey cut requests itself: the browser writes a line for each of those too */
+	cutsLines: boolean;
 	/** goes to a path and waits until its buttons do something */
 	open: (path: string) => Promise<void>;
 	/** signs in through the form, as a person does */
@@ -16,11 +18,13 @@ interface Journey {
 /** Playwright's test with the steps that every journey takes; fails on any error in the browser's console. */
 export const test = base.extend<Journey>({
 	refusals: [[], { option: true }],
-	page: async ({ page, refusals }, use) => {
+	cutsLines: [false, { option: true }],
+	page: async ({ page, refusals, cutsLines }, use) => {
 		const errors: string[] = [];
 		page.on('console', (message) => {
 			const expected = refusals.some((status) => message.text().includes(`responded with a status of ${status} `));
-			if (message.type() === 'error' && !expected) errors.push(message.text());
+			const isCut = cutsLines && message.text().includes('net::ERR_');
+			if (message.type() === 'error' && !expected && !isCut) errors.push(message.text());
 		});
 		page.on('pageerror', (error) => errors.push(String(error)));
 		await use(page);
