@@ -44,27 +44,29 @@ function findRoutes(): Route[] {
 		[...Object.keys(modules), ...pages].filter((file) => !file.includes('+layout')).map(folderOf)
 	);
 	// As SvelteKit does: a name that is written out comes before one that stands for any.
-	return [...folders].sort((a, b) => (a.replaceAll('[', '~') < b.replaceAll('[', '~') ? -1 : 1)).map((folder) => {
-		const id = folder.slice('/src/routes'.length) || '/';
-		const segments = id.split('/').filter((part) => part !== '' && !/^\(.*\)$/.test(part));
-		const params: string[] = [];
-		const pattern = segments.map((part) => {
-			const param = /^\[(\w+)\]$/.exec(part);
-			if (!param) return part.replaceAll('.', '\\.');
-			params.push(param[1]);
-			return '([^/]+)';
+	return [...folders]
+		.sort((a, b) => (a.replaceAll('[', '~') < b.replaceAll('[', '~') ? -1 : 1))
+		.map((folder) => {
+			const id = folder.slice('/src/routes'.length) || '/';
+			const segments = id.split('/').filter((part) => part !== '' && !/^\(.*\)$/.test(part));
+			const params: string[] = [];
+			const pattern = segments.map((part) => {
+				const param = /^\[(\w+)\]$/.exec(part);
+				if (!param) return part.replaceAll('.', '\\.');
+				params.push(param[1]);
+				return '([^/]+)';
+			});
+			const has = (file: string) => (file in modules ? file : null);
+			return {
+				id,
+				pattern: new RegExp(`^/${pattern.join('/')}/?$`),
+				params,
+				isPage: pages.includes(`${folder}/+page.svelte`),
+				endpoint: has(`${folder}/+server.ts`),
+				page: has(`${folder}/+page.server.ts`),
+				layouts: ancestors(folder).flatMap((parent) => has(`${parent}/+layout.server.ts`) ?? [])
+			};
 		});
-		const has = (file: string) => (file in modules ? file : null);
-		return {
-			id,
-			pattern: new RegExp(`^/${pattern.join('/')}/?$`),
-			params,
-			isPage: pages.includes(`${folder}/+page.svelte`),
-			endpoint: has(`${folder}/+server.ts`),
-			page: has(`${folder}/+page.server.ts`),
-			layouts: ancestors(folder).flatMap((parent) => has(`${parent}/+layout.server.ts`) ?? [])
-		};
-	});
 }
 
 function folderOf(file: string): string {
