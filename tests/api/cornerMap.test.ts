@@ -6,6 +6,7 @@ import { cornerMapAnswerSchema, cornerMapViewSchema } from '../../src/lib/schema
 import { problemSchema } from '../../src/lib/schemas/api.ts';
 import { runViewSchema, type RunView } from '../../src/lib/schemas/views.ts';
 import { closeDatabase, database } from '../../src/lib/server/db/database.ts';
+import { decodePublicId } from '../../src/lib/server/db/publicId.ts';
 import { environment } from '../../src/lib/server/environment.ts';
 import { JobRunner } from '../../src/lib/server/jobs/jobRunner.ts';
 import { rawStore } from '../../src/lib/server/storage/store.ts';
@@ -68,11 +69,14 @@ async function cutAll(): Promise<void> {
 const numbered = (corners: readonly Pick<MapCorner, 'id' | 'number'>[]) =>
 	corners.flatMap(({ id, number }) => (number === null ? [] : [[number, id]]));
 
-/** Rows of metrics as stored: lap, corner's id, and one number. */
+/** The run's rows of metrics as stored: lap, corner's id, and one number. */
 function metrics(): Promise<{ number: number; lap_id: number; corner_id: number; min_kmh: number; time_s: number }[]> {
 	return database()('lap_corner_metrics')
-		.orderBy(['lap_id', 'number'])
-		.select('number', 'lap_id', 'corner_id', 'min_kmh', 'time_s');
+		.join('laps', 'laps.id', 'lap_corner_metrics.lap_id')
+		.join('runs', 'runs.id', 'laps.run_id')
+		.where('runs.public_id', decodePublicId(runId))
+		.orderBy(['lap_id', 'lap_corner_metrics.number'])
+		.select('lap_corner_metrics.number', 'lap_id', 'corner_id', 'min_kmh', 'lap_corner_metrics.time_s');
 }
 
 describe('a corner map', () => {
