@@ -8,7 +8,7 @@ import { readingOrganisations, type Viewer } from './viewer.ts';
  */
 
 /** A grant that holds now and admits the viewer; alias `grants`. Takes the viewer's id and organisations as bindings. */
-function holdingGrant(viewer: Viewer): { sql: string; bindings: Knex.RawBinding[] } {
+export function holdingGrant(viewer: Viewer): { sql: string; bindings: Knex.RawBinding[] } {
 	const organisations = readingOrganisations(viewer);
 	const grantee =
 		organisations.length === 0

@@ -49,6 +49,9 @@ import * as m410 from '../../../../migrations/20261201000410_date_focus_points.t
 import * as m301 from '../../../../migrations/20261201000301_create_mail_log.ts';
 import * as m302 from '../../../../migrations/20261201000302_create_mail_choices.ts';
 import * as m303 from '../../../../migrations/20261201000303_create_password_resets.ts';
+import * as m304 from '../../../../migrations/20261201000304_create_invitations.ts';
+import * as m305 from '../../../../migrations/20261201000305_create_guardian_requests.ts';
+import * as m306 from '../../../../migrations/20261201000306_create_intakes.ts';
 import * as m201 from '../../../../migrations/20261201181001_add_metrics_of_causes.ts';
 
 interface Migration {
@@ -97,6 +100,12 @@ export const migrations: readonly (readonly [name: string, migration: Migration]
 	['20261201000103_create_remembered_mappings.ts', m103],
 	['20261201000104_let_people_choose_layouts_of_runs.ts', m104],
 	['20261201000105_know_stored_files_again.ts', m105],
+	['20261201000301_create_mail_log.ts', m301],
+	['20261201000302_create_mail_choices.ts', m302],
+	['20261201000303_create_password_resets.ts', m303],
+	['20261201000304_create_invitations.ts', m304],
+	['20261201000305_create_guardian_requests.ts', m305],
+	['20261201000306_create_intakes.ts', m306],
 	['20261201000401_create_zone_note_revisions.ts', m401],
 	['20261201000402_create_zone_note_replies.ts', m402],
 	['20261201000403_create_debriefs.ts', m403],
@@ -107,9 +116,6 @@ export const migrations: readonly (readonly [name: string, migration: Migration]
 	['20261201000408_create_coach_phrases.ts', m408],
 	['20261201000409_create_in_tray_marks.ts', m409],
 	['20261201000410_date_focus_points.ts', m410],
-	['20261201000301_create_mail_log.ts', m301],
-	['20261201000302_create_mail_choices.ts', m302],
-	['20261201000303_create_password_resets.ts', m303],
 	['20261201181001_add_metrics_of_causes.ts', m201]
 ];
 

@@ -4,6 +4,7 @@ import { removeUnusedLayout } from '../db/layoutRepository.ts';
 import { decodePublicId } from '../db/publicId.ts';
 import { retryOnDeadlock } from '../db/retryOnDeadlock.ts';
 import { sweepMail } from '../mail/sweepMail.ts';
+import { sweepGuardianRequests } from '../services/invitations/guardianRequests.ts';
 import type { RawStore } from '../storage/rawStore.ts';
 import { storageKeyOf } from '../storage/store.ts';
 import { UNDO_DAYS } from '../upload/deleteUpload.ts';
@@ -26,6 +27,7 @@ export async function sweep(db: Knex, store: RawStore, now: Date): Promise<void>
 	await removeStrays(db, store, now);
 	await sweepThrottle(db);
 	await sweepMail(db);
+	await sweepGuardianRequests(db);
 	await db('jobs')
 		.whereIn('status', ['done', 'cancelled'])
 		.where('finished_at', '<', daysAgo(db, KEPT_DAYS))
