@@ -5,6 +5,7 @@ import { dirname } from 'node:path';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { OPERATIONS } from '../../src/lib/server/http/openApi.ts';
 import { closeDatabase, database } from '../../src/lib/server/db/database.ts';
+import { hashToken, newSecret } from '../../src/lib/server/auth/sessions.ts';
 import { encodePublicId, newPublicId } from '../../src/lib/server/db/publicId.ts';
 import { environment } from '../../src/lib/server/environment.ts';
 import { partPath } from '../../src/lib/server/upload/resumable/partStore.ts';
@@ -67,8 +68,35 @@ const READERS: readonly Actor[] = [
 ];
 const KEEPERS: readonly Actor[] = ['owner', 'guardian'];
 
+/** Notes, focus and debriefs of the matrix are by the coach whom the driver opened everything to. */
+const AUTHOR: Actor = 'coach with all';
+const LET_IN: Readonly<Partial<Record<string, readonly Actor[]>>> = {
+	'reads the run': READERS,
+	'keeps the run': KEEPERS,
+	'knows the driver': [...READERS, 'coach with another run', 'coach with another circuit'],
+	// The other run lies on the same layout.
+	'coaches on the layout': [...READERS, 'coach with another run'],
+	'reads the note': [...KEEPERS, AUTHOR, 'coach with the circuit', 'manager of the team', 'coach of the team'],
+	'answers for the focus': [...KEEPERS, AUTHOR],
+	'reads the debrief': [...KEEPERS, AUTHOR],
+	'writes the debrief': [AUTHOR],
+	'is the driver': KEEPERS
+};
+
 /** Who is let in; everybody else reads that nothing is there. */
-type Access = 'everybody' | 'signed in' | 'runs the site' | 'reads the run' | 'keeps the run';
+type Access =
+	| 'everybody'
+	| 'signed in'
+	| 'runs the site'
+	| 'reads the run'
+	| 'keeps the run'
+	| 'knows the driver'
+	| 'coaches on the layout'
+	| 'reads the note'
+	| 'answers for the focus'
+	| 'reads the debrief'
+	| 'writes the debrief'
+	| 'is the driver';
 type Scope = 'laps:read' | 'uploads:write' | 'runs:write';
 
 interface Entry {
@@ -113,6 +141,40 @@ const piece = (method: 'HEAD' | 'PATCH' | 'DELETE'): Omit<Entry, 'ok'> => ({
 /** Id of an unfinished upload, by the run of its owner. */
 const pieces = new Map<number, string>();
 
+/** What a coach wrote about the owner of each run; made new by `restoreCoaching`. */
+interface Coached {
+	note: string;
+	focus: string;
+	draft: string;
+	sent: string;
+	link: string;
+	linkId: string;
+}
+const coachedRuns = new Map<number, Coached & { keys: Record<'note' | 'focus' | 'draft' | 'sent' | 'link', number> }>();
+const owners = new Map<number, string>();
+const coached = ({ runId }: StoredRun): Coached => {
+	const of = coachedRuns.get(runId);
+	if (!of) throw new Error(`the matrix requires what a coach wrote on run ${runId}`);
+	return of;
+};
+const ownerOf = ({ runId }: StoredRun): string => owners.get(runId) ?? '';
+const TARGET = {
+	kind: 'peak_brake',
+	least: null,
+	most: 75,
+	base: 'value',
+	scope: { dryOnly: false, afterLap: null, holdsOver: null },
+	notSlower: true,
+	text: ''
+};
+const NOTE = { startM: 10, endM: 60, body: 'Firm, then slowly.', target: TARGET };
+const CONTENT = {
+	opening: 'A good hour.',
+	signature: 'Rhea',
+	sections: [],
+	tasks: [{ key: 'task-1', focus: null, title: 'Wait', where: '' }]
+};
+
 const ENTRIES: Record<string, Record<string, Entry>> = {
 	'/': { GET: { access: 'everybody', path: () => '/', ok: 200 } },
 	'/method': { GET: { access: 'everybody', path: () => '/method', ok: 200 } },
@@ -143,9 +205,64 @@ const ENTRIES: Record<string, Record<string, Entry>> = {
 			ok: 410
 		}
 	},
+	'/join/[token]': {
+		GET: { access: 'everybody', path: () => '/join/none', ok: 200 },
+		'POST ?/join': { access: 'everybody', path: () => '/join/none?/join', request: () => form({}), ok: 400 },
+		'POST ?/accept': {
+			access: 'signed in',
+			path: () => '/join/none?/accept',
+			request: () => form({ sees: 'all' }),
+			ok: 409
+		},
+		'POST ?/decline': { access: 'everybody', path: () => '/join/none?/decline', request: () => form({}), ok: 409 },
+		'POST ?/guard': { access: 'everybody', path: () => '/join/none?/guard', request: () => form({}), ok: 400 },
+		'POST ?/agree': { access: 'signed in', path: () => '/join/none?/agree', request: () => form({}), ok: 409 },
+		'POST ?/refuse': { access: 'everybody', path: () => '/join/none?/refuse', request: () => form({}), ok: 409 }
+	},
 	'/unsubscribe/[token]': {
 		GET: { access: 'everybody', path: () => '/unsubscribe/none', ok: 404 },
 		POST: { access: 'everybody', path: () => '/unsubscribe/none', request: () => form({}), ok: 404 }
+	},
+	'/(app)/drivers': {
+		GET: { access: 'signed in', path: () => '/drivers', ok: 200 },
+		'POST ?/invite': {
+			access: 'signed in',
+			path: () => '/drivers?/invite',
+			request: () => form({ email: 'nowhere', as: 'coach', asksFor: 'all' }),
+			ok: 400
+		},
+		// An invitation or a grant that is not one's own reads like one that never was.
+		'POST ?/again': {
+			access: 'signed in',
+			path: () => '/drivers?/again',
+			request: ({ runPublicId: id }) => form({ id }),
+			ok: 404
+		},
+		'POST ?/withdraw': {
+			access: 'signed in',
+			path: () => '/drivers?/withdraw',
+			request: ({ runPublicId: id }) => form({ id }),
+			ok: 404
+		},
+		'POST ?/revoke': {
+			access: 'signed in',
+			path: () => '/drivers?/revoke',
+			request: ({ runPublicId: id }) => form({ id }),
+			ok: 404
+		}
+	},
+	'/(app)/drivers/[driver]': {
+		GET: { access: 'knows the driver', path: (at) => `/drivers/${ownerOf(at)}`, ok: 200 }
+	},
+	'/(app)/drivers/[driver]/intake': {
+		GET: { access: 'keeps the run', path: (at) => `/drivers/${ownerOf(at)}/intake`, ok: 200 },
+		// A version that nobody has: it was saved elsewhere meanwhile.
+		POST: {
+			access: 'keeps the run',
+			path: (at) => `/drivers/${ownerOf(at)}/intake`,
+			request: () => form({ version: '99' }),
+			ok: 409
+		}
 	},
 	'/(app)/admin/outbox': { GET: { access: 'runs the site', path: () => '/admin/outbox', ok: 200 } },
 	'/(app)/admin/outbox/[letter]': {
@@ -441,6 +558,238 @@ const ENTRIES: Record<string, Record<string, Entry>> = {
 			ok: 200
 		}
 	},
+	'/(app)/in-tray': {
+		GET: { access: 'signed in', path: () => '/in-tray', ok: 200 },
+		...Object.fromEntries(
+			(['close', 'reopen', 'promise'] as const).map((action): [string, Entry] => [
+				`POST ?/${action}`,
+				{
+					access: 'reads the run',
+					path: () => `/in-tray?/${action}`,
+					request: ({ runPublicId: run }) => form({ run, by: '2026-06-01' }),
+					ok: 200
+				}
+			])
+		),
+		'POST ?/draft': {
+			access: 'reads the run',
+			path: () => '/in-tray?/draft',
+			request: ({ runPublicId: run }) => form({ run }),
+			ok: 303
+		}
+	},
+	'/(app)/focus': {
+		GET: { access: 'knows the driver', path: (own) => `/focus?of=${ownerOf(own)}`, ok: 200 },
+		'POST ?/state': {
+			access: 'answers for the focus',
+			path: () => '/focus?/state',
+			request: (own) => form({ focus: coached(own).focus, state: 'met' }),
+			ok: 200
+		}
+	},
+	'/(app)/debriefs': { GET: { access: 'signed in', path: () => '/debriefs', ok: 200 } },
+	'/(app)/debriefs/[debrief]': {
+		GET: { access: 'reads the debrief', path: (own) => `/debriefs/${coached(own).sent}`, ok: 200 }
+	},
+	'/(app)/debriefs/phrases': {
+		GET: { access: 'signed in', path: () => '/debriefs/phrases', ok: 200 },
+		'POST ?/keep': {
+			access: 'signed in',
+			path: () => '/debriefs/phrases?/keep',
+			request: () => form({ code: '', body: '' }),
+			ok: 400
+		},
+		'POST ?/drop': {
+			access: 'signed in',
+			path: () => '/debriefs/phrases?/drop',
+			request: ({ runPublicId: id }) => form({ id }),
+			ok: 404
+		}
+	},
+	'/d/[token]': { GET: { access: 'everybody', path: (own) => coached(own).link, ok: 200 } },
+	'/api/v1/notes': {
+		GET: {
+			access: 'coaches on the layout',
+			scope: 'laps:read',
+			path: ({ layoutPublicId }) => `/api/v1/notes?layout=${layoutPublicId}`,
+			ok: 200
+		},
+		POST: {
+			access: 'coaches on the layout',
+			scope: 'runs:write',
+			path: () => '/api/v1/notes',
+			request: (own) =>
+				json('POST', { ...NOTE, layout: own.layoutPublicId, driver: ownerOf(own), corner: own.cornerPublicId }),
+			ok: 201
+		}
+	},
+	'/api/v1/notes/[note]': {
+		GET: { access: 'reads the note', scope: 'laps:read', path: (own) => `/api/v1/notes/${coached(own).note}`, ok: 200 },
+		PATCH: {
+			access: 'writes the debrief',
+			scope: 'runs:write',
+			path: (own) => `/api/v1/notes/${coached(own).note}`,
+			request: () => json('PATCH', { ...NOTE, corner: null, revision: 1 }),
+			ok: 200
+		},
+		DELETE: {
+			access: 'writes the debrief',
+			scope: 'runs:write',
+			path: (own) => `/api/v1/notes/${coached(own).note}`,
+			request: () => ({ method: 'DELETE' }),
+			ok: 204
+		}
+	},
+	'/api/v1/notes/[note]/restore': {
+		POST: {
+			access: 'writes the debrief',
+			scope: 'runs:write',
+			path: (own) => `/api/v1/notes/${coached(own).note}/restore`,
+			request: () => ({ method: 'POST' }),
+			ok: 200
+		}
+	},
+	'/api/v1/notes/[note]/replies': {
+		POST: {
+			access: 'reads the note',
+			scope: 'runs:write',
+			path: (own) => `/api/v1/notes/${coached(own).note}/replies`,
+			request: () => json('POST', { body: 'I felt that.' }),
+			ok: 201
+		}
+	},
+	'/api/v1/focus': {
+		GET: {
+			access: 'knows the driver',
+			scope: 'laps:read',
+			path: (own) => `/api/v1/focus?driver=${ownerOf(own)}`,
+			ok: 200
+		},
+		POST: {
+			access: 'coaches on the layout',
+			scope: 'runs:write',
+			path: () => '/api/v1/focus',
+			request: (own) =>
+				json('POST', {
+					driver: ownerOf(own),
+					layout: own.layoutPublicId,
+					car: null,
+					corner: own.cornerPublicId,
+					target: TARGET
+				}),
+			ok: 201
+		}
+	},
+	'/api/v1/focus/[focus]': {
+		GET: {
+			access: 'reads the note',
+			scope: 'laps:read',
+			path: (own) => `/api/v1/focus/${coached(own).focus}`,
+			ok: 200
+		},
+		PATCH: {
+			access: 'answers for the focus',
+			scope: 'runs:write',
+			path: (own) => `/api/v1/focus/${coached(own).focus}`,
+			request: () => json('PATCH', { state: 'dropped' }),
+			ok: 200
+		}
+	},
+	'/api/v1/debriefs': {
+		GET: { access: 'signed in', scope: 'laps:read', path: () => '/api/v1/debriefs', ok: 200 },
+		POST: {
+			access: 'reads the run',
+			scope: 'runs:write',
+			path: () => '/api/v1/debriefs',
+			request: ({ runPublicId: run }) => json('POST', { run }),
+			ok: 201
+		}
+	},
+	'/api/v1/debriefs/[debrief]': {
+		GET: {
+			access: 'writes the debrief',
+			scope: 'laps:read',
+			path: (own) => `/api/v1/debriefs/${coached(own).draft}`,
+			ok: 200
+		},
+		PUT: {
+			access: 'writes the debrief',
+			scope: 'runs:write',
+			path: (own) => `/api/v1/debriefs/${coached(own).draft}`,
+			request: () => json('PUT', { revision: 1, content: CONTENT }),
+			ok: 200
+		},
+		DELETE: {
+			access: 'writes the debrief',
+			scope: 'runs:write',
+			path: (own) => `/api/v1/debriefs/${coached(own).draft}`,
+			request: () => ({ method: 'DELETE' }),
+			ok: 204
+		}
+	},
+	'/api/v1/debriefs/[debrief]/restore': {
+		POST: {
+			access: 'writes the debrief',
+			scope: 'runs:write',
+			path: (own) => `/api/v1/debriefs/${coached(own).draft}/restore`,
+			request: () => ({ method: 'POST' }),
+			ok: 200
+		}
+	},
+	'/api/v1/debriefs/[debrief]/send': {
+		POST: {
+			access: 'writes the debrief',
+			scope: 'runs:write',
+			path: (own) => `/api/v1/debriefs/${coached(own).draft}/send`,
+			request: () => json('POST', { revision: 1 }),
+			ok: 200
+		}
+	},
+	'/api/v1/debriefs/[debrief]/read': {
+		POST: {
+			access: 'reads the debrief',
+			scope: 'runs:write',
+			path: (own) => `/api/v1/debriefs/${coached(own).sent}/read`,
+			request: () => ({ method: 'POST' }),
+			ok: 204
+		}
+	},
+	'/api/v1/debriefs/[debrief]/ticks': {
+		PUT: {
+			access: 'is the driver',
+			scope: 'runs:write',
+			path: (own) => `/api/v1/debriefs/${coached(own).sent}/ticks`,
+			request: () => json('PUT', { item: 'task-1', ticked: true }),
+			ok: 200
+		}
+	},
+	'/api/v1/debriefs/[debrief]/replies': {
+		POST: {
+			access: 'reads the debrief',
+			scope: 'runs:write',
+			path: (own) => `/api/v1/debriefs/${coached(own).sent}/replies`,
+			request: () => json('POST', { body: 'Tried it.' }),
+			ok: 201
+		}
+	},
+	'/api/v1/debriefs/[debrief]/links': {
+		POST: {
+			access: 'reads the debrief',
+			scope: 'runs:write',
+			path: (own) => `/api/v1/debriefs/${coached(own).sent}/links`,
+			request: () => json('POST', { days: 7 }),
+			ok: 201
+		}
+	},
+	'/api/v1/debriefs/[debrief]/links/[link]': {
+		DELETE: {
+			access: 'is the driver',
+			scope: 'runs:write',
+			path: (own) => `/api/v1/debriefs/${coached(own).sent}/links/${coached(own).linkId}`,
+			request: () => ({ method: 'DELETE' }),
+			ok: 204
+		}
+	},
 	'/api/v1/layouts/[layout]/names': {
 		PATCH: {
 			access: 'keeps the run',
@@ -501,7 +850,13 @@ beforeAll(async () => {
 	await token("owner's token to edit", ['runs:write', 'laps:read']);
 	await token("owner's expired token", ['laps:read'], new Date(Date.now() - 1000));
 	await person('guardian', (who) => addGuardian(who, mira));
-	await person('coach with all', (to) => makeGrant(mira, { to }));
+	await person('coach with all', async (to) => {
+		await makeGrant(mira, { to });
+		await writeCoaching(own, mira, to);
+	});
+	const stranger = await makePerson('a coach of others');
+	await makeGrant(tomas, { to: stranger });
+	await writeCoaching(foreign, tomas, stranger);
 	await person('coach with the run', (to) => makeGrant(mira, { to, scope: 'run', runId: own.runId }));
 	await person('coach with the circuit', (to) => makeGrant(mira, { to, scope: 'circuit', circuitId: own.circuitId }));
 	await person('coach with the event', (to) => makeGrant(mira, { to, scope: 'event', eventId }));
@@ -545,11 +900,12 @@ function expected(actor: Actor, routeId: string, operation: string, entry: Entry
 		const scopes = { "owner's token to read": ['laps:read'], "owner's token to upload": ['uploads:write'] }[
 			actor as string
 		] ?? ['runs:write', 'laps:read'];
-		return scopes.includes(entry.scope ?? '') ? entry.ok : 403;
+		if (!scopes.includes(entry.scope ?? '')) return 403;
+		return LET_IN[entry.access]?.includes('owner') === false ? 404 : entry.ok;
 	}
 	if (entry.access === 'signed in') return entry.ok;
 	if (entry.access === 'runs the site') return actor === 'site operator' ? entry.ok : 404;
-	return (entry.access === 'reads the run' ? READERS : KEEPERS).includes(actor) ? entry.ok : 404;
+	return LET_IN[entry.access]?.includes(actor) ? entry.ok : 404;
 }
 
 /** An event stream never ends by itself: its first piece. */
@@ -570,11 +926,96 @@ async function send(actor: Actor, entry: Entry, at: StoredRun): Promise<Response
 /** What is taken away by a test comes back for the next. */
 async function restore(actor: Actor, entry: Entry): Promise<void> {
 	if (entry.endsSignIn) jars.delete(actor);
+	if (/^(coaches|reads the (note|debrief)|answers|writes|is the)/.test(entry.access)) await restoreCoaching();
 	if (entry.access !== 'keeps the run') return;
 	const db = database();
 	await db('runs').whereIn('id', [own.runId, foreign.runId]).update({ deleted_at: null });
 	await db('uploads').whereIn('id', [own.uploadId, foreign.uploadId]).update({ deleted_at: null });
 	await prepare();
+}
+
+/** What a coach wrote on each run, as it was before a request changed it. */
+async function restoreCoaching(): Promise<void> {
+	const db = database();
+	for (const { keys } of coachedRuns.values()) {
+		await db('zone_notes').where({ id: keys.note }).update({ revision: 1, deleted_at: null, body: NOTE.body });
+		await db('zone_note_revisions').where({ zone_note_id: keys.note }).delete();
+		await db('focus_points').where({ id: keys.focus }).update({ state: 'open', closed_at: null });
+		await db('sent_debriefs').where({ debrief_id: keys.draft }).delete();
+		await db('debriefs').where({ id: keys.draft }).update({ revision: 1, deleted_at: null, sent_at: null });
+		await db('debrief_links').where({ id: keys.link }).update({ revoked_at: null });
+		await db('debrief_links').whereNot({ id: keys.link }).where({ sent_debrief_id: keys.sent }).delete();
+	}
+}
+
+/** A note, a focus, a draft and a sent debrief with a link, by one coach on one run. */
+async function writeCoaching(at: StoredRun, driver: TestPerson, author: TestPerson): Promise<void> {
+	const db = database();
+	owners.set(at.runId, driver.publicId);
+	const id = () => newPublicId();
+	const ids = { note: id(), focus: id(), draft: id(), sent: id(), link: id() };
+	const corner = await db('corners').where({ layout_id: at.layoutId }).orderBy('id').first('id');
+	const on = { driver_id: driver.id, layout_id: at.layoutId, corner_id: corner.id };
+	const target = JSON.stringify(TARGET);
+	const [note]: number[] = await db('zone_notes').insert({
+		...on,
+		public_id: ids.note,
+		author_id: author.id,
+		path_version: 1,
+		start_m: NOTE.startM,
+		end_m: NOTE.endM,
+		body: NOTE.body,
+		target
+	});
+	const [focus]: number[] = await db('focus_points').insert({ ...on, public_id: ids.focus, set_by: author.id, target });
+	const [reference, lap] = at.lapIds;
+	const debrief = {
+		author_id: author.id,
+		driver_id: driver.id,
+		run_id: at.runId,
+		lap_id: lap,
+		reference_lap_id: reference,
+		content: JSON.stringify(CONTENT)
+	};
+	const [draft]: number[] = await db('debriefs').insert({ ...debrief, public_id: ids.draft });
+	const [sentDebrief]: number[] = await db('debriefs').insert({
+		...debrief,
+		public_id: ids.sent,
+		sent_at: new Date()
+	});
+	const facts = {
+		coach: author.name,
+		driver: driver.name,
+		where: 'Vallmere Park',
+		gapS: 0.1,
+		lap: 'lap 2',
+		reference: 'lap 1',
+		ledger: [],
+		plan: null,
+		corners: [],
+		cautions: []
+	};
+	const [sent]: number[] = await db('sent_debriefs').insert({
+		debrief_id: sentDebrief,
+		document: JSON.stringify({ content: CONTENT, facts })
+	});
+	const token = newSecret();
+	const [link]: number[] = await db('debrief_links').insert({
+		public_id: ids.link,
+		sent_debrief_id: sent,
+		token_hash: hashToken(token),
+		created_by: driver.id,
+		expires_at: new Date(Date.now() + 86_400_000)
+	});
+	coachedRuns.set(at.runId, {
+		note: encodePublicId(ids.note),
+		focus: encodePublicId(ids.focus),
+		draft: encodePublicId(ids.draft),
+		sent: encodePublicId(ids.sent),
+		link: `/d/${token}`,
+		linkId: encodePublicId(ids.link),
+		keys: { note, focus, draft, sent, link }
+	});
 }
 
 /** What one request takes away or goes on with, made anew: an unfinished upload, an answer that is remembered. */
@@ -648,7 +1089,7 @@ describe.each(
 			}
 			if (response.status === 404) expect(text).not.toContain(SECRETS.mira);
 			expect(text).not.toContain(SECRETS.foreign);
-			if (entry.access === 'reads the run' || entry.access === 'keeps the run') {
+			if (entry.access in LET_IN) {
 				const other = await send(actor, entry, foreign);
 				expect([303, 401, 403, 404]).toContain(other.status);
 				if (isIn(actor) && !isToken(actor)) expect(other.status).toBe(404);

@@ -1,12 +1,14 @@
 import type { Knex } from 'knex';
 import { formatDay } from '../../format/date.ts';
 import { plainText } from '../../format/richText.ts';
-import type { DebriefDocument } from '../../schemas/debrief.ts';
+import type { DebriefDocument, DebriefView } from '../../schemas/debrief.ts';
 import type { Viewer } from '../access/viewer.ts';
 import type { FoundDebrief } from '../db/debriefRepository.ts';
-import { encodePublicId } from '../db/publicId.ts';
+import { decodePublicId, encodePublicId } from '../db/publicId.ts';
 import type { MailInput } from '../mail/mailKinds.ts';
+import { mailSettings } from '../mail/mailSettings.ts';
 import { queueMail } from '../mail/queueMail.ts';
+import { renderLetter } from '../mail/templates/renderLetter.ts';
 
 const MOST_POINTS = 5;
 const LONGEST_POINT = 300;
@@ -67,3 +69,16 @@ export async function tellOfAnswer(
 }
 
 const debriefPath = ({ public_id }: Pick<FoundDebrief, 'public_id'>) => `/debriefs/${encodePublicId(public_id)}`;
+
+/** The letter as it would go out now, for the coach to look at. */
+export function previewLetter({ id, driver, document }: DebriefView): { subject: string; html: string; text: string } {
+	const publicId = decodePublicId(id);
+	if (!publicId) throw new RangeError(`previewLetter requires the id of a debrief, got ${id}`);
+	const input = debriefLetter({ public_id: publicId, driver_id: 1 }, document);
+	const { subject, html, text } = renderLetter(input, {
+		origin: mailSettings().origin,
+		readerName: driver.name,
+		unsubscribeUrl: null
+	});
+	return { subject, html, text };
+}
