@@ -6,10 +6,14 @@ import { newPublicId } from '../src/lib/server/db/publicId.ts';
 import { receiveUpload } from '../src/lib/server/upload/receiveUpload.ts';
 import { nameLayout } from './demoLayouts.ts';
 import { DEMO_PEOPLE, seedPeople, seedTeam, type DemoPerson } from './demoPeople.ts';
+import { seedCoaching } from './seedCoaching.ts';
 
 /** The run whose best lap is the coach's reference; it comes first, so that later runs find its layout. */
 const REFERENCE = 'reference';
 const EVENT = 'Vallmere Park, 24 May';
+/** The run that the coach wrote a debrief on, and the evening on which they did: the runs after it are scored. */
+const DEBRIEFED = 'first';
+const DEBRIEFED_AT = new Date('2026-05-03T19:30:00Z');
 
 interface SeededRun {
 	id: number;
@@ -75,6 +79,15 @@ export async function seedDemo({ db, accountsPath, worked }: DemoTools): Promise
 		await admit(db, { owner_id: driver, grantee_organisation_id: team, scope: 'event', event_id: eventId });
 	}
 	await shelve(db, referenceRun);
+	const debriefed = others.find(({ key }) => key === DEBRIEFED);
+	if (!debriefed) throw new Error(`the demo requires a run ${DEBRIEFED}`);
+	const { id: runId } = await describe(db, debriefed, ownerOf(debriefed));
+	await seedCoaching(db, {
+		coachId: personOf('rhea'),
+		driverId: personOf('mira'),
+		runId,
+		agreedAt: DEBRIEFED_AT
+	});
 }
 
 /** Uploads a run's file where the person has not handed it over yet. */

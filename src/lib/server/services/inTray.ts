@@ -5,7 +5,7 @@ import type { InTrayItem } from '../../schemas/inTray.ts';
 import { targetText } from '../../texts/targets.ts';
 import { US_PER_S } from '../../units.ts';
 import { seenOwners } from '../access/seenRuns.ts';
-import type { Viewer } from '../access/viewer.ts';
+import { readingOrganisations, type Viewer } from '../access/viewer.ts';
 import { database } from '../db/database.ts';
 import { listFoundFocus, seenFocusRows } from '../db/focusRepository.ts';
 import { listLayoutHeads } from '../db/layoutHeads.ts';
@@ -110,18 +110,40 @@ async function mark(
 		.merge(Object.keys(change));
 }
 
-/** Whose runs the viewer may see, but for themself, and for those who coach the viewer: a coach who lends a reference waits for nothing. */
+/**
+ * Whose runs the viewer may see, but for themself, and for those who coach the viewer and only lend a run: a coach who lends a reference
+ * waits for nothing.
+ */
 async function listCoached(db: Knex, viewer: Viewer): Promise<number[]> {
 	const owners = await seenOwners(db, viewer);
+	const organisations = readingOrganisations(viewer);
 	return await db('people')
 		.whereIn('people.id', owners)
 		.whereNot('people.id', viewer.personId)
-		.whereRaw(
-			`NOT EXISTS (SELECT 1 FROM grants WHERE grants.owner_id = ? AND grants.revoked_at IS NULL
-				AND (grants.grantee_person_id = people.id OR grants.grantee_organisation_id IN (
-					SELECT memberships.organisation_id FROM memberships WHERE memberships.person_id = people.id
-						AND memberships.role IN ('coach', 'manager') AND memberships.ended_at IS NULL)))`,
-			[viewer.personId]
+		.whereNot((lends) =>
+			lends
+				.whereExists(
+					db('grants')
+						.where({ 'grants.owner_id': viewer.personId })
+						.whereNot({ 'grants.scope': 'run' })
+						.whereNull('grants.revoked_at')
+						.whereRaw(
+							`(grants.grantee_person_id = people.id OR grants.grantee_organisation_id IN (
+								SELECT memberships.organisation_id FROM memberships WHERE memberships.person_id = people.id
+									AND memberships.role IN ('coach', 'manager') AND memberships.ended_at IS NULL))`
+						)
+				)
+				.whereNotExists(
+					db('grants')
+						.whereRaw('grants.owner_id = people.id')
+						.whereNot({ 'grants.scope': 'run' })
+						.whereNull('grants.revoked_at')
+						.where((mine) =>
+							mine
+								.where('grants.grantee_person_id', viewer.personId)
+								.orWhereIn('grants.grantee_organisation_id', organisations)
+						)
+				)
 		)
 		.pluck<number[]>('people.id');
 }
