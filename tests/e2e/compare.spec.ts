@@ -117,13 +117,19 @@ test('a card prints on one landscape page, light whatever the screen', async ({ 
 	await page.emulateMedia({ colorScheme: 'dark' });
 	await signIn('Mira Tansley');
 	const path = await openComparison(page);
-	await page.goto(`${path}/2`);
-	await hydrated(page);
-	for (const format of ['A4', 'Letter'] as const) {
-		const pdf = (await page.pdf({ format, preferCSSPageSize: true })).toString('latin1');
-		expect(pdf.match(/\/Type\s*\/Page\b/g), format).toHaveLength(1);
-		const [, width, height] = pdf.match(/\/MediaBox\s*\[\s*0 0 ([\d.]+) ([\d.]+)\s*\]/) ?? [];
-		expect(Number(width), format).toBeGreaterThan(Number(height));
+	const cards = await page
+		.locator(`main a[href^="${path}/"]`)
+		.evaluateAll((links) => links.map((link) => link.getAttribute('href') ?? '').filter((href) => /\/\d+$/.test(href)));
+	expect(cards.length).toBeGreaterThan(0);
+	for (const card of new Set(cards)) {
+		await page.goto(card);
+		await hydrated(page);
+		for (const format of ['A4', 'Letter'] as const) {
+			const pdf = (await page.pdf({ format, preferCSSPageSize: true })).toString('latin1');
+			expect(pdf.match(/\/Type\s*\/Page\b/g), `${card} on ${format}`).toHaveLength(1);
+			const [, width, height] = pdf.match(/\/MediaBox\s*\[\s*0 0 ([\d.]+) ([\d.]+)\s*\]/) ?? [];
+			expect(Number(width), `${card} on ${format}`).toBeGreaterThan(Number(height));
+		}
 	}
 	await page.emulateMedia({ media: 'print', colorScheme: 'dark' });
 	expect(await page.evaluate(() => getComputedStyle(document.body).backgroundColor)).toBe('rgb(255, 255, 255)');
