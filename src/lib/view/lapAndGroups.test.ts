@@ -108,11 +108,13 @@ describe('linkedGroups', () => {
 	});
 	it('tells a trade that pays from one that does not', () => {
 		const verdict = (costs: Record<number, number>) => linkedGroups(linked([[4, 5]], costs))[0].verdict;
-		expect(verdict({ 4: 0.05, 5: -0.12 })).toMatch(/^Tern Hairpin is given away for .+, and that pays\.$/);
+		expect(verdict({ 4: 0.05, 5: -0.12 })).toMatch(/^Time is given away in Tern Hairpin for .+, and that pays\.$/);
 		expect(verdict({ 4: 0.2, 5: -0.05 })).toMatch(/and that does not pay\.$/);
-		expect(verdict({ 4: -0.05, 5: 0.2 })).toMatch(/ is taken at the cost of .+, and that does not pay\.$/);
+		expect(verdict({ 4: -0.05, 5: 0.2 })).toMatch(
+			/^Time is gained in Tern Hairpin at the cost of .+, and that does not pay\.$/
+		);
 		expect(verdict({ 4: 0.1, 5: 0.1 })).toMatch(/^Each costs time by itself/);
-		expect(verdict({ 4: 0.001, 5: 0.002 })).toMatch(/^Neither/);
+		expect(verdict({ 4: 0.001, 5: 0.002 })).toMatch(/^Nothing here/);
 	});
 	it('carries the largest cause and where it is', () => {
 		const [group] = linkedGroups(linked([[4, 5]], { 4: 0.312, 5: -0.029 }));

@@ -9,7 +9,7 @@ export interface LinkedGroup {
 	corners: { number: number; call: string; text: string; word: DeltaWord }[];
 	/** what they cost together */
 	total: { deltaS: number; text: string; word: DeltaWord };
-	/** "0.31 s is lost in Tern Hairpin and 0.03 s won back in Weir", as far as they differ */
+	/** "Time is given away in Tern Hairpin for Weir, and that does not pay." */
 	verdict: string;
 	/** the largest cause among them, and where it is; empty where there is none */
 	cause: TextPart[];
@@ -64,7 +64,7 @@ function verdictOf(members: { corner: CornerView; deltaS: number }[], totalS: nu
 	const lost = members.filter(({ deltaS }) => deltaS >= CLEAR_S);
 	const found = members.filter(({ deltaS }) => deltaS <= -CLEAR_S);
 	const names = (of: typeof members): string => of.map(({ corner }) => cornerInWords(corner)).join(' and ');
-	if (lost.length === 0 && found.length === 0) return 'Neither sets the two laps apart: leave them as they are.';
+	if (lost.length === 0 && found.length === 0) return 'Nothing here sets the two laps apart: leave it as it is.';
 	if (found.length === 0)
 		return lost.length === members.length
 			? 'Each costs time by itself: begin with the first, for it hands its speed on.'
@@ -73,6 +73,6 @@ function verdictOf(members: { corner: CornerView; deltaS: number }[], totalS: nu
 	const firstLoses = members.indexOf(lost[0]) < members.indexOf(found[0]);
 	const paid = deltaWord(totalS, 2) === 'lost' ? 'and that does not pay' : 'and that pays';
 	return firstLoses
-		? `${names(lost)} is given away for ${names(found)}, ${paid}.`
-		: `${names(found)} is taken at the cost of ${names(lost)}, ${paid}.`;
+		? `Time is given away in ${names(lost)} for ${names(found)}, ${paid}.`
+		: `Time is gained in ${names(found)} at the cost of ${names(lost)}, ${paid}.`;
 }
