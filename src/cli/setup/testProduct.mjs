@@ -31,7 +31,8 @@ export async function serveForJourneys(serverUrl) {
 		movable: true
 	});
 	// The person's own settings are for their product: the journeys run on known ones.
-	const given = { ...process.env, ORIGIN: '', HOST: '127.0.0.1', AUTH_SECRET: '', KERBNOTE_STORAGE: '' };
+	const known = { ORIGIN: '', HOST: '127.0.0.1', AUTH_SECRET: '', KERBNOTE_STORAGE: '', KERBNOTE_SMTP_URL: '' };
+	const given = { ...process.env, ...known };
 	const env = productEnvironment({ folders, databaseUrl: database, demo: true, port, given });
 	const { build, logs } = folders;
 	await migrateAndSeed({
