@@ -16,6 +16,7 @@ import { MOTION_CHANNELS, speedFromWheels } from './speedFromWheels.ts';
 import { MIN_SAMPLES, splitRuns } from './splitRuns.ts';
 import { buildTimeline } from './timeline.ts';
 import type { Timeline } from './timeline.ts';
+import { turnColumns } from './turnColumns.ts';
 
 export interface ReadTable {
 	columns: Columns;
@@ -87,6 +88,7 @@ export function buildRuns(table: ReadTable): RawRun[] {
 	// Rows that were left out (a footer's maxima) may have set a range.
 	const ranges = timeline.kept ? rangesOf(columns) : table.ranges;
 	relabelRestartingDistance(columns, ranges, byChannel);
+	turnColumns(columns, ranges, byChannel);
 	const resolved = resolveUnits(columns, ranges, timeline.seconds, byChannel);
 	const speedWarnings = speedFromWheels(columns, byChannel, resolved, table.source.headerRow);
 	refuseStill(columns, { row: lines[0], column: byChannel.get('speed')?.header ?? null });

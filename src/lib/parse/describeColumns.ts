@@ -33,7 +33,8 @@ export function describeColumns(
 			confidence: Math.round(plan.confidence * 100) / 100,
 			min: Number.isFinite(min) ? min : null,
 			max: Number.isFinite(max) ? max : null,
-			samples: plan.samples
+			samples: plan.samples,
+			...(plan.turned ? { turned: true } : {})
 		};
 	});
 }

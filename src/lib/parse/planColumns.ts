@@ -28,6 +28,8 @@ export interface ColumnPlan {
 	duplicateOf: string | null;
 	/** set by a person: values are not second-guessed */
 	mapped: boolean;
+	/** a person says that its values count the other way */
+	turned: boolean;
 }
 
 const MAX_SAMPLES = 3;
@@ -63,11 +65,18 @@ export function planColumns(table: Table, mapping?: ColumnMapping): ColumnPlan[]
 			words: false,
 			samples,
 			duplicateOf: null,
-			mapped: false
+			mapped: false,
+			turned: false
 		};
 		if (set) {
 			const chosen = set.unit && isUnitId(set.unit) ? unitById(set.unit) : channel === set.channel ? unit : null;
-			Object.assign(plan, { channel: set.channel, unit: chosen, confidence: set.channel ? 1 : 0, mapped: true });
+			Object.assign(plan, {
+				channel: set.channel,
+				unit: chosen,
+				confidence: set.channel ? 1 : 0,
+				mapped: true,
+				turned: set.turned ?? false
+			});
 		}
 		return readForm(plan, cells, table.decimal);
 	});

@@ -24,7 +24,9 @@ export const sourceColumnSchema = z.object({
 	confidence: z.number(),
 	min: nullable,
 	max: nullable,
-	samples: z.array(z.string())
+	samples: z.array(z.string()),
+	/** true where a person said that its values count the other way */
+	turned: z.boolean().optional()
 });
 export type SourceColumn = z.infer<typeof sourceColumnSchema>;
 

@@ -13,7 +13,12 @@ export const columnMappingSchema = z.object({
 				/** null: leave the column out */
 				channel: channelSchema.nullable(),
 				/** unit in the file, as in `SourceColumn.unit`; absent: as declared, else by the values */
-				unit: z.string().max(20).optional()
+				unit: z.string().max(20).optional(),
+				/**
+				 * its values count the other way: steering with right positive, a pedal that rests at its largest value. A sign that the path or
+				 * the pedals' own work shows is still put right afterwards
+				 */
+				turned: z.boolean().optional()
 			})
 		)
 		.max(1000)

@@ -49,6 +49,18 @@ describe('mappingFromForm', () => {
 		expect(mapping?.columns[1]).toEqual({ header: 'v', index: 1, channel: 'speed', unit: 'mph' });
 	});
 
+	it('turns a column round, and keeps it turned when laps are counted otherwise', () => {
+		const { mapping } = mappingFromForm(
+			form({ ...unchanged, 'sign:brake': 'turned', 'sign:speed': 'turned' }),
+			columns
+		);
+		expect(mapping?.columns[2]).toEqual({ header: 'p1', index: 2, channel: 'brake', unit: 'bar', turned: true });
+		// A speed has no other way.
+		expect(mapping?.columns[1].turned).toBeUndefined();
+		const read = columns.map((one) => (one.channel === 'brake' ? { ...one, turned: true } : one));
+		expect(mappingForLaps('place', read, mapping)?.columns[2]).toMatchObject({ channel: 'brake', turned: true });
+	});
+
 	it.each([
 		{ name: 'a column chosen twice', fields: { ...unchanged, 'column:throttle': '2' }, says: /“p1” is chosen twice/ },
 		{ name: 'no time', fields: { ...unchanged, 'column:time': '' }, says: /Time needs a column/ },

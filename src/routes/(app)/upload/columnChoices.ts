@@ -64,6 +64,16 @@ export const UNIT_CHOICES: Partial<Record<Choosable, readonly string[]>> = {
 	lapTime: ['s', 'ms', 'min']
 };
 
+/** Channels that loggers count either way. */
+export const TURNABLE: ReadonlySet<Channel> = new Set([
+	'brake',
+	'throttle',
+	'steering',
+	'accLong',
+	'accLat',
+	'yawRate'
+]);
+
 export type MappingAnswer =
 	| { mapping: ColumnMapping; problem: null }
 	/** a sentence for the person who chose */
@@ -73,7 +83,8 @@ export type MappingAnswer =
  * What a person chose in the form of columns, as the reader takes it: an entry for every column that is chosen, left out or was not
  * used before, so that an earlier choice is not lost when another one is added.
  *
- * @param fields `column:<channel>` holds a column's place or "", `unit:<channel>` a unit or ""; `as:<place>` the channel that a
+ * @param fields `column:<channel>` holds a column's place or "", `unit:<channel>` a unit or "", `sign:<channel>` "turned" or "";
+ *   `as:<place>` the channel that a
  *   column without one is to be, which takes the channel from the column that has it
  * @param columns of the file, in its order, as they are understood now
  */
@@ -123,7 +134,10 @@ export function mappingFromForm(fields: ReadonlyMap<string, string>, columns: re
 				}
 				const said = taken.has(channel) ? undefined : fields.get(`unit:${channel}`);
 				const unit = said || (column.channel === channel ? column.unit : '');
-				return [{ header: column.header, index, channel, ...(unit === '' ? {} : { unit }) }];
+				const turned = TURNABLE.has(channel) && !taken.has(channel) && fields.get(`sign:${channel}`) === 'turned';
+				return [
+					{ header: column.header, index, channel, ...(unit === '' ? {} : { unit }), ...(turned ? { turned } : {}) }
+				];
 			})
 		}
 	};
@@ -196,11 +210,12 @@ export function mappingForLaps(
 	}
 	const hasTime = columns.some(({ channel }) => channel === 'time');
 	return {
-		columns: columns.flatMap(({ header, channel, unit }, index): ColumnMapping['columns'] => {
+		columns: columns.flatMap(({ header, channel, unit, turned }, index): ColumnMapping['columns'] => {
 			if (channel === null) return [{ header, index, channel: null }];
 			// Time within the lap may be the only time there is.
 			const isLeftOut = isLapSource(channel) && channel !== source && (channel !== 'lapTime' || hasTime);
-			return [{ header, index, channel: isLeftOut ? null : channel, ...(unit === '' || isLeftOut ? {} : { unit }) }];
+			if (isLeftOut) return [{ header, index, channel: null }];
+			return [{ header, index, channel, ...(unit === '' ? {} : { unit }), ...(turned ? { turned } : {}) }];
 		})
 	};
 }
