@@ -8,9 +8,9 @@ const LARGEST_BODY_BYTES = 512 * 1024;
 const RAW_UPLOAD_PATH = '/api/v1/uploads';
 const PIECES_PATH = '/api/v1/uploads/resumable';
 const PIECE_TYPE = 'application/offset+octet-stream';
-/** A file as a form, from a browser without script, is held in memory. */
 /** A mail program's one click (RFC 8058) comes from anywhere, without cookie and Origin; its signed token says all. */
 const ONE_CLICK_ROUTE = '/unsubscribe/[token]';
+/** A file as a form, from a browser without script, is held in memory. */
 const FORM_UPLOAD_PATH = '/upload';
 const LARGEST_FORM_UPLOAD_BYTES = 32 * 1024 * 1024;
 
