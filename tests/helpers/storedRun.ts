@@ -6,7 +6,7 @@ import { database } from '../../src/lib/server/db/database.ts';
 import { encodePublicId, newPublicId } from '../../src/lib/server/db/publicId.ts';
 import { analyseFile } from '../../src/lib/server/importing/analyseFile.ts';
 import type { AnalysedRun, LayoutCandidate } from '../../src/lib/server/importing/importMessages.ts';
-import { storeRun } from '../../src/lib/server/importing/storeRun.ts';
+import { CODE_VERSION, storeRun } from '../../src/lib/server/importing/storeRun.ts';
 import { rawStore, storageKeyOf } from '../../src/lib/server/storage/store.ts';
 import type { TestPerson } from './factories.ts';
 import { fixture } from './importing.ts';
@@ -70,7 +70,8 @@ export async function storedRun(owner: TestPerson, on?: StoredRun): Promise<Stor
 		storage_key: storageKeyOf(uploadPublicId),
 		state: 'analysed',
 		stage: 'done',
-		progress: 1
+		progress: 1,
+		analysed_with: CODE_VERSION
 	});
 	const run = await analysedFixture();
 	const known = on && { known: { layoutId: on.layoutId, pathVersion: 1, mapVersion: 1 } };

@@ -15,7 +15,7 @@ import { checkStillNew, LayoutAppeared, lockLayouts, makesLayouts } from '../imp
 import { CODE_VERSION, storeRun } from '../importing/storeRun.ts';
 import { finish, holdJob, type ClaimedJob } from '../jobs/jobQueue.ts';
 import type { JobPayload } from '../jobs/jobKinds.ts';
-import { withLocalFile, type RawStore } from '../storage/rawStore.ts';
+import { FileMissing, withLocalFile, type RawStore } from '../storage/rawStore.ts';
 import { headerKey } from '../upload/headerKey.ts';
 import { findRemembered, hasRemembered } from '../upload/rememberedMappings.ts';
 import { unpackUpload } from './unpackUpload.ts';
@@ -62,16 +62,24 @@ export async function importRun(
 	const { db, store } = tools;
 	const upload = await findUpload(db, payload);
 	if (!upload) return await finish(db, job);
-	await withLocalFile(store, upload.storage_key, async (path) => {
-		if (await isArchive(path)) return await unpackUpload(db, store, upload, path, settleOf(db, job, upload));
-		for (let reading = 1; ; reading++) {
-			try {
-				return await readOnce(tools, job, upload, { path, isAsked: payload.cause !== 'version', signal });
-			} catch (error) {
-				if (!(error instanceof LayoutAppeared) || reading === MOST_READINGS) throw error;
+	const isAsked = payload.cause !== 'version';
+	const settle = settleOf(db, job, upload);
+	try {
+		await withLocalFile(store, upload.storage_key, async (path) => {
+			if (await isArchive(path)) return await unpackUpload(db, store, upload, path, settle);
+			for (let reading = 1; ; reading++) {
+				try {
+					return await readOnce(tools, job, upload, { path, isAsked, signal });
+				} catch (error) {
+					if (!(error instanceof LayoutAppeared) || reading === MOST_READINGS) throw error;
+				}
 			}
-		}
-	});
+		});
+	} catch (error) {
+		// Nobody asked for this reading, and a file that is gone does not come back by another try.
+		if (isAsked || !(error instanceof FileMissing)) throw error;
+		await settle((trx) => keepAsItWas(trx, upload));
+	}
 }
 
 async function readOnce(
