@@ -121,10 +121,11 @@ test('a card prints on one landscape page, light whatever the screen', async ({ 
 		.locator(`main a[href^="${path}/"]`)
 		.evaluateAll((links) => links.map((link) => link.getAttribute('href') ?? '').filter((href) => /\/\d+$/.test(href)));
 	expect(cards.length).toBeGreaterThan(0);
-	for (const card of new Set(cards)) {
+	// The worst first: they have the most lines. A4 is the shorter page.
+	for (const [i, card] of [...new Set(cards)].slice(0, 4).entries()) {
 		await page.goto(card);
 		await hydrated(page);
-		for (const format of ['A4', 'Letter'] as const) {
+		for (const format of i === 0 ? (['A4', 'Letter'] as const) : (['A4'] as const)) {
 			const pdf = (await page.pdf({ format, preferCSSPageSize: true })).toString('latin1');
 			expect(pdf.match(/\/Type\s*\/Page\b/g), `${card} on ${format}`).toHaveLength(1);
 			const [, width, height] = pdf.match(/\/MediaBox\s*\[\s*0 0 ([\d.]+) ([\d.]+)\s*\]/) ?? [];

@@ -41,6 +41,8 @@ export default defineConfig({
 		{ name: 'desktop', use: { ...devices['Desktop Chrome'], viewport: { width: 1280, height: 800 } } },
 		{
 			name: 'phone',
+			// A line that is cut does not know how wide the page is, and these journeys are the longest.
+			testIgnore: ['**/upload-line.spec.ts', ...(long ? [] : ['**/*.long.spec.ts'])],
 			use: { ...devices['Desktop Chrome'], viewport: { width: 390, height: 844 }, hasTouch: true, isMobile: true }
 		}
 	]

@@ -26,10 +26,10 @@ const say = (line) => console.log(line);
  * @type {Array<{ name: typeof import('./testArguments.mjs').STAGES[number], after?: string[], alone?: boolean }>}
  */
 const ORDER = [
+	{ name: 'db' },
 	{ name: 'core' },
 	{ name: 'build' },
 	{ name: 'types' },
-	{ name: 'db' },
 	{ name: 'lint' },
 	{ name: 'browser' },
 	{ name: 'format' },
